@@ -1,0 +1,163 @@
+"""The branches of a power network as records: what is connected where, and the law each obeys.
+
+Voltages are against the reference ground; a current is positive along conduction, from `a` to `b`.
+`part` is the reference of the part that takes the branch's heat, None where it leaves the board.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from .variables import ONE, ZERO, Param
+
+
+@dataclass(frozen=True, slots=True)
+class Curve:
+    """A table of straight lines: xs rising, ys the values, each of shape (point,)."""
+
+    xs: np.ndarray
+    ys: np.ndarray
+
+
+@dataclass(frozen=True, slots=True)
+class Resistive:
+    """v_a − v_b = R · s(Tj) · i. `scale` is s over junction temperature; `duty` the share of time it conducts."""
+
+    key: str
+    a: str
+    b: str
+    r_ohm: Param
+    part: str | None = None
+    scale: Curve | None = None
+    duty: Param = ONE
+    load: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Drop:
+    """The forward law of a one-way branch: knee + slope·i, or measured lines of (temperature, volts over amperes)."""
+
+    knee_v: Param = ZERO
+    slope_ohm: Param = ZERO
+    knee_v_per_k: float = 0.0
+    lines: tuple[tuple[float, Curve], ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class OneWay:
+    """A diode: v_a − v_b = drop(i) for i > 0, no current below it. Also a saturated bipolar transistor."""
+
+    key: str
+    a: str
+    b: str
+    drop: Drop
+    part: str | None = None
+    duty: Param = ONE
+
+
+@dataclass(frozen=True, slots=True)
+class Source:
+    """v_a − v_b = V − R · i, the current i delivered out of `a`."""
+
+    key: str
+    a: str
+    b: str
+    voltage_v: Param
+    resistance_ohm: Param = ZERO
+
+
+@dataclass(frozen=True, slots=True)
+class Linear:
+    """A linear regulator or linear pass element holding `b` against `ground`; input current = i + quiescent."""
+
+    key: str
+    a: str
+    b: str
+    ground: str
+    setpoint_v: Param
+    dropout_v: Param = ZERO
+    quiescent_a: Param = ZERO
+    part: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Efficiency:
+    """Efficiency over output current: one curve per input voltage; one entry holds at every input voltage."""
+
+    input_v: tuple[float, ...]
+    curves: tuple[Curve, ...]
+    factor: Param = ONE
+
+
+@dataclass(frozen=True, slots=True)
+class Switching:
+    """A switching regulator holding `b`: v_in · i_in = v_out · i / η(i, v_in), never below v_in · quiescent more."""
+
+    key: str
+    a: str
+    b: str
+    ground: str
+    setpoint_v: Param
+    efficiency: Efficiency
+    quiescent_a: Param = ZERO
+    part: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class CurrentLoad:
+    """A constant current that falls to nothing below COLLAPSE_V."""
+
+    key: str
+    a: str
+    b: str
+    current_a: Param
+    part: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class PowerLoad:
+    """A constant power on the higher-voltage branch; below `floor_v` it behaves as a resistor."""
+
+    key: str
+    a: str
+    b: str
+    power_w: Param
+    floor_v: float
+    part: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Leg:
+    """One switch of a pulsed pair while it carries the current: a resistive channel or a one-way drop."""
+
+    part: str
+    r_ohm: Param | None = None
+    scale: Curve | None = None
+    drop: Drop | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Pulsed:
+    """An averaged switch pair: `x` is tied to `main_node` for the share `duty`, to `free_node` for the rest.
+
+    The current of the load at `x` is continuous; `outward` +1 when it leaves `x` (high-side main switch),
+    −1 when it enters (low-side main switch). Switching loss falls on the main switch: edge_s · f · V · i from
+    voltage and current overlap, and charge_c · f · V from output and recovery charge.
+    """
+
+    key: str
+    x: str
+    main_node: str
+    free_node: str
+    main: Leg
+    free: Leg
+    duty: Param
+    outward: int
+    frequency_hz: Param = ZERO
+    edge_s: Param = ZERO
+    charge_c: Param = ZERO
+
+
+Branch = Resistive | OneWay | Source | Linear | Switching | CurrentLoad | PowerLoad | Pulsed

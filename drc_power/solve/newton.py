@@ -1,0 +1,142 @@
+"""Newton's method for many samples at once, each linear step by sparse elimination over the sample axis."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from .elimination import Plan, SingularPattern, plan_elimination, solve_planned
+from .system import Prepared, System
+
+MAX_ITERATIONS = 60
+STEP_TOLERANCE = 1e-12
+"""Converged when no unknown moves by more than this share of itself (of 1 below 1) and no branch changes its line."""
+
+DAMPING = ((10, 1.0), (25, 0.5), (MAX_ITERATIONS, 0.2))
+"""Up to which iteration the step is taken at which length: a cycle between lines is broken by shorter steps."""
+
+VOLTAGE_ROOM = 3.0
+"""No node strays further than this many times the highest voltage of the starting point on the way."""
+
+MAX_TEMPERATURE_C = 1e5
+"""A temperature past this is no equilibrium; it only keeps the numbers finite while runaway is being shown."""
+
+
+@dataclass(slots=True)
+class Solver:
+    """Newton's method on one system; plans are kept by regime, since equal regimes have equal good pivots."""
+
+    system: System
+    plans: dict[bytes, Plan] = field(default_factory=dict)
+    _pattern: tuple[np.ndarray, np.ndarray] | None = None
+    _slots: list[np.ndarray] = field(default_factory=list)
+
+    def solve(self, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray, np.ndarray]:
+        """Iterate from x of shape (unknown + 1, sample). Returns the solution and where it converged, (sample,)."""
+        converged = np.zeros(prepared.n_samples, dtype=bool)
+        x = x.copy()
+        bound_v = VOLTAGE_ROOM * np.abs(x[self.system.nodes]).max(initial=1.0)
+        active = np.arange(prepared.n_samples)
+        for iteration in range(MAX_ITERATIONS):
+            part = _take(prepared, active)
+            residual, entries = self.system.evaluate(x[:, active], part)
+            before = self.system.regime(x[:, active], part)
+            step = self._step(before, residual, entries)
+            damping = next(share for limit, share in DAMPING if iteration < limit)
+            x[:-1, active] -= damping * step
+            self._keep_in_bounds(x, bound_v)
+            after = self.system.regime(x[:, active], part)
+            size = np.abs(step) / np.maximum(np.abs(x[:-1, active]), 1.0)
+            done = (size.max(axis=0, initial=0.0) <= STEP_TOLERANCE) & (before == after).all(axis=0)
+            converged[active[done]] = True
+            active = active[~done]
+            if not len(active):
+                break
+        return x, converged
+
+    def _keep_in_bounds(self, x: np.ndarray, bound_v: float) -> None:
+        nodes, at = self.system.nodes, self.system.temperature_at
+        x[nodes] = np.clip(x[nodes], -bound_v, bound_v)
+        if len(at):
+            x[at] = np.clip(np.nan_to_num(x[at], nan=MAX_TEMPERATURE_C), -273.15, MAX_TEMPERATURE_C)
+
+    def _step(self, regime: np.ndarray, residual: np.ndarray, entries) -> np.ndarray:
+        values = self._gather(entries, residual.shape[1])
+        step = np.empty_like(residual)
+        for key, samples in _groups(regime):
+            step[:, samples] = self._solve_group(key, values[:, samples], residual[:, samples])
+        bad = ~np.isfinite(step).all(axis=0)
+        if bad.any():
+            step[:, bad] = self.dense_solve(values[:, bad], residual[:, bad])
+        return step
+
+    def _solve_group(self, key: bytes, values: np.ndarray, right: np.ndarray) -> np.ndarray:
+        rows, columns = self._pattern
+        if key not in self.plans:
+            try:
+                self.plans[key] = plan_elimination(rows, columns, values[:, 0], self.system.n)
+            except SingularPattern:
+                return np.full_like(right, np.nan)
+        return solve_planned(self.plans[key], values, right)
+
+    def _gather(self, entries, n_samples: int) -> np.ndarray:
+        """Entries summed by place: values of shape (entry, sample) in the order of the pattern."""
+        if self._pattern is None:
+            self._lay_pattern(entries)
+        values = np.zeros((len(self._pattern[0]) + 1, n_samples))
+        for slots, (_, _, value) in zip(self._slots, entries, strict=True):
+            values[slots] += value
+        return values[:-1]
+
+    def _lay_pattern(self, entries) -> None:
+        """Number the places once; entries on the zero row or column all share the last slot, which is dropped."""
+        numbers: dict[tuple[int, int], int] = {}
+        for rows, columns, _ in entries:
+            for r, c in zip(rows.tolist(), columns.tolist(), strict=True):
+                if r >= 0 and c >= 0:
+                    numbers.setdefault((r, c), len(numbers))
+        for rows, columns, _ in entries:
+            slots = [numbers.get((r, c), len(numbers)) for r, c in zip(rows.tolist(), columns.tolist(), strict=True)]
+            self._slots.append(np.array(slots, dtype=np.intp))
+        places = np.array(list(numbers), dtype=np.intp).reshape(-1, 2)
+        self._pattern = places[:, 0], places[:, 1]
+
+    def dense(self, values: np.ndarray) -> np.ndarray:
+        """The matrices of the given entries, shape (sample, unknown, unknown)."""
+        rows, columns = self._pattern
+        matrix = np.zeros((values.shape[1], self.system.n, self.system.n))
+        matrix[:, rows, columns] = values.T
+        return matrix
+
+    def dense_solve(self, values: np.ndarray, right: np.ndarray) -> np.ndarray:
+        """The same step by dense least squares: for the few samples whose pivots vanish."""
+        out = np.empty_like(right)
+        for sample, matrix in enumerate(self.dense(values)):
+            finite = np.isfinite(matrix).all() and np.isfinite(right[:, sample]).all()
+            out[:, sample] = np.linalg.lstsq(matrix, right[:, sample], rcond=None)[0] if finite else 0.0
+        return out
+
+    def jacobian(self, x: np.ndarray, prepared: Prepared) -> np.ndarray:
+        """dF/dx at x, shape (sample, unknown, unknown)."""
+        _, entries = self.system.evaluate(x, prepared)
+        return self.dense(self._gather(entries, prepared.n_samples))
+
+
+def _groups(regime: np.ndarray):
+    """Samples of equal regime, each with a key."""
+    packed = np.packbits(regime, axis=0)
+    if packed.shape[0] == 0 or (packed == packed[:, :1]).all():
+        yield packed[:, 0].tobytes() if packed.shape[1] else b"", np.arange(regime.shape[1])
+        return
+    keys, inverse = np.unique(packed, axis=1, return_inverse=True)
+    for k in range(keys.shape[1]):
+        yield keys[:, k].tobytes(), np.flatnonzero(inverse == k)
+
+
+def _take(prepared: Prepared, samples: np.ndarray) -> Prepared:
+    if len(samples) == prepared.n_samples:
+        return prepared
+    families = tuple({name: value[:, samples] for name, value in p.items()} for p in prepared.families)
+    heat = {name: value[:, samples] for name, value in prepared.heat.items()}
+    return Prepared(families, heat, len(samples))

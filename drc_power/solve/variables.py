@@ -1,0 +1,68 @@
+"""The box of everything that has a span: one named side per rail, load, tolerance and surrounding."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from ..faults import Mark
+from ..quantity import Span
+
+
+@dataclass(frozen=True, slots=True)
+class Variable:
+    """One side of the box. `name` reads in a sentence before the value: "+24V at", "ambient"."""
+
+    name: str
+    dimension: str
+    span: Span
+    mark: Mark
+
+
+@dataclass(frozen=True, slots=True)
+class Param:
+    """A number of the circuit: exact, or the box's side `index`."""
+
+    value: float
+    index: int | None = None
+
+
+ONE = Param(1.0)
+ZERO = Param(0.0)
+
+
+@dataclass(slots=True)
+class Box:
+    """Collects the spans of one mode. A span that is exact takes no side of the box."""
+
+    variables: list[Variable] = field(default_factory=list)
+    _index: dict[str, int] = field(default_factory=dict)
+
+    def param(self, name: str, span: Span, dimension: str, mark: Mark) -> Param:
+        """The parameter for a span; asking twice for one name gives the same side."""
+        if span.is_exact:
+            return Param(span.typ)
+        if name not in self._index:
+            self._index[name] = len(self.variables)
+            self.variables.append(Variable(name, dimension, span, mark))
+        return Param(span.typ, self._index[name])
+
+    def typical(self) -> np.ndarray:
+        """The point with every side at its typical value, shape (variable,)."""
+        return np.array([v.span.typ for v in self.variables], dtype=float)
+
+    def bounds(self) -> tuple[np.ndarray, np.ndarray]:
+        """The lower and the upper end of every side, each of shape (variable,)."""
+        low = np.array([v.span.min for v in self.variables], dtype=float)
+        high = np.array([v.span.max for v in self.variables], dtype=float)
+        return low, high
+
+
+def values_of(params: Sequence[Param], points: np.ndarray) -> np.ndarray:
+    """The parameters' values at each point: shape (param, sample) from points of shape (sample, variable)."""
+    out = np.empty((len(params), points.shape[0]))
+    for row, param in enumerate(params):
+        out[row] = param.value if param.index is None else points[:, param.index]
+    return out
