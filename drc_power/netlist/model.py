@@ -11,17 +11,22 @@ _EMPTY: Mapping[str, str] = MappingProxyType({})
 
 @dataclass(frozen=True, slots=True)
 class Pin:
-    """One pin of a part. `net` is the net's name as `Netlist.nets` knows it, "" if unconnected."""
+    """One pin of a part. `net` is the net's name as `Netlist.nets` knows it, "" if it is on none.
+
+    `type` is KiCad's electrical type; a pin with a no-connect flag has `+no_connect` after it.
+    `unit` is the unit of a multi-unit part that the pin belongs to, "" if unknown or shared."""
 
     number: str
     name: str = ""
     type: str = ""
     net: str = ""
+    unit: str = ""
 
 
 @dataclass(frozen=True, slots=True)
 class Part:
-    """One component. `uuid` is the symbol's UUID path: sheet UUIDs, then the first unit's own UUID."""
+    """One component. `uuids` are those of its units, sorted; `uuid` is the symbol's UUID path: the
+    sheet's, then the first of `uuids`. `fields` are in order of name."""
 
     ref: str
     value: str = ""
@@ -81,9 +86,12 @@ class Netlist:
     revision: str
     parts: Mapping[str, Part]
     nets: Mapping[str, Net]
+    _net_by_alias: Mapping[str, Net] = field(init=False, repr=False, compare=False)
+
+    def __post_init__(self) -> None:
+        by_alias = {alias: net for net in self.nets.values() for alias in net.aliases}
+        object.__setattr__(self, "_net_by_alias", MappingProxyType(by_alias))
 
     def net_named(self, name: str) -> Net | None:
         """The net of that name or alias, or None."""
-        if name in self.nets:
-            return self.nets[name]
-        return next((net for net in self.nets.values() if name in net.aliases), None)
+        return self.nets.get(name) or self._net_by_alias.get(name)
