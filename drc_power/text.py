@@ -15,7 +15,7 @@ _C0 = r"\x00-\x1f"
 _UNSEEN = (
     r"\x7f-\x9f\xad\u034f\u061c\u115f\u1160\u17b4\u17b5\u180b-\u180f\u200b-\u200f\u2028-\u202e\u2060-\u206f\u3164"
     r"\ufdd0-\ufdef\ufe00-\ufe0f\ufeff\uffa0\ufff0-\ufffb\ufffe\uffff"
-    r"\U0001bca0-\U0001bca3\U0001d173-\U0001d17a\U000e0000-\U000e0fff"
+    r"\U00013430-\U00013440\U0001bca0-\U0001bca3\U0001d173-\U0001d17a\U000e0000-\U000e0fff"
 )
 """Controls, line separators, noncharacters, and what Unicode's Default_Ignorable_Code_Point calls invisible."""
 
@@ -76,6 +76,14 @@ def display_width(text: str) -> int:
     if text.isascii():
         return len(text)
     return len(text) + len(_WIDE.findall(text)) - len(_MARK.findall(text))
+
+
+def fit(text: str, width: int) -> str:
+    """The text shortened in the middle until it takes at most `width` (3 or more) columns."""
+    limit = width
+    while display_width(shortened := shorten(text, limit)) > width and limit > 3:
+        limit -= 1
+    return shortened
 
 
 def pad(text: str, width: int, *, right: bool = False) -> str:

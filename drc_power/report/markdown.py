@@ -1,0 +1,213 @@
+"""The result as a comment on a pull request, for people who did not run the tool."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+
+from drc_power.findings.model import VERDICTS, Finding, Result, Sensitivity, Step
+from drc_power.findings.order import finding_key, gravest_first
+from drc_power.findings.waiving import waiver_line
+from drc_power.report.markdown_text import code, folded, prose, table_head, table_row
+from drc_power.report.phrases import (
+    READING_HELP,
+    board_text,
+    coverage_text,
+    fails_run,
+    found_and_allowed,
+    headline,
+    margin_text,
+    needs_action,
+    place_parts,
+    remarks,
+    subject_text,
+    tally_text,
+)
+from drc_power.text import NOT_KNOWN, natural_key, si
+
+LIMIT_CHARS = 60_000
+"""Comments may be no longer than this on the platforms that people use."""
+
+_TABLE_SHARE, _REASONS_SHARE, _WAIVED_SHARE = 0.4, 0.7, 0.5
+"""Of the room that is left at that point, how much each block may take; all parts get the rest."""
+
+_LIST_CHARS = 4_000
+_REMARKS_CHARS = 8_000
+_FOLD_CHARS, _MORE_CHARS = 200, 80
+_MOST_STEPS = 12
+_MOST_SENSITIVITIES = 3
+
+
+def to_markdown(result: Result, limit_chars: int = LIMIT_CHARS) -> str:
+    """The result as Markdown, shorter than `limit_chars`: what does not fit is counted, and stands in the JSON.
+
+    First one line with the verdict, then a table of what needs action, the gravest first, then the reasons and all
+    parts, folded, then the coverage and the notes. limit_chars below 30,000 leaves no room for the fixed parts.
+    """
+    top = [_verdict_line(result), ""]
+    bottom = [*_coverage_lines(result), "", *_remark_lines(result), f"<sub>{READING_HELP}</sub>", ""]
+    room = limit_chars - _size(top) - _size(bottom) - 1
+    ranked = gravest_first(needs_action(result))
+    table = _action_table(ranked, int(_TABLE_SHARE * room))
+    room -= _size(table)
+    reasons = _reasons(ranked, result, int(_REASONS_SHARE * room))
+    room -= _size(reasons)
+    waived = _waived(result, int(_WAIVED_SHARE * room))
+    room -= _size(waived)
+    return "\n".join([*top, *table, *reasons, *waived, *_all_parts(result, room), *bottom])
+
+
+def _verdict_line(result: Result) -> str:
+    board = f"{prose(board_text(result), 160)} ({code(result.netlist)}, {result.n_parts} parts, {result.n_nets} nets)"
+    return f"**Power check: {headline(result)}** - {tally_text(result)} - {board}"
+
+
+def _action_table(findings: Sequence[Finding], room: int) -> list[str]:
+    if not findings:
+        return ["Nothing needs action.", ""]
+    return [*_findings_table(findings, room), ""]
+
+
+def _findings_table(findings: Sequence[Finding], room: int) -> list[str]:
+    head = table_head(**{"Part": "left", "What": "left", "Found": "right", "Allowed": "right", "Margin": "right",
+                         "Worst corner": "left"})
+    rows = [_action_row(finding) for finding in findings]
+    return [*head, *_kept(rows, room - _size(head), "finding", "\n")]
+
+
+def _action_row(finding: Finding) -> str:
+    found, allowed = found_and_allowed(finding)
+    verdict = f"**{finding.verdict}**" if finding.verdict == "exceeded" else finding.verdict
+    what = f"{verdict}: {prose(finding.quantity, 120)}"
+    return table_row([code(subject_text(finding)), what, _number(found), _number(allowed),
+                      margin_text(finding.margin), _place(finding)])
+
+
+def _number(text: str) -> str:
+    """A number with its unit; only the unit could be anything but plain."""
+    return text if text == NOT_KNOWN else prose(text)
+
+
+def _place(finding: Finding) -> str:
+    return ", ".join(prose(part, 160) for part in place_parts(finding)) or NOT_KNOWN
+
+
+def _reasons(findings: Sequence[Finding], result: Result, room: int) -> list[str]:
+    """Why each finding is as it is and what would help, folded."""
+    if not findings:
+        return []
+    entries = ["\n".join(_reason(finding, fails_run(finding, result))) for finding in findings]
+    return folded("Why, and what would help", _kept(entries, room - _FOLD_CHARS, "finding", ""))
+
+
+def _waived(result: Result, room: int) -> list[str]:
+    """What was waived, by whom and why, folded."""
+    waived = gravest_first(finding for finding in result.findings if finding.verdict == "waived")
+    if not waived:
+        return []
+    entries = [_waived_line(finding) for finding in waived]
+    return folded("Waived", _kept(entries, room - _FOLD_CHARS, "finding", ""))
+
+
+def _waived_line(finding: Finding) -> str:
+    found, allowed = map(_number, found_and_allowed(finding))
+    what = f"{code(subject_text(finding))} {prose(finding.quantity, 120)}, {finding.was}"
+    return f"- {what}, found {found}, allowed {allowed} ({_place(finding)}): {prose(finding.text)}"
+
+
+def _reason(finding: Finding, fails: bool) -> list[str]:
+    title = f"- **{code(subject_text(finding))} {prose(finding.quantity, 120)}: {finding.verdict}**"
+    waiver = waiver_line(finding) if fails else ""
+    lines = [
+        f"{title} ({code(finding.rule)}, {_place(finding)})",
+        f"  - {prose(finding.text)}" if finding.text else "",
+        f"  - What would help: {prose(finding.remedy)}" if finding.remedy else "",
+        f"  - What drives it: {_drivers(finding.sensitivity)}" if finding.sensitivity else "",
+        *[f"  - {_step(step)}" for step in finding.workings[:_MOST_STEPS]],
+        f"  - Written in {code(finding.file, 80)}, line {finding.line}" if finding.file else "",
+        f"  - To waive it: {code(waiver, 200)}" if waiver else "",
+    ]
+    return [line for line in lines if line]
+
+
+def _drivers(sensitivities: Iterable[Sensitivity]) -> str:
+    strongest = sorted(sensitivities, key=lambda s: -abs(s.moves_by))[:_MOST_SENSITIVITIES]
+    return ", ".join(f"{prose(s.name, 80)} over {prose(s.span, 80)} moves it by {_number(si(s.moves_by, s.unit))}"
+                     for s in strongest)
+
+
+def _step(step: Step) -> str:
+    sides = [code(side, 120) for side in (step.symbol, step.formula, step.numbers) if side]
+    source = f" ({prose(step.source, 160)})" if step.source else ""
+    return f"{' = '.join([*sides, _number(si(step.value, step.unit))])}{source}"
+
+
+def _all_parts(result: Result, room: int) -> list[str]:
+    """Every part with findings on it, its gravest verdict and its least margin, folded."""
+    by_ref: dict[str, list[Finding]] = {}
+    for finding in sorted(result.findings, key=finding_key):
+        if finding.ref:
+            by_ref.setdefault(finding.ref, []).append(finding)
+    if not by_ref:
+        return []
+    values = {part.ref: part.value for part in result.parts}
+    head = table_head(**{"Part": "left", "Value": "left", "Verdict": "left", "Least margin": "right", "Of": "left"})
+    rows = [_part_row(ref, values.get(ref, ""), findings) for ref, findings in by_ref.items()]
+    return folded("Every part with findings", [*head, *_kept(rows, room - _size(head) - _FOLD_CHARS, "part", "\n")])
+
+
+def _part_row(ref: str, value: str, findings: Sequence[Finding]) -> str:
+    verdict = max((finding.verdict for finding in findings), key=VERDICTS.index)
+    margins = [f for f in findings if f.margin is not None and f.margin == f.margin]
+    least = min(margins, key=lambda f: f.margin, default=None)
+    of = f"{prose(least.quantity, 120)}, {_place(least)}" if least else NOT_KNOWN
+    return table_row([code(ref), code(value) if value else NOT_KNOWN, verdict, margin_text(least and least.margin), of])
+
+
+def _coverage_lines(result: Result) -> list[str]:
+    coverage = result.coverage
+    outside = [f"{code(o.ref)} ({prose(o.because, 160)})" for o in sorted(coverage.outside, key=_ref_order)]
+    lists = {
+        "Unproven": [code(ref) for ref in sorted(coverage.unproven, key=natural_key)],
+        "Left out by the annotation": outside,
+        "Not fitted": [code(ref) for ref in sorted(coverage.not_fitted, key=natural_key)],
+    }
+    sentences = [f"{title}: {_listed(names)}." for title, names in lists.items() if names]
+    return [f"**Coverage.** {' '.join([coverage_text(coverage), *sentences])}"]
+
+
+def _ref_order(outside: object) -> object:
+    return natural_key(outside.ref)
+
+
+def _listed(names: Sequence[str]) -> str:
+    kept = _fitting(names, _LIST_CHARS, separator=2)
+    more = [f"and {len(names) - kept} more"] if kept < len(names) else []
+    return ", ".join([*names[:kept], *more])
+
+
+def _remark_lines(result: Result) -> list[str]:
+    notes = remarks(result)
+    if not notes:
+        return []
+    return ["**Notes**", "", *_kept([f"- {prose(note)}" for note in notes], _REMARKS_CHARS, "note", ""), ""]
+
+
+def _kept(entries: Sequence[str], room: int, noun: str, gap: str) -> list[str]:
+    """As many entries as fit in `room` characters, then how many more there are; `gap` ends a table first."""
+    kept = _fitting(entries, room - _MORE_CHARS, separator=1)
+    left = len(entries) - kept
+    if not left:
+        return list(entries)
+    return [*entries[:kept], f"{gap}and {left} more {noun}{'s' if left > 1 else ''}, see the JSON"]
+
+
+def _fitting(entries: Sequence[str], room: int, separator: int) -> int:
+    for index, entry in enumerate(entries):
+        room -= len(entry) + separator
+        if room < 0:
+            return index
+    return len(entries)
+
+
+def _size(lines: Iterable[str]) -> int:
+    return sum(len(line) + 1 for line in lines)
