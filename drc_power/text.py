@@ -79,7 +79,7 @@ def display_width(text: str) -> int:
 
 
 def fit(text: str, width: int) -> str:
-    """The text shortened in the middle until it takes at most `width` (3 or more) columns."""
+    """The text shortened in the middle until it takes at most `width` (5 or more) columns."""
     limit = width
     while display_width(shortened := shorten(text, limit)) > width and limit > 3:
         limit -= 1

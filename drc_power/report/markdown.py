@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Sequence
 
 from drc_power.findings.model import VERDICTS, Finding, Result, Sensitivity, Step
@@ -64,14 +65,10 @@ def _verdict_line(result: Result) -> str:
 def _action_table(findings: Sequence[Finding], room: int) -> list[str]:
     if not findings:
         return ["Nothing needs action.", ""]
-    return [*_findings_table(findings, room), ""]
-
-
-def _findings_table(findings: Sequence[Finding], room: int) -> list[str]:
     head = table_head(**{"Part": "left", "What": "left", "Found": "right", "Allowed": "right", "Margin": "right",
                          "Worst corner": "left"})
     rows = [_action_row(finding) for finding in findings]
-    return [*head, *_kept(rows, room - _size(head), "finding", "\n")]
+    return [*head, *_kept(rows, room - _size(head), "finding", "\n"), ""]
 
 
 def _action_row(finding: Finding) -> str:
@@ -123,10 +120,14 @@ def _reason(finding: Finding, fails: bool) -> list[str]:
         f"  - What would help: {prose(finding.remedy)}" if finding.remedy else "",
         f"  - What drives it: {_drivers(finding.sensitivity)}" if finding.sensitivity else "",
         *[f"  - {_step(step)}" for step in finding.workings[:_MOST_STEPS]],
-        f"  - Written in {code(finding.file, 80)}, line {finding.line}" if finding.file else "",
+        f"  - Written in {_written_in(finding)}" if finding.file else "",
         f"  - To waive it: {code(waiver, 200)}" if waiver else "",
     ]
     return [line for line in lines if line]
+
+
+def _written_in(finding: Finding) -> str:
+    return code(finding.file, 80) + (f", line {finding.line}" if finding.line else "")
 
 
 def _drivers(sensitivities: Iterable[Sensitivity]) -> str:
@@ -157,7 +158,7 @@ def _all_parts(result: Result, room: int) -> list[str]:
 
 def _part_row(ref: str, value: str, findings: Sequence[Finding]) -> str:
     verdict = max((finding.verdict for finding in findings), key=VERDICTS.index)
-    margins = [f for f in findings if f.margin is not None and f.margin == f.margin]
+    margins = [f for f in findings if f.margin is not None and not math.isnan(f.margin)]
     least = min(margins, key=lambda f: f.margin, default=None)
     of = f"{prose(least.quantity, 120)}, {_place(least)}" if least else NOT_KNOWN
     return table_row([code(ref), code(value) if value else NOT_KNOWN, verdict, margin_text(least and least.margin), of])
@@ -165,18 +166,14 @@ def _part_row(ref: str, value: str, findings: Sequence[Finding]) -> str:
 
 def _coverage_lines(result: Result) -> list[str]:
     coverage = result.coverage
-    outside = [f"{code(o.ref)} ({prose(o.because, 160)})" for o in sorted(coverage.outside, key=_ref_order)]
+    outside = sorted(coverage.outside, key=lambda o: natural_key(o.ref))
     lists = {
         "Unproven": [code(ref) for ref in sorted(coverage.unproven, key=natural_key)],
-        "Left out by the annotation": outside,
+        "Left out by the annotation": [f"{code(o.ref)} ({prose(o.because, 160)})" for o in outside],
         "Not fitted": [code(ref) for ref in sorted(coverage.not_fitted, key=natural_key)],
     }
     sentences = [f"{title}: {_listed(names)}." for title, names in lists.items() if names]
     return [f"**Coverage.** {' '.join([coverage_text(coverage), *sentences])}"]
-
-
-def _ref_order(outside: object) -> object:
-    return natural_key(outside.ref)
 
 
 def _listed(names: Sequence[str]) -> str:

@@ -105,7 +105,7 @@ def _reason_lines(finding: Finding, width: int) -> list[str]:
     """Where it happens and why, on two lines at most."""
     place = ", ".join(place_parts(finding))
     reason = printable(f"{place}: {finding.text}" if place and finding.text else place or finding.text)
-    wrapped = textwrap.wrap(reason, width, max_lines=_MOST_REASON_LINES, placeholder=" …")
+    wrapped = textwrap.wrap(reason[: 2 * _MOST_REASON_LINES * width], width, max_lines=_MOST_REASON_LINES, placeholder=" …")
     return [fit(line, width) for line in wrapped]
 
 
@@ -138,7 +138,7 @@ def _listed(refs: Sequence[str]) -> str:
 
 
 def _wrapped(text: str, width: int) -> list[str]:
-    lines = textwrap.wrap(printable(text), width, max_lines=4, placeholder=" …")
+    lines = textwrap.wrap(printable(text)[: 8 * width], width, max_lines=4, placeholder=" …")
     return [fit(line, width) for line in lines]
 
 
