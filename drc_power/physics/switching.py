@@ -203,17 +203,3 @@ def rc_snubber_edge_loss_w(c_f, v_step_v, f_switch_hz):
     132.0
     """
     return c_f * v_step_v**2 / 2.0 * f_switch_hz
-
-
-def critical_resistance_ohm(l_h, c_f):
-    """Series resistance that just keeps an L-C circuit from ringing: R = 2 · √(L/C).
-
-    l_h: inductance [H].
-    c_f: capacitance [F].
-    Returns the resistance [ohm].
-    Source: Rashid, Power Electronics, 4th edition, example 4.5.
-
-    >>> round(float(critical_resistance_ohm(6.6e-6, 0.5454545e-6)), 3)
-    6.957
-    """
-    return 2.0 * np.sqrt(np.divide(l_h, c_f))

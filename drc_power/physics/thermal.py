@@ -48,6 +48,22 @@ def allowed_power_w(tj_max_c, t_reference_c, rth_k_per_w):
     return np.subtract(tj_max_c, t_reference_c) / rth_k_per_w
 
 
+def slab_rth_k_per_w(thickness_m, k_w_per_m_k, area_m2, contact_m2_k_per_w=0.0):
+    """Resistance through a pad, foil or spacer: R_th = thickness/(k · A) + contact/A.
+
+    thickness_m: thickness as mounted [m].
+    k_w_per_m_k: thermal conductivity, above 0 [W/(m.K)].
+    area_m2: area that the heat crosses, above 0 [m2].
+    contact_m2_k_per_w: what both faces add, per area [m2.K/W]; 0 takes them as perfect.
+    Returns the thermal resistance [K/W]. Valid for heat that goes straight through.
+    Source: Fourier's law; Rashid, Power Electronics, 4th edition, example 17.2.
+
+    >>> round(slab_rth_k_per_w(0.3e-3, 1.1, 1e-4), 3)
+    2.727
+    """
+    return (thickness_m / k_w_per_m_k + contact_m2_k_per_w) / area_m2
+
+
 def conductance_matrix_w_per_k(n_nodes, links, to_ambient_w_per_k):
     """Conductance matrix of a thermal network: G_ii = sum of all conductances at node i, G_ij = −g_ij.
 

@@ -114,6 +114,7 @@ class CurrentLoad:
     b: str
     current_a: Param
     part: str | None = None
+    duty: Param = ONE
 
 
 @dataclass(frozen=True, slots=True)
@@ -126,6 +127,7 @@ class PowerLoad:
     power_w: Param
     floor_v: float
     part: str | None = None
+    duty: Param = ONE
 
 
 @dataclass(frozen=True, slots=True)

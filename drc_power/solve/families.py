@@ -306,10 +306,13 @@ class CurrentLoads(Family):
         super().__init__(branches, layout)
 
     def parameters(self, points: np.ndarray) -> Values:
-        return {"draw": values_of([b.current_a for b in self.branches], points)}
+        return {"draw": values_of([b.current_a for b in self.branches], points), **self._duties(points)}
+
+    def _duties(self, points: np.ndarray) -> Values:
+        return {"duty": values_of([b.duty for b in self.branches], points)}
 
     def flows(self, p: Values):
-        return self.through(1.0)
+        return self.through(p["duty"])
 
     def equations(self, x: np.ndarray, p: Values) -> tuple[Residuals, Entries]:
         share, slope = fade(x[self.a] - x[self.b])
@@ -321,8 +324,8 @@ class CurrentLoads(Family):
         yield fade(x[self.a] - x[self.b])[1] > 0.0
 
     def heats(self, x: np.ndarray, p: Values) -> Heats:
-        v, i = x[self.a] - x[self.b], x[self.i]
-        return [(self.parts, v * i, [(self.a, i), (self.b, -i), (self.i, v)])]
+        v, i = x[self.a] - x[self.b], p["duty"] * x[self.i]
+        return [(self.parts, v * i, [(self.a, i), (self.b, -i), (self.i, p["duty"] * v)])]
 
 
 class PowerLoads(CurrentLoads):
@@ -330,7 +333,7 @@ class PowerLoads(CurrentLoads):
 
     def parameters(self, points: np.ndarray) -> Values:
         floor = np.array([b.floor_v for b in self.branches])[:, None]
-        return {"power": values_of([b.power_w for b in self.branches], points),
+        return {"power": values_of([b.power_w for b in self.branches], points), **self._duties(points),
                 "floor": np.broadcast_to(floor, (len(self.branches), points.shape[0]))}
 
     def collapsed(self, x: np.ndarray, p: Values) -> np.ndarray:

@@ -39,7 +39,7 @@ class Solver:
         bound_v = VOLTAGE_ROOM * np.abs(x[self.system.nodes]).max(initial=1.0)
         active = np.arange(prepared.n_samples)
         for iteration in range(MAX_ITERATIONS):
-            part = _take(prepared, active)
+            part = take(prepared, active)
             residual, entries = self.system.evaluate(x[:, active], part)
             before = self.system.regime(x[:, active], part)
             step = self._step(before, residual, entries)
@@ -134,9 +134,10 @@ def _groups(regime: np.ndarray):
         yield keys[:, k].tobytes(), np.flatnonzero(inverse == k)
 
 
-def _take(prepared: Prepared, samples: np.ndarray) -> Prepared:
+def take(prepared: Prepared, samples: np.ndarray) -> Prepared:
     if len(samples) == prepared.n_samples:
         return prepared
     families = tuple({name: value[:, samples] for name, value in p.items()} for p in prepared.families)
     heat = {name: value[:, samples] for name, value in prepared.heat.items()}
-    return Prepared(families, heat, len(samples))
+    held_c = None if prepared.held_c is None else prepared.held_c[:, samples]
+    return Prepared(families, heat, len(samples), held_c)

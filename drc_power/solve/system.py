@@ -25,6 +25,8 @@ class Prepared:
     families: tuple[Values, ...]
     heat: Values
     n_samples: int
+    held_c: np.ndarray | None = None
+    """Temperatures to hold, shape (followed part, sample), NaN where the heat decides; None where it always does."""
 
 
 class System:
@@ -46,7 +48,7 @@ class System:
 
     def _lay_out_heat(self) -> None:
         """Temperatures are unknowns only where a law depends on them; powers where such a temperature needs them."""
-        watched = {part for family in self.families for part in _temperature_dependent(family.branches)}
+        watched = {part for family in self.families for part in temperature_dependent(family.branches)}
         known = {path.part for path in self.heat.paths}
         coupled = self.heat.coupled_with(sorted(watched & known))
         self.paths = [path for path in self.heat.paths if path.part in coupled]
@@ -98,17 +100,21 @@ class System:
             residual[at] += x[at] - x[members].sum(axis=0)
             entries.append((np.array([at]), np.array([at]), one))
             entries += [(np.array([at]), np.array([m]), -one) for m in members]
-        self._add_temperatures(x, heat, one, residual, entries)
+        held_c = prepared.held_c if prepared.held_c is not None else np.full((len(self.followed), prepared.n_samples), np.nan)
+        self._add_temperatures(x, heat, held_c, residual, entries)
 
-    def _add_temperatures(self, x, heat: Values, one: np.ndarray, residual, entries) -> None:
-        for row, at in zip(self.followed, self.temperature_at, strict=True):
-            power, own = self.power_at[row], heat["own"][row]
-            residual[at] += x[at] - heat["start"][row] - own * x[power]
-            entries += [(np.array([at]), np.array([at]), one), (np.array([at]), np.array([power]), -own[None])]
+    def _add_temperatures(self, x, heat: Values, held_c: np.ndarray, residual, entries) -> None:
+        one = np.ones((1, held_c.shape[1]))
+        for row, at, held in zip(self.followed, self.temperature_at, held_c, strict=True):
+            power, own, free = self.power_at[row], heat["own"][row], np.isnan(held)
+            target, weight = heat["start"][row] + own * x[power], np.where(free, own, 0.0)
+            entries += [(np.array([at]), np.array([at]), one), (np.array([at]), np.array([power]), -weight[None])]
             if self.paths[row].sink:
                 k = self.sinks.index(self.paths[row].sink)
-                residual[at] -= heat["sink"][k] * x[self.sink_at[k]]
-                entries.append((np.array([at]), np.array([self.sink_at[k]]), -heat["sink"][k][None]))
+                sink = self.sink_at[k]
+                target = target + heat["sink"][k] * x[sink]
+                entries.append((np.array([at]), np.array([sink]), -np.where(free, heat["sink"][k], 0.0)[None]))
+            residual[at] += x[at] - np.where(free, target, held)
 
     def regime(self, x: np.ndarray, prepared: Prepared) -> np.ndarray:
         """Which straight line each branch stands on, booleans of shape (bit, sample)."""
@@ -126,7 +132,7 @@ class System:
         return total
 
 
-def _temperature_dependent(branches: Sequence[Branch]) -> set[str]:
+def temperature_dependent(branches: Sequence[Branch]) -> set[str]:
     """The parts whose law depends on their junction temperature."""
     found = set()
     for branch in branches:

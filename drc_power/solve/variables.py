@@ -13,20 +13,27 @@ from ..quantity import Span
 
 @dataclass(frozen=True, slots=True)
 class Variable:
-    """One side of the box. `name` reads in a sentence before the value: "+24V at", "ambient"."""
+    """One side of the box. `name` reads in a sentence before the value: "+24V at", "ambient".
+
+    A gap is a datum that nobody gave: it stands at its span, which is exact, and `probe` is a value to try, so
+    that whatever moves for the worse when it is tried is known to depend on the missing datum. `why` says which.
+    """
 
     name: str
     dimension: str
     span: Span
     mark: Mark
+    probe: float | None = None
+    why: str = ""
 
 
 @dataclass(frozen=True, slots=True)
 class Param:
-    """A number of the circuit: exact, or the box's side `index`."""
+    """A number of the circuit: exact, or the box's side `index`, or 1 less that side."""
 
     value: float
     index: int | None = None
+    complement: bool = False
 
 
 ONE = Param(1.0)
@@ -49,6 +56,13 @@ class Box:
             self.variables.append(Variable(name, dimension, span, mark))
         return Param(span.typ, self._index[name])
 
+    def gap(self, name: str, at: float, probe: float, dimension: str, why: str, mark: Mark) -> Param:
+        """The parameter for a datum that is missing: `at` is where it does nothing, `probe` a plausible value."""
+        if name not in self._index:
+            self._index[name] = len(self.variables)
+            self.variables.append(Variable(name, dimension, Span.exact(at), mark, probe, why))
+        return Param(at, self._index[name])
+
     def typical(self) -> np.ndarray:
         """The point with every side at its typical value, shape (variable,)."""
         return np.array([v.span.typ for v in self.variables], dtype=float)
@@ -64,5 +78,6 @@ def values_of(params: Sequence[Param], points: np.ndarray) -> np.ndarray:
     """The parameters' values at each point: shape (param, sample) from points of shape (sample, variable)."""
     out = np.empty((len(params), points.shape[0]))
     for row, param in enumerate(params):
-        out[row] = param.value if param.index is None else points[:, param.index]
+        given = param.value if param.index is None else points[:, param.index]
+        out[row] = 1.0 - given if param.complement and param.index is not None else given
     return out

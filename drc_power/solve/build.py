@@ -1,0 +1,62 @@
+"""From a board in one mode to its circuit."""
+
+from __future__ import annotations
+
+from ..board import Mode
+from .branches import Linear, Resistive, Source, Switching
+from .circuit import Builder, Circuit
+from .dividers import add_dividers
+from .heatpaths import add_ambient, add_heat_paths
+from .parts import MAKERS
+from .stages import add_chopped, add_stages
+from .supply import add_loads, add_rails, is_active, reference_of
+from .system import temperature_dependent
+
+
+def build_circuit(mode: Mode) -> Circuit:
+    """The circuit of a board in one mode. Raises InputError where an annotation contradicts the netlist."""
+    builder = Builder(mode)
+    add_ambient(builder)
+    add_rails(builder)
+    add_stages(builder)
+    add_loads(builder)
+    add_parts(builder)
+    add_dividers(builder)
+    add_heat_paths(builder, temperature_dependent(builder.branches))
+    return builder.finish(_references(builder))
+
+
+def add_parts(builder: Builder) -> None:
+    """Every part that needs a verdict and is in no stage, by its kind."""
+    for ref in builder.board.elements:
+        part = builder.parts[ref]
+        if ref in builder.staged or not is_active(builder, part):
+            continue
+        if ref in builder.chopped:
+            add_chopped(builder, ref)
+        elif part.kind in MAKERS:
+            MAKERS[part.kind](builder, part)
+        else:
+            builder.lack(ref, "a device whose kind the solver knows" if part.device else "device")
+
+
+GROUND_LINK_OHM = 10.0
+"""What links two grounds is a shunt, a bead or a net tie; a larger resistor between them is a load."""
+
+
+def _references(builder: Builder) -> tuple[str, ...]:
+    """The nets at zero volt: the reference, and every ground that no shunt, bead or net tie links to it."""
+    reference = reference_of(builder)
+    driven = {b.b for b in builder.branches if isinstance(b, (Linear, Switching))}
+    driven |= {b.a for b in builder.branches if isinstance(b, Source)}
+    links: dict[str, set[str]] = {}
+    for branch in builder.branches:
+        if isinstance(branch, Resistive) and branch.load is None and branch.r_ohm.value <= GROUND_LINK_OHM:
+            links.setdefault(branch.a, set()).add(branch.b)
+            links.setdefault(branch.b, set()).add(branch.a)
+    reached, queue = {reference}, [reference]
+    while queue:
+        for net in sorted(links.get(queue.pop(), set()) - reached - driven):
+            reached.add(net)
+            queue.append(net)
+    return (reference, *(net for net in builder.board.grounds if net not in reached))

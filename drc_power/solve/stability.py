@@ -1,0 +1,92 @@
+"""Heat that feeds itself: the loop gain of temperature and dissipation, and what has no equilibrium.
+
+A hotter channel has more resistance, loses more and gets hotter. The loop gain is the spectral radius of dT'/dT,
+where T' is the temperature that the losses at temperature T would settle at. Below 1 the loop settles.
+"""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+
+from .newton import Solver, take
+from .system import Prepared, System
+
+CERTAIN_BELOW = 0.5
+"""Where a bound on the loop gain lies below this, the gain itself is not computed."""
+
+HOPELESS_C = 2000.0
+"""A temperature that only a diverging loop reaches."""
+
+MAX_ROUNDS = 300
+CHUNK = 256
+
+
+def gain_bound(system: System, x: np.ndarray, prepared: Prepared) -> np.ndarray:
+    """An upper estimate of the loop gain at fixed currents, shape (sample,): the largest row sum of |R · dP/dT|."""
+    rise = np.zeros((len(system.paths), prepared.n_samples))
+    rows = {path.part: k for k, path in enumerate(system.paths)}
+    temperatures = set(system.temperature_at.tolist())
+    for family, p in zip(system.families, prepared.families, strict=True):
+        for parts, _, slopes in family.heats(x, p):
+            for columns, value in slopes:
+                for part, column, per_k in zip(parts, columns.tolist(), value, strict=True):
+                    if column in temperatures and part in rows:
+                        rise[rows[part]] += np.abs(per_k)
+    gain = prepared.heat["own"] * rise
+    for k, name in enumerate(system.sinks):
+        members = [row for row, path in enumerate(system.paths) if path.sink == name]
+        gain[members] += prepared.heat["sink"][k] * rise[members].sum(axis=0)
+    return gain.max(axis=0, initial=0.0)
+
+
+def loop_gain(solver: Solver, x: np.ndarray, prepared: Prepared) -> np.ndarray:
+    """The loop gain at x with all the network's answers to a change of temperature, shape (sample,)."""
+    t = solver.system.temperature_at
+    gains = np.zeros(prepared.n_samples)
+    if not len(t):
+        return gains
+    for first in range(0, prepared.n_samples, CHUNK):
+        samples = np.arange(first, min(first + CHUNK, prepared.n_samples))
+        free = replace(take(prepared, samples), held_c=None)
+        jacobian = solver.jacobian(x[:, samples], free)
+        rest = np.setdiff1d(np.arange(solver.system.n), t)
+        inner = jacobian[:, rest[:, None], rest]
+        answer = np.linalg.solve(inner, jacobian[:, rest[:, None], t])
+        closed = jacobian[:, t[:, None], t] - jacobian[:, t[:, None], rest] @ answer
+        gains[samples] = np.abs(np.linalg.eigvals(np.eye(len(t)) - closed)).max(axis=1)
+    return gains
+
+
+def climb(solver: Solver, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    """From the ambient upward, each round at the temperatures that the last round's losses give.
+
+    Losses that rise with temperature make this climb to the lowest equilibrium, or without end where there is none.
+    Returns the last unknowns, where an equilibrium was reached, and which followed parts ran away (part, sample).
+    """
+    system, at = solver.system, solver.system.temperature_at
+    held_c = x[at].copy()
+    settled = np.zeros(prepared.n_samples, dtype=bool)
+    for _ in range(MAX_ROUNDS):
+        x, solved = solver.solve(x, replace(prepared, held_c=held_c))
+        target = _settling_c(system, x, prepared)
+        moved = np.abs(target - held_c).max(axis=0)
+        settled |= solved & (moved < 1e-9 * (1.0 + np.abs(held_c).max(axis=0)))
+        hopeless = held_c.max(axis=0) > HOPELESS_C
+        if (settled | hopeless | ~solved).all():
+            break
+        held_c = np.where(settled | hopeless, held_c, target)
+    return x, settled, held_c > HOPELESS_C
+
+
+def _settling_c(system: System, x: np.ndarray, prepared: Prepared) -> np.ndarray:
+    """The temperatures that the present losses would settle at, shape (followed part, sample)."""
+    out = []
+    for row in system.followed:
+        t = prepared.heat["start"][row] + prepared.heat["own"][row] * x[system.power_at[row]]
+        if system.paths[row].sink:
+            k = system.sinks.index(system.paths[row].sink)
+            t = t + prepared.heat["sink"][k] * x[system.sink_at[k]]
+        out.append(t)
+    return np.array(out).reshape(len(system.followed), prepared.n_samples)

@@ -1,0 +1,98 @@
+"""Which nets are grounds: names, ground pins, capacitors and sources add up."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable
+
+from drc_power.survey import pins
+from drc_power.survey.values import ohms
+from drc_power.survey.voltages import leaf
+from drc_power.survey.wiring import Tap, Wiring
+
+_NAMES: tuple[tuple[str, float], ...] = (
+    (r"^([ADPSEICQ]|PW|PWR|MOT|USB|ISO|SIG|BAT|CHG|HV|LV|ANA|DIG)?_?GND(A|D|P|S|PWR|REF|ISO|_\w+|\d*|[A-Z]{1,4})?$|^0V?$|^GROUND$|^[A-Z0-9]+_[AP]?GND$|^COM$", 6.0),
+    (r"^[ADPV]?VSS[ADP]?$", 2.0),
+    (r"^(PACK|BATT?|B|P|VBAT|CELL|LOAD|CHG|C)_?-$|^(BAT|PACK)_?(NEG|MINUS)$|^B0$|^CELL0$|^PV-$|^DC-$", 3.0),
+)
+_LIKELY = 4.0
+_POSSIBLE = 3.0
+
+
+def _score(wiring: Wiring, net: str, capacitors: int) -> float:
+    taps = wiring.taps(net)
+    name = sum(weight for pattern, weight in _NAMES if re.match(pattern, leaf(net)))
+    named_pins = sum(1 for tap in taps if tap.kind not in ("capacitor", "resistor") and pins.is_ground_pin(tap.pin))
+    minus = sum(2.0 if tap.kind == "battery" else 1.0 for tap in taps if tap.terminal == "minus")
+    share = sum(1 for tap in taps if tap.kind == "capacitor") / max(1, capacitors)
+    return name + min(4.0, named_pins) + min(3.0, minus) + 3.0 * share
+
+
+def find_grounds(wiring: Wiring) -> frozenset[str]:
+    """The ground nets. Where no net is a likely one, the likeliest of all, so that every board has one."""
+    capacitors = sum(1 for part in wiring.parts() if wiring.kind(part.ref) == "capacitor")
+    scores = {net: _score(wiring, net, capacitors) for net in wiring.nets}
+    grounds = {net for net, score in scores.items() if score >= _LIKELY}
+    if not grounds and scores:
+        best = max(scores.values())
+        grounds = {next(net for net, score in scores.items() if score == best)} if best > 0 else set()
+    possible = {net for net, score in scores.items() if score >= _POSSIBLE}
+    return frozenset(_joined(wiring, grounds, possible))
+
+
+def _joined(wiring: Wiring, grounds: Iterable[str], possible: set[str]) -> set[str]:
+    """Adds the possible grounds that a low resistance or a transistor's channel joins to a ground."""
+    reached = set(grounds)
+    waiting = sorted(reached)
+    seen = set(waiting)
+    while waiting:
+        net = waiting.pop()
+        for tap in wiring.taps(net):
+            for other in _return_ends(wiring, tap):
+                if other in possible:
+                    reached.add(other)
+                if other not in seen and (other in possible or len(wiring.taps(other)) <= 12 and is_channel(tap)):
+                    seen.add(other)
+                    waiting.append(other)
+    return reached
+
+
+def is_channel(tap: Tap) -> bool:
+    """Whether the tap is an end of a transistor's channel."""
+    return tap.kind == "mosfet" and tap.terminal.startswith(("drain", "source"))
+
+
+def _return_ends(wiring: Wiring, tap: Tap) -> tuple[str, ...]:
+    if tap.kind in ("net-tie", "ferrite") or tap.kind == "resistor" and is_low_ohm(tap):
+        return (wiring.across(tap),)
+    if is_channel(tap):
+        suffix = "_2" if tap.terminal.endswith("_2") else ""
+        other = ("source" if tap.terminal.startswith("drain") else "drain") + suffix
+        return wiring.nets_of(tap.ref, other)
+    return ()
+
+
+_SHUNT = re.compile(r"shunt|sense|current", re.IGNORECASE)
+
+
+def is_low_ohm(tap: Tap, limit_ohm: float = 1.0) -> bool:
+    """Whether a resistor is small enough to carry supply current, or is called a shunt and says no value."""
+    value = ohms(tap.part.value)
+    if value is None:
+        return bool(_SHUNT.search(f"{tap.part.value} {tap.part.symbol} {tap.part.description}"))
+    return value <= limit_ohm
+
+
+def low_side(wiring: Wiring, grounds: frozenset[str], supplies: Iterable[str]) -> frozenset[str]:
+    """Grounds and the nets that hang on them through shunts, beads and net ties: sources of low-side switches."""
+    barred = set(supplies)
+    found = set(grounds)
+    waiting = sorted(found)
+    while waiting:
+        for tap in wiring.taps(waiting.pop()):
+            if tap.kind in ("net-tie", "ferrite") or tap.kind == "resistor" and is_low_ohm(tap):
+                other = wiring.across(tap)
+                if other and other not in found and other not in barred:
+                    found.add(other)
+                    waiting.append(other)
+    return frozenset(found)
