@@ -1,4 +1,4 @@
-"""The `nets` sections: which pins each net joins, after jumpers inside parts have joined nets."""
+"""The `nets` section: which pins each net joins, after jumpers inside parts have joined nets."""
 
 from __future__ import annotations
 
@@ -8,7 +8,7 @@ from difflib import get_close_matches
 from itertools import islice
 
 from drc_power.faults import Fault, InputError
-from drc_power.netlist.clauses import each, only_text_of, plain, text_of
+from drc_power.netlist.clauses import only_value, plain
 from drc_power.netlist.components import Component
 from drc_power.netlist.joins import JoinedNames
 from drc_power.netlist.model import Net, Node
@@ -43,13 +43,13 @@ class WrittenNet:
     at: int
 
 
-def read_nets(source: Source, sections: Iterable[Clause]) -> dict[str, WrittenNet]:
+def read_nets(source: Source, clauses: Iterable[Clause]) -> dict[str, WrittenNet]:
     """The nets by name as they are written. Raises InputError if one name has two sets of pins."""
     nets: dict[str, WrittenNet] = {}
-    for clause in each("net", sections):
+    for clause in clauses:
         net = _net(source, clause)
         known = nets.setdefault(net.name, net)
-        if _pins(known) != _pins(net):
+        if known is not net and _pins(known) != _pins(net):
             found = f"net {shown(net.name)} is written twice with different pins, first at line {source.line(known.at)}"
             raise InputError(source.fault(net.at, found, "export the netlist again"))
     return nets
@@ -60,24 +60,20 @@ def _pins(net: WrittenNet) -> set[tuple[str, str]]:
 
 
 def _net(source: Source, clause: Clause) -> WrittenNet:
-    inside = clause.by_name()
-    code, name = text_of(inside, "code"), only_text_of(source, inside, "name")
+    code, name = clause.value("code"), only_value(source, clause, "name")
     if not name and not code:
         raise InputError(source.fault(clause.at, "a net without a name", "export the netlist again"))
     name = name or f"N-00000{code}"  # the name that KiCad itself gives such a net
-    nodes = inside.get("node", ())
-    connections = (_connection(source, name, node) for node in nodes)
-    return WrittenNet(
-        name, code, text_of(inside, "class"), tuple(c for c in connections if not c.ref.startswith("#")), clause.at
-    )
+    connections = (_connection(source, name, node) for node in clause.each("node"))
+    of_parts = tuple(connection for connection in connections if not connection.ref.startswith("#"))
+    return WrittenNet(name, code, clause.value("class"), of_parts, clause.at)
 
 
 def _connection(source: Source, net: str, node: Clause) -> Connection:
-    value = {clause.name: clause.text for clause in node.clauses}
+    value = dict(node.values)
     ref, pin = value.get("ref"), value.get("pin")
     if not ref or not pin:
-        missing = "part" if not ref else "pin"
-        found = f"net {shown(net)} lists a node without a {missing}"
+        found = f"net {shown(net)} lists a node without a {'pin' if ref else 'part'}"
         raise InputError(source.fault(node.at, found, "export the netlist again"))
     return Connection(net, ref, pin, plain(value.get("pinfunction", "")), value.get("pintype", ""), node.at)
 

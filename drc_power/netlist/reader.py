@@ -12,14 +12,13 @@ from dataclasses import replace
 from types import MappingProxyType
 
 from drc_power.faults import InputError
-from drc_power.netlist.clauses import Inside, text_of
 from drc_power.netlist.components import Component, read_components
 from drc_power.netlist.foreign import not_a_netlist
 from drc_power.netlist.joins import JoinedNames
 from drc_power.netlist.model import Netlist, Part, Pin
 from drc_power.netlist.natural import natural_key
 from drc_power.netlist.nets import Connection, connections_of_parts, join_nets, joined_names, read_nets
-from drc_power.netlist.sexpr import collector_paused, parse_clauses
+from drc_power.netlist.sexpr import Clause, collector_paused, parse_clauses
 from drc_power.netlist.source import Source, read_source
 from drc_power.netlist.symbols import read_symbols
 
@@ -41,42 +40,50 @@ def _netlist(source: Source) -> Netlist:
     if fault := not_a_netlist(source):
         raise InputError(fault)
     with collector_paused():
-        sections = parse_clauses(source).by_name()
-        for name in _NEEDED_SECTIONS:
-            if name not in sections:
-                raise InputError(source.fault(0, f"the netlist has no ({name} ...)", "export it again"))
-        components = read_components(source, sections["components"], read_symbols(sections.get("libparts", ())))
-        written = read_nets(source, sections["nets"])
-        connections = connections_of_parts(source, written, components)
-        names = joined_names(source, connections, components)
-        parts = {
-            ref: _with_pins(components[ref], connections[ref], names) for ref in sorted(components, key=natural_key)
-        }
-        return Netlist(
-            path=source.path,
-            sha256=source.sha256,
-            **_heading(sections),
-            parts=MappingProxyType(parts),
-            nets=MappingProxyType(join_nets(source, written, names)),
-        )
+        return _built(source, parse_clauses(source))
 
 
-def _heading(sections: Inside) -> dict[str, str]:
+def _built(source: Source, export: Clause) -> Netlist:
+    _need_sections(source, export)
+    symbols = read_symbols(export.each_in("libparts", "libpart"))
+    components = read_components(source, export.each_in("components", "comp"), symbols)
+    written = read_nets(source, export.each_in("nets", "net"))
+    connections = connections_of_parts(source, written, components)
+    names = joined_names(source, connections, components)
+    in_order = sorted(components, key=natural_key)
+    return Netlist(
+        path=source.path,
+        sha256=source.sha256,
+        **_heading(export),
+        parts=MappingProxyType({ref: _part(components[ref], connections[ref], names) for ref in in_order}),
+        nets=MappingProxyType(join_nets(source, written, names)),
+    )
+
+
+def _need_sections(source: Source, export: Clause) -> None:
+    present = {clause.name for clause in export.clauses} | {name for name, _ in export.values}
+    for name in _NEEDED_SECTIONS:
+        if name not in present:
+            found = f"the netlist has no ({name} ...) section"
+            raise InputError(source.fault(export.at, found, "export the netlist again"))
+
+
+def _heading(export: Clause) -> dict[str, str]:
     """Version, tool, source, and the title and revision of the first sheet."""
-    design = next((clause.by_name() for clause in sections.get("design", ())), {})
-    sheets = (sheet.by_name() for sheet in design.get("sheet", ()))
-    first = min(sheets, key=lambda sheet: natural_key(text_of(sheet, "number")), default={})
-    title_block = next((clause.by_name() for clause in first.get("title_block", ())), {})
+    design = next(iter(export.each("design")), Clause("design", 0))
+    sheets = sorted(design.each("sheet"), key=lambda sheet: natural_key(sheet.value("number")))
+    title_blocks = [title_block for sheet in sheets[:1] for title_block in sheet.each("title_block")]
+    title_block = next(iter(title_blocks), Clause("title_block", 0))
     return {
-        "version": text_of(sections, "version"),
-        "tool": text_of(design, "tool"),
-        "source": text_of(design, "source"),
-        "title": text_of(title_block, "title"),
-        "revision": text_of(title_block, "rev"),
+        "version": export.value("version"),
+        "tool": design.value("tool"),
+        "source": design.value("source"),
+        "title": title_block.value("title"),
+        "revision": title_block.value("rev"),
     }
 
 
-def _with_pins(component: Component, connections: Mapping[str, list[Connection]], names: JoinedNames) -> Part:
+def _part(component: Component, connections: Mapping[str, list[Connection]], names: JoinedNames) -> Part:
     """The part with the pins that its symbol has and those that nets name, in natural order."""
     numbers = sorted({*component.pins, *connections}, key=natural_key)
     return replace(component.part, pins=tuple(_pin(component, n, connections.get(n, ()), names) for n in numbers))

@@ -1,8 +1,8 @@
 """S-expressions as KiCad writes them, read in one pass of one regular expression.
 
-A clause is `(name word word (clause) ...)`. Words are bare or quoted; KiCad 4 and 5 leave bare
-what needs no quotes, later ones quote everything. Most of a netlist is clauses of one word, such as
-`(pin "3")`, and these are taken in a single match: that is what makes the reader fast.
+`(name word ... (clause) ...)`: words are bare or quoted; KiCad 4 and 5 leave bare what needs no
+quotes, later ones quote everything. Most of a netlist is clauses of one word such as `(pin "3")`,
+and these are taken in a single match: that is what makes the reader fast.
 """
 
 from __future__ import annotations
@@ -45,12 +45,17 @@ _CONTROLS = {"a": "\a", "b": "\b", "f": "\f", "n": "\n", "r": "\r", "t": "\t", "
 
 
 class Clause:
-    """`(name word ... (clause) ...)`; `at` is the offset of its opening parenthesis."""
+    """`(name word ... (clause) ...)`; `at` is the offset of its opening parenthesis.
 
-    __slots__ = ("name", "at", "words", "clauses")
+    A clause that holds no clause, such as `(pin "3")` or `(dnp)`, is a value of the one around it:
+    `values` are pairs of name and text. `clauses` are those that hold some themselves."""
 
-    def __init__(self, name: str, at: int, words: list[str]) -> None:
-        self.name, self.at, self.words = name, at, words
+    __slots__ = ("name", "at", "words", "values", "clauses")
+
+    def __init__(self, name: str, at: int) -> None:
+        self.name, self.at = name, at
+        self.words: list[str] = []
+        self.values: list[tuple[str, str]] = []
         self.clauses: list[Clause] = []
 
     @property
@@ -58,12 +63,20 @@ class Clause:
         """The words as one text."""
         return " ".join(self.words)
 
-    def by_name(self) -> dict[str, list[Clause]]:
-        """The clauses inside, by name, each list in file order."""
-        inside: dict[str, list[Clause]] = {}
-        for clause in self.clauses:
-            inside.setdefault(clause.name, []).append(clause)
-        return inside
+    def value(self, name: str) -> str:
+        """The first value of that name, "" if there is none."""
+        for key, text in self.values:
+            if key == name:
+                return text
+        return ""
+
+    def each(self, name: str) -> list[Clause]:
+        """The clauses of that name directly inside."""
+        return [clause for clause in self.clauses if clause.name == name]
+
+    def each_in(self, section: str, name: str) -> list[Clause]:
+        """The clauses of that name inside any section of that name directly inside."""
+        return [clause for part in self.each(section) for clause in part.each(name)]
 
 
 def unescape(text: str) -> str:
@@ -96,23 +109,26 @@ def collector_paused() -> Iterator[None]:
 
 def parse_clauses(source: Source) -> Clause:
     """The one clause that a file holds. Raises InputError if the file is anything else."""
-    root = current = Clause("", 0, [])
+    root = current = Clause("", 0)
     outer: list[Clause] = []
     match = None
     for match in islice(_TOKEN.finditer(source.text), MAX_TOKENS):
         kind = match.lastindex
         if kind == _QUOTED or kind == _BARE_LEAF:
-            current.clauses.append(Clause(match[_LEAF], match.start(), [match[kind]]))
+            current.values.append((match[_LEAF], match[kind]))
         elif kind == _NAME:
             outer.append(current)
-            current = Clause(match[_NAME], match.start(), [])
-            outer[-1].clauses.append(current)
+            current = Clause(match[_NAME], match.start())
             if len(outer) > MAX_DEPTH:
                 raise _damaged(source, current.at, f"parentheses nest deeper than {MAX_DEPTH}")
         elif kind == _CLOSE:
             if not outer:
                 raise _damaged(source, match.start(), "a closing parenthesis too many")
-            current = outer.pop()
+            closed, current = current, outer.pop()
+            if closed.values or closed.clauses:
+                current.clauses.append(closed)
+            else:
+                current.values.append((closed.name, closed.text))
         elif kind == _TEXT and match.end() - match.start() <= MAX_TOKEN_CHARS:
             current.words.append(unescape(match[_TEXT]))
         elif kind == _WORD:
@@ -131,10 +147,10 @@ def _check_end(source: Source, root: Clause, current: Clause, end: int) -> None:
         line = source.line(current.at)
         found = f"the file ends inside the clause ({current.name} that opens at line {line}"
         raise InputError(source.fault(len(source.text), found, "it is cut short: export it again"))
-    if root.words or not root.clauses:
-        raise _damaged(source, 0, "text outside parentheses" if root.words else "no clause at all")
     if len(root.clauses) > 1:
         raise _damaged(source, root.clauses[1].at, "a second clause after the end of the first")
+    if root.words or root.values or not root.clauses:
+        raise _damaged(source, 0, "text around the one clause that a netlist is")
 
 
 def _bad_token(source: Source, offset: int) -> InputError:

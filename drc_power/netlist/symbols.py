@@ -1,11 +1,11 @@
-"""The `libparts` sections: the library symbols, which know every pin, connected or not."""
+"""The `libparts` section: the library symbols, which know every pin, connected or not."""
 
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 
-from drc_power.netlist.clauses import Inside, each, is_set, plain, text_of
+from drc_power.netlist.clauses import is_set, plain
 from drc_power.netlist.sexpr import Clause
 
 
@@ -40,25 +40,26 @@ Symbols = Mapping[tuple[str, str], Symbol]
 
 
 def read_symbols(libparts: Iterable[Clause]) -> Symbols:
-    """The symbols of the `libparts` sections by library and name, aliases included."""
+    """The symbols by library and name, aliases included."""
     symbols: dict[tuple[str, str], Symbol] = {}
-    for libpart in each("libpart", libparts):
-        inside = libpart.by_name()
-        symbol = Symbol(text_of(inside, "description"), _pins(inside), read_jumpers(inside))
-        aliases = (alias.text for alias in each("alias", inside.get("aliases", ())))
-        for name in (text_of(inside, "part"), *aliases):
-            key = text_of(inside, "lib"), name
+    for libpart in libparts:
+        symbol = Symbol(libpart.value("description"), _pins(libpart), read_jumpers(libpart))
+        aliases = (text for section in libpart.each("aliases") for key, text in section.values if key == "alias")
+        for name in (libpart.value("part"), *aliases):
+            key = libpart.value("lib"), name
             symbols[key] = symbols[key] | symbol if key in symbols else symbol
     return symbols
 
 
-def _pins(inside: Inside) -> dict[str, tuple[str, str]]:
-    values = ({clause.name: clause.text for clause in pin.clauses} for pin in each("pin", inside.get("pins", ())))
-    return {v["num"]: (plain(v.get("name", "")), v.get("type", "")) for v in values if "num" in v}
+def _pins(libpart: Clause) -> dict[str, tuple[str, str]]:
+    values = (dict(pin.values) for pin in libpart.each_in("pins", "pin"))
+    return {pin["num"]: (plain(pin.get("name", "")), pin.get("type", "")) for pin in values if "num" in pin}
 
 
-def read_jumpers(inside: Inside) -> Jumpers:
-    """The jumper pins that a `comp` or `libpart` clause declares, as KiCad 10 does."""
-    groups = [group for clause in inside.get("jumper_pin_groups", ()) for group in clause.clauses]
-    pins = frozenset((*group.words, *(pin.text for pin in each("pin", [group]))) for group in groups)
-    return Jumpers(pins, is_set(inside, "duplicate_pin_numbers_are_jumpers"))
+def read_jumpers(clause: Clause) -> Jumpers:
+    """The jumper pins that a `comp` or `libpart` declares, as KiCad 10 does: `(group (pin "1") (pin "3"))`."""
+    groups = frozenset(
+        tuple(text for key, text in group.values if key == "pin")
+        for group in clause.each_in("jumper_pin_groups", "group")
+    )
+    return Jumpers(groups, is_set(clause, "duplicate_pin_numbers_are_jumpers"))
