@@ -88,7 +88,7 @@ def recovery_peak_v(v_supply_v, i_trapped_a, l_h, c_f, r_ohm):
     c_f: capacitance [F].
     r_ohm: resistance [ohm].
     Returns the peak voltage [V], shape (corner,); NaN for critical damping and more.
-    Source: Kirchhoff's laws; Rashid, Power Electronics, 4th edition, section 17.5 draws it as a chart.
+    Source: Kirchhoff's laws; Rashid, Power Electronics, 4th edition, chapter 17, draws it as a chart.
 
     >>> round(float(recovery_peak_v(220.0, 20.0, 50e-6, 0.7346e-6, 6.6)), 1)
     330.1
