@@ -23,6 +23,7 @@ TALLY_ORDER = ("exceeded", "unproven", "close", "waived", "met")
 _TEMPERATURE = "°C"
 
 
+@np.errstate(all="ignore")
 def margin(value: ArrayLike, allowed: ArrayLike, *, at_least: bool = False,
            ambient_c: ArrayLike | None = None, unit: str = "") -> float | np.ndarray:
     """Share of the allowed span that is left: m = 1 − value/allowed; for a minimum m = value/allowed − 1.
@@ -51,6 +52,7 @@ def margin(value: ArrayLike, allowed: ArrayLike, *, at_least: bool = False,
     return _quotient(room, np.where(allowed == 0.0, np.abs(room), np.abs(allowed)), value)
 
 
+@np.errstate(all="ignore")
 def margin_between(value: ArrayLike, low: ArrayLike, high: ArrayLike) -> float | np.ndarray:
     """Margin between two limits: m = min(value − low, high − value) / ((high − low)/2), 1 in the middle.
 
@@ -73,8 +75,7 @@ def _floats(values: ArrayLike | None) -> np.ndarray:
 def _quotient(room: np.ndarray, scale: np.ndarray, value: np.ndarray) -> float | np.ndarray:
     """room/scale; 0 for noise around the limit, −1 for a scale that is not positive, NaN for what is not finite."""
     noise = EQUAL_WITHIN * np.where(scale > 0.0, scale, np.abs(value))
-    with np.errstate(all="ignore"):
-        found = np.where(scale > 0.0, room / scale, -1.0)
+    found = np.where(scale > 0.0, room / scale, -1.0)
     found = np.where(np.abs(room) <= noise, 0.0, found)
     endless = np.isinf(value) & np.isneginf(room) & np.isfinite(scale)
     found = np.where(np.isfinite(room) & np.isfinite(scale), found, np.where(endless, -np.inf, np.nan))
