@@ -18,7 +18,7 @@ _GROUND = r"(A|P|D|S|Q)?GND\w*|(A|P|D)?VSS\w*|EP(AD)?|E?PAD|TH(ERMAL)?_?(PAD|VIA
 _ENABLE = r"N?EN\w*|ENABLE\w*|ON(/OFF)?|OFF|N?SHDN?\w*|SHUTDOWN|SD|CE|RUN\d?|STBY|INH(IBIT)?|CTRL|S/S|ON_OFF|CONTROL"
 _FEEDBACK = r"V?FB\w*[+]?|ADJ(UST)?|V?SENSE\w*|VOS(NS)?|V?SNS\w*|COMP|VADJ|TRIM"
 _IN_MANY = r"V_?IN\w*|P?VIN\w*|VI|IN\d?|INPUT|PVIN|VLDOIN|LINE|IN[-_ ]?\w?|\+?VIN[+]?|UIN"
-_OUT_MANY = r"V_?OUT\w*|VO\d?|OUT\d?|OUTPUT|\w+_?V?OUT\d?|OUT_\w+|\+VOUT|VOUT[+]|UOUT|Q"
+_OUT_MANY = r"V_?OUT\w*|VO\d?|OUT\d?|OUTPUT|(?!REF)\w+_?V?OUT\d?|OUT_\w+|\+VOUT|VOUT[+]|UOUT|Q"
 
 PATTERNS: Mapping[str, tuple[tuple[str, str], ...]] = {
     "mosfet": (

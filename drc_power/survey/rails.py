@@ -71,6 +71,7 @@ ROWS: tuple[Row, ...] = (
     Row(lambda v: v.count(lambda t: t.kind == "connector" and t.pin.number in pins.supply_pins(t.part)), 2.0, 2.0, "supply contact of a connector"),
     Row(lambda v: len(v.decouplers()), 0.5, 1.5, "capacitors to ground"),
     Row(lambda v: any((farads(t.part.value) or 0) >= 4.7e-6 for t in v.decouplers()), 1.0, 1.0, "bulk capacitor"),
+    Row(lambda v: not v.decouplers() and not v.count(_is_supply_tap) and v.count(lambda t: t.kind == "ic" and t.pin.type == "output"), -3.0, -3.0, "driven by a signal output"),
     Row(lambda v: v.count(_is_signal_tap), -1.0, -3.0, "signal pins of chips"),
 )
 

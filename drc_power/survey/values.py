@@ -37,6 +37,7 @@ def _tokens(text: str) -> tuple[str, ...]:
 _OHM_TOKEN = re.compile(
     rf"^R?{_NUMBER}(?P<prefix>meg|[pnuµμmkKMgGRrEeΩω]|ohms?|)(?P<rest>\d*){_UNIT['ohm']}?(?:,?\d*[.]?\d*%)?$", re.IGNORECASE
 )
+_FORMULA = re.compile(r"['\"?{<>*]")
 _R_FIRST = re.compile(r"^R(?P<rest>\d{2,4})$")
 _PACKAGE = re.compile(r"^[RCL]?(?:0201|0402|0603|0805|1005|1206|1210|1608|1812|2010|2012|2512|3216|2725|2817|4527)$")
 
@@ -48,6 +49,8 @@ def ohms(text: str) -> float | None:
     >>> ohms("4k7"), ohms("0R01"), ohms("R005"), ohms("R0402_4R7_1%_0.0625W"), ohms("5mR"), ohms("1u/25V")
     (4700.0, 0.01, 0.005, 4.7, 0.005, 1e-06)
     """
+    if _FORMULA.search(text):
+        return None
     tokens = _tokens(text)
     for token in tokens:
         if _PACKAGE.match(token) and len(tokens) > 1:

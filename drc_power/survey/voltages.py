@@ -7,7 +7,7 @@ from functools import lru_cache
 
 _CONTROL = re.compile(
     r"(^|[_./~{-])(N?EN|ENABLE|PG|PGOOD|PWRGD|GOOD|OK|SENSE|SNS|FB|FLT|FAULT|MON|DET|ADC|ON|OFF|SEL|CTRL|TRIG|IMON|ISENSE|RST|RESET|ALERT|DIS|SHDN|PWM|LED|MEAS)"
-    r"(\d*[NB]?)($|[_./})+-])|^~|#$|SENSE|_N$"
+    r"(\d*[NB]?)($|[_./})+-])|^~|#$|SENSE|_N$|V\d?PG(OOD)?$"
 )
 _BETWEEN = re.compile(r"(?<![\d.])([+-]?)(?:[NP]{1,2}(?=\d))?(\d{1,3})[VP](\d{1,2})(?!\d)")
 _PLAIN = re.compile(r"(?<![\d.A-UW-Z])([+-]?)P?(\d{1,3}(?:[.,]\d{1,2})?)V(?!\d)")
