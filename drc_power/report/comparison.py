@@ -20,14 +20,13 @@ from drc_power.report.phrases import (
     place_parts,
     subject_text,
 )
-from drc_power.text import NOT_KNOWN, display_width, fit, natural_key, pad, printable, shorten
+from drc_power.text import NOT_KNOWN, display_width, fit, natural_key, pad, printable
 
 MOST_ROWS = 12
 _MOST_NAMES = 24
 _NARROWEST = 60
 _CELL_WIDTH = 44
-_NAME_CHARS = 60
-_LINE_CHARS = 2_000
+_NAME_CHARS = 80
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,7 +47,8 @@ def comparison_markdown(comparison: Comparison) -> str:
         table = _markdown_table(section)
         body = [*table, *([""] if table and section.more else []), *([section.more] if section.more else [])]
         lines += [f"**{section.title}**", "", *body, ""] if section.open else folded(section.title, body)
-    lines += [f"- {prose(line, _LINE_CHARS)}" for line in _board_lines(comparison)]
+    changes = _board_changes(comparison).items()
+    lines += [f"- {title}: {_listed([code(name, _NAME_CHARS) for name in names])}" for title, names in changes]
     return "\n".join(lines).rstrip("\n") + "\n"
 
 
@@ -60,7 +60,8 @@ def comparison_table(comparison: Comparison, width: int = 100, colour: bool = Fa
     for section in _sections(comparison):
         lines += ["", f"{bold[0]}{section.title}{bold[1]}", *_text_table(section, width)]
         lines += [fit(section.more, width)] if section.more else []
-    board = [fit(printable(line), width) for line in _board_lines(comparison)]
+    changes = _board_changes(comparison).items()
+    board = [_cut(printable(f"{title}: {_listed(names)}"), width) for title, names in changes]
     return "\n".join([*lines, *([""] if board else []), *board]) + "\n"
 
 
@@ -153,23 +154,23 @@ def _arrow(before: str, now: str) -> str:
     return now if before == now else f"{before} → {now}"
 
 
-def _board_lines(comparison: Comparison) -> list[str]:
-    """What changed on the board and in the annotation, a line for each kind of change."""
-    listed = {
+def _board_changes(comparison: Comparison) -> dict[str, list[str]]:
+    """What changed on the board and in the annotation: for each kind of change that there is, the things changed."""
+    changes = {
         "Parts added": [_named(part, "value") for part in comparison.parts_added],
         "Parts removed": [_named(part, "value") for part in comparison.parts_removed],
         "Value or device changed": [_changed(pair, "value", "device") for pair in comparison.revalued],
         "Re-annotated": [_arrow(pair.base["ref"], pair.head["ref"]) for pair in comparison.reannotated],
         "Moved": [f"{pair.head['ref']} ({_changed_from(pair, 'sheet')})" for pair in comparison.moved],
         "Sheets renamed": [_arrow(*names) for names in comparison.sheets_renamed],
-        **_row_lines("Rails", comparison.rails),
-        **_row_lines("Loads", comparison.loads),
-        **_row_lines("Rules", comparison.rules),
+        **_row_changes("Rails", comparison.rails),
+        **_row_changes("Loads", comparison.loads),
+        **_row_changes("Rules", comparison.rules),
     }
-    return [f"{title}: {_listed(names)}" for title, names in listed.items() if names]
+    return {title: sorted(names, key=natural_key) for title, names in changes.items() if names}
 
 
-def _row_lines(kind: str, changes: RowChanges) -> dict[str, list[str]]:
+def _row_changes(kind: str, changes: RowChanges) -> dict[str, list[str]]:
     return {
         f"{kind} added": list(changes.added),
         f"{kind} removed": list(changes.removed),
@@ -195,9 +196,8 @@ def _changed_from(pair: Pair, name: str) -> str:
 
 
 def _listed(names: Sequence[str]) -> str:
-    ordered = [shorten(name, _NAME_CHARS) for name in sorted(names, key=natural_key)]
-    more = [f"and {len(ordered) - _MOST_NAMES} more"] if len(ordered) > _MOST_NAMES else []
-    return ", ".join([*ordered[:_MOST_NAMES], *more])
+    more = [f"and {len(names) - _MOST_NAMES} more"] if len(names) > _MOST_NAMES else []
+    return ", ".join([*names[:_MOST_NAMES], *more])
 
 
 def _markdown_table(section: Section) -> list[str]:

@@ -70,7 +70,7 @@ def read_result(path: str) -> dict[str, Any]:
     except UnicodeDecodeError:
         raise InputError(Fault(Mark(path), "is not UTF-8 text", _INSTEAD)) from None
     except (OSError, ValueError) as error:
-        reason = getattr(error, "strerror", None) or str(error)
+        reason = (getattr(error, "strerror", None) or str(error)).lower()
         raise InputError(Fault(Mark(printable(path)), f"cannot be read: {reason}", _INSTEAD)) from None
     return load_result(text, path)
 

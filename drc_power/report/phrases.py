@@ -111,4 +111,4 @@ def remarks(result: Result) -> list[str]:
     """The run's notes, and what a reader must know about its waivers."""
     undated = result.today is None and any(finding.verdict == "waived" for finding in result.findings)
     extra = ["The end dates of waivers were not judged, because the check was run without --today."] if undated else []
-    return [*result.notes, *extra]
+    return [*(note for note in result.notes if note.strip()), *extra]
