@@ -1,24 +1,27 @@
-"""How one value of an input file is read. Each name is a type for a record's field, with its reader inside."""
+"""How one value of an input file is read. Each name in capitals is a type for a record's field, with its reader inside.
+
+A reader takes a piece of the tree and returns a value, or raises a complaint that carries the place.
+"""
 
 from __future__ import annotations
 
 import datetime
 import re
-from collections.abc import Callable, Iterable
-from types import MappingProxyType
+from collections.abc import Callable
 from typing import Annotated, Any, TypeVar
 
-from pydantic import AfterValidator, BeforeValidator, PlainValidator
+from pydantic import BeforeValidator, PlainValidator, ValidationError
 from pydantic_core import PydanticCustomError
 
-from ..quantity import QuantityError, Span, example_of, parse_any, parse_span, span_from_ends
-from .record import complaint, describe, shorten, together
+from ..quantity import QuantityError, Span, a_dimension, parse_any, span_from_ends, such_as
+from .record import complaint, complaints_of, describe, shorten, together
 from .suggest import nearest
 from .tree import Blank, Branch, Row
-from .values import NOWHERE, Quantity, Table, Text
+from .values import Quantity, Table, Text
 
 T = TypeVar("T")
-_ENDS = ("min", "typ", "max")
+Reader = Callable[[Any], Any]
+ENDS = ("min", "typ", "max")
 
 
 def due(node: Any, what: str, instead: str) -> PydanticCustomError:
@@ -26,15 +29,31 @@ def due(node: Any, what: str, instead: str) -> PydanticCustomError:
     return complaint(node.mark, f"{what} is due here, found {describe(node)}", instead)
 
 
-# --- words ---------------------------------------------------------------------------------------
+def each(reader: Reader, nodes: Any) -> list[Any]:
+    """Every node read, with the complaints of all of them together."""
+    values: list[Any] = []
+    complaints: list[PydanticCustomError] = []
+    for node in nodes:
+        try:
+            values.append(reader(node))
+        except PydanticCustomError as error:
+            complaints.append(error)
+        except ValidationError as error:
+            complaints += complaints_of(error)
+    if complaints:
+        raise together(complaints)
+    return values
+
+
+# --- words -------------------------------------------------------------------------------------------------------
 
 
 def read_word(node: Any) -> Text:
-    """One word or phrase."""
+    """One word or phrase on one line."""
     if not isinstance(node, Text) or isinstance(node, Blank):
         raise due(node, "a text", "write one word or phrase")
     if not node.strip() or not node.isprintable():
-        raise complaint(node.mark, "a text without visible content, or with control characters", "write plain text")
+        raise complaint(node.mark, f"the text {shorten(node)!r} is empty or has control characters", "write plain text on one line")
     return node
 
 
@@ -44,7 +63,7 @@ def read_words(node: Any) -> tuple[Text, ...]:
         return (read_word(node),)
     if not node:
         raise complaint(node.mark, "an empty list", "name at least one, or leave the key out")
-    return tuple(read_word(each) for each in node)
+    return tuple(each(read_word, node))
 
 
 def read_flag(node: Any) -> bool:
@@ -59,15 +78,15 @@ def read_flag(node: Any) -> bool:
 def read_date(node: Any) -> datetime.date:
     """A calendar day, YYYY-MM-DD."""
     try:
-        if re.fullmatch(r"\d{4}-\d\d-\d\d", str(read_word(node)), re.ASCII):
+        if isinstance(node, Text) and re.fullmatch(r"[0-9]{4}-[0-9]{2}-[0-9]{2}", node):
             return datetime.date.fromisoformat(node)
     except ValueError:
         pass
     raise due(node, "a date", "write it as 2027-03-31")
 
 
-def one_of(*words: str) -> PlainValidator:
-    """The reader of a word from a fixed choice."""
+def choice(*words: str) -> Reader:
+    """The reader of one word from a fixed choice."""
 
     def read(node: Any) -> Text:
         word = read_word(node)
@@ -75,18 +94,24 @@ def one_of(*words: str) -> PlainValidator:
             raise complaint(word.mark, f"{shorten(word)!r} is not known here", nearest(word, words))
         return word
 
-    return PlainValidator(read)
+    return read
 
 
-# --- quantities ----------------------------------------------------------------------------------
+def one_of(*words: str) -> PlainValidator:
+    """A field that takes one word from a fixed choice."""
+    return PlainValidator(choice(*words))
+
+
+# --- quantities --------------------------------------------------------------------------------------------------
 
 
 def quantity_from(node: Any, *dimensions: str) -> Quantity:
-    """A quantity of one of the dimensions, from text or from a {min, typ, max} mapping."""
+    """A quantity of one of the dimensions, from text or from a {min, typ, max} mapping (which may name its source)."""
     if isinstance(node, Branch):
         return _from_ends(node, dimensions)
     if not isinstance(node, Text) or isinstance(node, Blank):
-        raise due(node, f"a {dimensions[0].replace('_', ' ')}", f"write it as {example_of(dimensions[0])}")
+        what = " or ".join(a_dimension(dimension) for dimension in dimensions)
+        raise due(node, what, such_as(dimensions))
     try:
         dimension, span = parse_any(node, dimensions)
     except QuantityError as error:
@@ -95,47 +120,112 @@ def quantity_from(node: Any, *dimensions: str) -> Quantity:
 
 
 def _from_ends(branch: Branch, dimensions: tuple[str, ...]) -> Quantity:
-    wrong = [complaint(key.mark, f"{shorten(key)!r} is not an end of a span", nearest(key, _ENDS))
-             for key in branch if key not in _ENDS]
-    if wrong or not branch:
-        raise together(wrong) if wrong else complaint(branch.mark, "an empty span", "write {min: ..., typ: ..., max: ...}")
-    ends = {key: quantity_from(branch[key], *dimensions) for key in branch}
-    named = {end.dimension for end in ends.values()}
-    if len(named) > 1:
-        raise complaint(branch.mark, "a span whose ends have different units", "write every end in the same unit")
-    for key, end in ends.items():
-        if not end.span.is_exact:
-            raise complaint(end.mark, f"the end {key!r} is itself a span", "write one value for each end")
+    _refuse_other_keys(branch)
+    given = [key for key in branch if key in ENDS]
+    ends = dict(zip(given, each(lambda key: _end(branch[key], dimensions), given), strict=True))
+    if len({end.dimension for end in ends.values()}) > 1:
+        raise complaint(branch.mark, "a span whose ends measure different things", "write every end in the same unit")
     try:
         span = span_from_ends(**{key: end.typ for key, end in ends.items()})
     except QuantityError as error:
         raise complaint(branch.mark, error.found, error.instead) from None
     text = "{" + ", ".join(f"{key}: {end.text}" for key, end in ends.items()) + "}"
-    return Quantity(span, named.pop(), text, branch.mark)
+    source = read_word(branch["source"]) if "source" in branch else None
+    return Quantity(span, next(iter(ends.values())).dimension, text, branch.mark, source)
 
 
-def quantity(*dimensions: str, least: float | None = None, above: float | None = None, most: float | None = None) -> PlainValidator:
-    """The reader of a quantity. `least`, `above` and `most` bound both ends of its span, in SI units."""
+def _refuse_other_keys(branch: Branch) -> None:
+    wrong = [key for key in branch if key not in (*ENDS, "source")]
+    if wrong:
+        raise together(complaint(key.mark, f"{shorten(key)!r} is not an end of a span", nearest(key, ENDS)) for key in wrong)
+
+
+def _end(node: Any, dimensions: tuple[str, ...]) -> Quantity:
+    if not isinstance(node, Text):
+        raise due(node, "one value", such_as(dimensions))
+    end = quantity_from(node, *dimensions)
+    if not end.span.is_exact:
+        raise complaint(end.mark, f"{shorten(end.text)!r} is a span where one value is due", "write one value for each end")
+    return end
+
+
+def reader(*dimensions: str, least: float | None = None, above: float | None = None, most: float | None = None) -> Reader:
+    """The reader of a quantity. `least`, `above` and `most` bound the whole of its span, in SI units."""
 
     def read(node: Any) -> Quantity:
-        read_one = quantity_from(node, *dimensions)
-        problem = out_of_range(read_one.span, least, above, most)
+        value = quantity_from(node, *dimensions)
+        problem = _out_of_range(value.span, least, above, most)
         if problem:
-            raise complaint(read_one.mark, f"{shorten(read_one.text)!r} {problem}", f"write it as {example_of(dimensions[0])}")
-        return read_one
+            raise complaint(value.mark, f"{shorten(value.text)!r} {problem}", such_as(dimensions))
+        return value
 
-    return PlainValidator(read)
+    return read
 
 
-def out_of_range(span: Span, least: float | None, above: float | None, most: float | None) -> str:
-    """Why a span is impossible for what it stands for, or ""."""
+def quantity(*dimensions: str, **bounds: float) -> PlainValidator:
+    """A field that takes a quantity; see `reader`."""
+    return PlainValidator(reader(*dimensions, **bounds))
+
+
+def _out_of_range(span: Span, least: float | None, above: float | None, most: float | None) -> str:
     if least is not None and span.min < least:
-        return "is negative where that cannot be" if least == 0 else "is below what is possible"
+        return "is negative, which cannot be here" if least == 0 else f"is less than {least:g}"
     if above is not None and span.min <= above:
-        return "is not above zero where it must be" if above == 0 else "is below what is possible"
+        return "is not above zero, which it must be here" if above == 0 else f"is not above {above:g}"
     if most is not None and span.max > most:
-        return "is above what is possible"
+        return "is more than 100 %" if most == 1 else f"is more than {most:g}"
     return ""
+
+
+# --- tables ------------------------------------------------------------------------------------------------------
+
+
+def table_reader(*columns: Reader, rising: bool = True) -> Reader:
+    """The reader of a list of points, one reader per column. `rising`: the first column must rise strictly."""
+
+    def read(node: Any) -> Table:
+        if not isinstance(node, Row) or not node:
+            raise due(node, "a list of points", "write [[x, y], [x, y], ...]")
+        rows = each(lambda row: _point(row, columns), node)
+        if rising:
+            _refuse_unsorted(rows)
+        dimensions = tuple(cell.dimension for cell in rows[0])
+        _refuse_mixed(rows, dimensions)
+        return Table(tuple(tuple(cell.typ for cell in row) for row in rows), dimensions, node.mark)
+
+    return read
+
+
+def table(*columns: Reader, rising: bool = True) -> PlainValidator:
+    """A field that takes a table; see `table_reader`."""
+    return PlainValidator(table_reader(*columns, rising=rising))
+
+
+def _point(row: Any, columns: tuple[Reader, ...]) -> list[Quantity]:
+    if not isinstance(row, Row) or len(row) != len(columns):
+        raise due(row, f"a point of {len(columns)} values", "write [x, y]")
+    cells = each(lambda pair: pair[0](pair[1]), zip(columns, row, strict=True))
+    for cell in cells:
+        if not cell.span.is_exact:
+            raise complaint(cell.mark, f"{shorten(cell.text)!r} is a span inside a table", "write one value")
+    return cells
+
+
+def _refuse_unsorted(rows: list[list[Quantity]]) -> None:
+    for before, after in zip(rows, rows[1:], strict=False):
+        if after[0].typ <= before[0].typ:
+            found = f"{shorten(after[0].text)!r} does not rise above {shorten(before[0].text)!r} before it"
+            raise complaint(after[0].mark, found, "sort the points by their first value, and keep one of each")
+
+
+def _refuse_mixed(rows: list[list[Quantity]], dimensions: tuple[str, ...]) -> None:
+    for cell, dimension in ((cell, dimension) for row in rows for cell, dimension in zip(row, dimensions, strict=True)):
+        if cell.dimension != dimension:
+            raise complaint(cell.mark, f"{shorten(cell.text)!r} is {a_dimension(cell.dimension)} in a column of another kind",
+                            such_as((dimension,)))
+
+
+# --- collections -------------------------------------------------------------------------------------------------
 
 
 def as_branch(node: Any) -> Branch:
@@ -148,7 +238,9 @@ def as_branch(node: Any) -> Branch:
 
 
 def as_row(node: Any) -> Row:
-    """A list."""
+    """A list; nothing at all is an empty one."""
+    if isinstance(node, Blank):
+        return Row(node.mark)
     if not isinstance(node, Row):
         raise due(node, "a list", "write [..., ...]")
     return node
@@ -162,28 +254,34 @@ Named = Annotated[dict[Word, T], BeforeValidator(as_branch)]
 Listed = Annotated[tuple[T, ...], BeforeValidator(as_row)]
 
 Voltage = Annotated[Quantity, quantity("voltage")]
-Overvoltage = Annotated[Quantity, quantity("voltage", least=0)]
+VoltageMagnitude = Annotated[Quantity, quantity("voltage", least=0)]
+VoltageRating = Annotated[Quantity, quantity("voltage", above=0)]
 Current = Annotated[Quantity, quantity("current", least=0)]
-CurrentLimit = Annotated[Quantity, quantity("current", above=0)]
+CurrentRating = Annotated[Quantity, quantity("current", above=0)]
 Power = Annotated[Quantity, quantity("power", least=0)]
-Energy = Annotated[Quantity, quantity("energy", least=0)]
+PowerRating = Annotated[Quantity, quantity("power", above=0)]
 Resistance = Annotated[Quantity, quantity("resistance", least=0)]
-LoadResistance = Annotated[Quantity, quantity("resistance", above=0)]
+ResistanceAboveZero = Annotated[Quantity, quantity("resistance", above=0)]
 Capacitance = Annotated[Quantity, quantity("capacitance", above=0)]
 Inductance = Annotated[Quantity, quantity("inductance", above=0)]
 Charge = Annotated[Quantity, quantity("charge", least=0)]
 Frequency = Annotated[Quantity, quantity("frequency", above=0)]
 Time = Annotated[Quantity, quantity("time", above=0)]
+EdgeTime = Annotated[Quantity, quantity("time", least=0)]
 Slew = Annotated[Quantity, quantity("slew", above=0)]
 Angle = Annotated[Quantity, quantity("angle")]
 Temperature = Annotated[Quantity, quantity("temperature")]
 TemperatureRise = Annotated[Quantity, quantity("temperature_difference", least=0)]
 ThermalResistance = Annotated[Quantity, quantity("thermal_resistance", least=0)]
+ThermalResistanceAboveZero = Annotated[Quantity, quantity("thermal_resistance", above=0)]
 HeatCapacity = Annotated[Quantity, quantity("thermal_capacity", above=0)]
 ThermalConductivity = Annotated[Quantity, quantity("conductivity", above=0)]
 Length = Annotated[Quantity, quantity("length", above=0)]
-Altitude = Annotated[Quantity, quantity("length")]
+Altitude = Annotated[Quantity, quantity("length", least=-500, most=9000)]
 Area = Annotated[Quantity, quantity("area", above=0)]
 Ratio = Annotated[Quantity, quantity("ratio", least=0, most=1)]
 Factor = Annotated[Quantity, quantity("number", "ratio", least=0)]
+Share = Annotated[Quantity, quantity("number", "ratio", least=0, most=1)]
 Count = Annotated[Quantity, quantity("count", above=0)]
+TemperatureCoefficient = Annotated[Quantity, quantity("tempco")]
+VoltageCoefficient = Annotated[Quantity, quantity("voltage_tempco")]

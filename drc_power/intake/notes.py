@@ -9,11 +9,12 @@ from pydantic import BeforeValidator, Field, PlainValidator
 from pydantic_core import PydanticCustomError
 
 from .fields import (
-    Altitude, Angle, Area, Capacitance, Count, Current, CurrentLimit, Factor, Flag, Frequency, HeatCapacity,
-    Inductance, Length, Listed, LoadResistance, Named, Overvoltage, Power, Ratio, Resistance, Slew, Temperature,
-    TemperatureRise, ThermalConductivity, ThermalResistance, Time, Voltage, Word, Words, one_of, quantity_from, read_word,
+    Altitude, Angle, Area, Capacitance, Count, Current, CurrentRating, Factor, Flag, Frequency, HeatCapacity, Inductance,
+    Length, Listed, Named, Power, PowerRating, Ratio, Resistance, ResistanceAboveZero, Share, Slew, Temperature,
+    TemperatureRise, ThermalConductivity, ThermalResistance, Time, Voltage, VoltageMagnitude, Word, Words,
+    one_of, quantity_from, read_word, reader,
 )
-from .record import Record, complaint
+from .record import Record, complaint, unknown_keys
 from .tree import Blank, Branch, Row
 from .values import Quantity, Text
 
@@ -29,7 +30,7 @@ class EnclosureNote(Record):
 
 
 def _air(node: Any) -> Text | Quantity:
-    return read_word(node) if node == "still" else quantity_from(node, "speed")
+    return read_word(node) if node == "still" else reader("speed", above=0)(node)
 
 
 class Surroundings(Record):
@@ -58,8 +59,8 @@ class RailNote(Record):
     source: Words = ()
     return_: Word | None = None
     resistance: Resistance | None = None
-    limit: CurrentLimit | None = None
-    ac: Overvoltage | None = None
+    limit: CurrentRating | None = None
+    ac: VoltageMagnitude | None = None
     frequency: Frequency | None = None
     held_by: Word | None = None
 
@@ -77,10 +78,29 @@ class LoadNote(Record):
     return_: Word | None = None
     draws: Current | None = None
     power: Power | None = None
-    resistance: LoadResistance | None = None
+    resistance: ResistanceAboveZero | None = None
     kind: Annotated[Text, one_of("motor")] | None = None
     needs: Voltage | None = None
     heats: Word | None = None
+
+    @property
+    def is_motor(self) -> bool:
+        """Whether `resistance` may stand beside a demand, for the stalled motor."""
+        return self.kind == "motor"
+
+    @property
+    def demands(self) -> tuple[str, ...]:
+        """The keys that say what the load takes; a motor's resistance is one only where no other is given."""
+        given = tuple(key for key in DEMANDS if getattr(self, key) is not None)
+        return given[:1] if self.is_motor and given[1:] == ("resistance",) else given
+
+    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
+        if len(self.demands) > 1:
+            yield complaint(self.mark, f"a load with {' and '.join(self.demands)}", "give one of draws, power, resistance")
+        if self.net and self.between:
+            yield complaint(self.source_of("between"), "a load with net and between", "give one of them")
+        if len(self.between) == 1:
+            yield complaint(self.source_of("between"), "a load between one net alone", "write between: [A, B]")
 
 
 class InterfaceNote(Record):
@@ -95,7 +115,7 @@ class InterfaceNote(Record):
 
 def _interface(node: Any) -> Any:
     made_of = isinstance(node, Branch) and not set(node) & {"min", "typ", "max"}
-    return InterfaceNote.model_validate(node) if made_of else quantity_from(node, "thermal_resistance")
+    return InterfaceNote.model_validate(node) if made_of else reader("thermal_resistance", least=0)(node)
 
 
 class HeatNote(Record):
@@ -119,7 +139,7 @@ class PartNote(Record):
     duty: Ratio | None = None
     frequency: Frequency | None = None
     gate: Voltage | None = None
-    overshoot: Overvoltage | None = None
+    overshoot: VoltageMagnitude | None = None
     pins: Named[Words] = {}
     heat: HeatNote | None = None
     draws: Current | None = None
@@ -174,8 +194,22 @@ class StageNote(Record):
     duty: Ratio | None = None
     dead_time: Time | None = None
     modulation: Factor | None = None
-    power_factor: Factor | None = None
+    power_factor: Share | None = None
     phase: Angle | None = None
+
+    def complaints_for(self, kind: str) -> list[PydanticCustomError]:
+        """The keys that a stage of this kind does not take."""
+        return _foreign_keys(self, STAGE_KEYS[kind].split(), f"a {kind} stage")
+
+    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
+        return self.complaints_for(self.kind) if self.kind else ()
+
+
+def _foreign_keys(record: Record, allowed: Iterable[str], what: str) -> list[PydanticCustomError]:
+    keys = Branch(record.mark)
+    for attribute in record.written:
+        keys.put(Text(attribute.rstrip("_"), record.source_of(attribute)), Text("", record.source_of(attribute)))
+    return unknown_keys(keys, ("kind", *allowed), what)
 
 
 EVENT_KEYS = {
@@ -190,6 +224,9 @@ EVENT_KEYS = {
     "waveform": "file columns scale",
 }
 """The keys of each kind of event, besides `EVENT_KEYS_OF_ALL`."""
+
+EVENTS_OF_A_LOAD = ("stall", "overload")
+"""Kinds that need name no part: the load, or the mode, says which parts carry it."""
 
 EVENT_KEYS_OF_ALL = ("kind", "part", "parts", "from", "every", "sharing")
 
@@ -224,8 +261,8 @@ class EventNote(Record):
     sharing: Annotated[Text, one_of("one", "even")] | None = None
     capacitance: Capacitance | None = None
     slew: Slew | None = None
-    limit: CurrentLimit | None = None
-    power_limit: Power | None = None
+    limit: CurrentRating | None = None
+    power_limit: PowerRating | None = None
     resistance: Resistance | None = None
     voltage: Voltage | None = None
     charged_to: Voltage | None = None
@@ -243,6 +280,13 @@ class EventNote(Record):
     columns: ColumnNames | None = None
     scale: Named[Factor] = {}
 
+    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
+        yield from _foreign_keys(self, (*EVENT_KEYS_OF_ALL, *EVENT_KEYS[self.kind].split()), f"an event of kind {self.kind}")
+        if self.part and self.parts:
+            yield complaint(self.source_of("parts"), "an event with part and parts", "give one of them")
+        if not self.part and not self.parts and self.kind not in EVENTS_OF_A_LOAD:
+            yield complaint(self.mark, f"an event of kind {self.kind} that names no part", "give part: or parts:")
+
 
 class SinkNote(Record):
     """A heat sink, by its resistance or by its geometry."""
@@ -258,7 +302,7 @@ class SinkNote(Record):
     base: Length | None = None
     width: Length | None = None
     material: Word | None = None
-    emissivity: Ratio | None = None
+    emissivity: Share | None = None
     faces: Annotated[Text, one_of("vertical", "horizontal", "up", "down")] | None = None
 
 
@@ -319,9 +363,9 @@ def _load_in_mode(node: Any) -> Any:
     """In a mode a bare quantity means draws, power or resistance by its unit."""
     if not isinstance(node, Text) or isinstance(node, Blank):
         return node
-    demand = {"current": "draws", "power": "power", "resistance": "resistance"}
+    key = {"current": "draws", "power": "power", "resistance": "resistance"}
     branch = Branch(node.mark)
-    branch.put(Text(demand[quantity_from(node, *demand).dimension], node.mark), node)
+    branch.put(Text(key[quantity_from(node, *key).dimension], node.mark), node)
     return branch
 
 

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
+import functools
 from collections.abc import Iterable, Mapping
-from types import MappingProxyType
 from typing import Any, ClassVar, Self
 
 from pydantic import BaseModel, ConfigDict, PrivateAttr, ValidationError, model_validator
@@ -14,8 +14,6 @@ from .suggest import nearest
 from .tree import Blank, Branch
 from .values import NOWHERE, Text
 
-_NO_SOURCES: Mapping[str, Mark] = MappingProxyType({})
-
 
 def complaint(mark: Mark, found: str, instead: str = "") -> PydanticCustomError:
     """The error that a reader raises; `faults_of` turns it into a `Fault`."""
@@ -24,25 +22,39 @@ def complaint(mark: Mark, found: str, instead: str = "") -> PydanticCustomError:
 
 def together(complaints: Iterable[PydanticCustomError]) -> ValidationError:
     """Several complaints as one error, for a reader that does not stop at the first."""
-    return ValidationError.from_exception_data(
-        "input", [InitErrorDetails(type=each, loc=(), input=None) for each in complaints]
-    )
+    rows = [InitErrorDetails(type=each, loc=(), input=None) for each in complaints]
+    return ValidationError.from_exception_data("input", rows)
 
 
 def complaints_of(error: ValidationError) -> list[PydanticCustomError]:
     """The complaints inside an error that a nested reader raised."""
-    return [complaint(**row["ctx"]) for row in error.errors(include_url=False, include_input=False)]
+    rows = error.errors(include_url=False, include_input=False)
+    return [complaint(**row["ctx"]) for row in rows]
 
 
-def faults_of(error: ValidationError) -> tuple[Fault, ...]:
-    """Every complaint as a `Fault`, in the order of the file."""
-    return tuple(sorted(Fault(**each.context) for each in complaints_of(error)))
+def faults_of(error: ValidationError) -> list[Fault]:
+    """Every complaint as a `Fault`, in the order of the file, each once."""
+    return sorted({Fault(**each.context) for each in complaints_of(error)})
+
+
+def describe(node: Any) -> str:
+    """What a piece of a tree is, in words."""
+    if isinstance(node, Branch):
+        return "a mapping"
+    if isinstance(node, Blank):
+        return "nothing"
+    return f"{shorten(node)!r}" if isinstance(node, Text) else "a list"
+
+
+def shorten(text: str, width: int = 40) -> str:
+    """The text, cut where a message would grow too long."""
+    return str(text) if len(text) <= width else text[: width - 3] + "..."
 
 
 class Record(BaseModel):
     """A mapping of an input file. Attributes mirror its keys; a key left out is None or empty.
 
-    `-` in a key becomes `_`, and a key that Python reserves takes a `_` at its end (`return_`, `from_`).
+    A key that Python reserves takes a `_` at its end: `return_`, `from_`, `with_`.
     """
 
     model_config = ConfigDict(
@@ -55,15 +67,23 @@ class Record(BaseModel):
     IS: ClassVar[str] = "a record"
     NEEDS: ClassVar[tuple[str, ...]] = ()
     _mark: Mark = PrivateAttr(NOWHERE)
-    _sources: Mapping[str, Mark] = PrivateAttr(_NO_SOURCES)
+    _sources: Mapping[str, Mark] = PrivateAttr(default_factory=dict)
 
     @classmethod
     def of(cls, mark: Mark = NOWHERE, **values: Any) -> Self:
         """A record from values already read, as attributes; what is not given stays at its default."""
         record = cls.model_construct(**values)
         record._mark = mark
-        record._sources = MappingProxyType(dict.fromkeys(values, mark))
+        record._sources = dict.fromkeys(values, mark)
         return record
+
+    @classmethod
+    def read(cls, node: Any) -> Self:
+        """The record of a tree. Raises `InputError` with every fault of it."""
+        try:
+            return cls.model_validate(node)
+        except ValidationError as error:
+            raise InputError(*faults_of(error)) from None
 
     @property
     def mark(self) -> Mark:
@@ -81,92 +101,72 @@ class Record(BaseModel):
 
     def over(self, base: Self) -> Self:
         """This record laid over `base`, key by key: what is written here wins."""
-        changes = {key: getattr(self, key) for key in self.written}
-        merged = base.model_copy(update=changes)
-        merged._sources = MappingProxyType({**base._sources, **self._sources})
-        merged._mark = self._mark if base._mark == NOWHERE else base._mark
+        merged = base.model_copy(update={key: getattr(self, key) for key in self.written})
+        merged._sources = {**base._sources, **self._sources}
+        merged._mark = base._mark if base.written else self._mark
         return merged
 
+    def without(self, *keys: str) -> Self:
+        """This record as if some keys were not written."""
+        defaults = type(self).of()
+        changed = self.model_copy(update={key: getattr(defaults, key) for key in keys})
+        changed._sources = {key: mark for key, mark in self._sources.items() if key not in keys}
+        return changed
+
     @classmethod
-    def keys(cls) -> dict[str, str]:
-        """The keys that the file may use, each with its attribute."""
+    @functools.cache
+    def attributes(cls) -> Mapping[str, str]:
+        """The attribute of every key that the file may use."""
         return {name.rstrip("_"): name for name in cls.model_fields}
 
     @classmethod
-    def allowed(cls, branch: Branch) -> Iterable[str]:
-        """The keys allowed in this very mapping; a record of several kinds narrows them."""
-        return cls.keys()
+    def complaints_about_keys(cls, branch: Branch) -> list[PydanticCustomError]:
+        """The keys of a mapping that do not belong, and those that are missing."""
+        return [*unknown_keys(branch, cls.attributes(), cls.IS), *missing_keys(branch, cls.NEEDS, cls.IS)]
 
-    def check(self) -> Iterable[PydanticCustomError]:
+    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
         """What is wrong between keys that are each right on their own."""
         return ()
 
     @model_validator(mode="wrap")
     @classmethod
-    def _read(cls, data: Any, handler: Any) -> Self:
+    def _from_tree(cls, data: Any, handler: Any) -> Self:
         if isinstance(data, cls):
             return data
-        branch = _as_branch(data, cls.IS)
-        complaints = [*_unknown_keys(cls, branch), *_missing_keys(cls, branch)]
+        branch = as_mapping(data, cls.IS)
+        complaints = cls.complaints_about_keys(branch)
+        known = {key: value for key, value in branch.items() if key in cls.attributes()}
         try:
-            known = {key: value for key, value in branch.items() if key in cls.keys()}
             record = handler(known)
         except ValidationError as error:
             raise together([*complaints, *complaints_of(error)]) from None
-        attributes = cls.keys()
         record._mark = branch.mark
-        record._sources = MappingProxyType({attributes[key]: branch.marks[key] for key in known})
-        complaints += record.check()
+        record._sources = {cls.attributes()[key]: branch.marks[key] for key in known}
+        complaints += record.complaints_between_keys()
         if complaints:
             raise together(complaints)
         return record
 
-    @classmethod
-    def read(cls, data: Any) -> Self:
-        """The record of a tree. Raises `InputError` with every fault of it."""
-        try:
-            return cls.model_validate(data)
-        except ValidationError as error:
-            raise InputError(*faults_of(error)) from None
+
+def as_mapping(node: Any, what: str) -> Branch:
+    """The mapping that a record is read from; nothing at all is an empty one."""
+    if isinstance(node, Branch):
+        return node
+    if isinstance(node, Blank):
+        return Branch(node.mark)
+    raise complaint(node.mark, f"{what} is due here as a mapping, found {describe(node)}", "write {key: value, ...}")
 
 
-def _as_branch(data: Any, what: str) -> Branch:
-    if isinstance(data, Branch):
-        return data
-    if isinstance(data, Blank):
-        return Branch(data.mark)
-    mark = getattr(data, "mark", NOWHERE)
-    raise complaint(mark, f"{what} is written as {describe(data)}", "write a mapping, {key: value, ...}")
-
-
-def describe(data: Any) -> str:
-    """What a piece of a tree is, in words."""
-    if isinstance(data, Branch):
-        return "a mapping"
-    if isinstance(data, Blank):
-        return "nothing"
-    if isinstance(data, Text):
-        return f"the text {shorten(data)!r}"
-    return "a list"
-
-
-def shorten(text: str, width: int = 40) -> str:
-    """The text, cut where a message would grow too long."""
-    return text if len(text) <= width else text[: width - 3] + "..."
-
-
-def _unknown_keys(cls: type[Record], branch: Branch) -> list[PydanticCustomError]:
-    allowed = list(cls.allowed(branch))
+def unknown_keys(branch: Branch, allowed: Iterable[str], what: str) -> list[PydanticCustomError]:
+    """A complaint for each key that is not allowed, with the nearest that is."""
+    names = list(allowed)
     return [
-        complaint(key.mark, f"{shorten(key)!r} is not a key of {cls.IS}", nearest(key, allowed))
+        complaint(key.mark, f"{shorten(key)!r} is not a key of {what}", nearest(key, names))
         for key in branch
-        if key not in allowed
+        if key not in names
     ]
 
 
-def _missing_keys(cls: type[Record], branch: Branch) -> list[PydanticCustomError]:
-    return [
-        complaint(branch.mark, f"{cls.IS} has no {key!r}", f"add {key}: ...")
-        for key in cls.NEEDS
-        if key not in branch
-    ]
+def missing_keys(branch: Branch, needed: Iterable[str], what: str) -> list[PydanticCustomError]:
+    """A complaint for each key that is not there and must be."""
+    return [complaint(branch.mark, f"{what} without {key!r}", f"add {key}: ...") for key in needed if key not in branch]

@@ -25,12 +25,16 @@ class Text(str):
 
 @dataclass(frozen=True, slots=True)
 class Quantity:
-    """A physical value: its span in SI units (temperatures in °C), as written, and where."""
+    """A physical value: its span in SI units (temperatures in °C), as written, and where.
+
+    `source` is where the number was read, if the entry itself says so.
+    """
 
     span: Span
     dimension: str
     text: str
     mark: Mark = NOWHERE
+    source: Text | None = None
 
     @property
     def min(self) -> float:
@@ -58,6 +62,7 @@ class Table:
     points: tuple[tuple[float, ...], ...]
     dimensions: tuple[str, ...]
     mark: Mark = NOWHERE
+    source: Text | None = None
 
     def column(self, index: int) -> tuple[float, ...]:
         """One column, top to bottom."""
