@@ -11,7 +11,7 @@ from .faults import Fault, InputError, Mark
 from .intake.annotations import Annotations, ModeView, lay_file_over_fields, part_note_from_fields
 from .intake.devices import Device, DeviceLibrary
 from .intake.notes import InterfaceNote, LoadNote, PartNote, RailNote, StageNote
-from .intake.rules import RulePack
+from .intake.rules import Limit, RulePack
 from .intake.suggest import nearest
 from .intake.values import Quantity, Table, Text
 from .netlist.model import Netlist, Part

@@ -1,1 +1,24 @@
-"""checks."""
+"""The rules, one small function each, and the place that turns what they find into findings."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from ..solve.solution import Solution
+from . import coverage, derating, envelope, heat, network
+from .judgement import Judgement
+from .view import View
+
+RULES = (heat.dissipation, heat.junction, envelope.envelope, derating.derating, network.headroom,
+         network.load_voltage, network.source_limit, network.runaway, network.unsolved, coverage.rails)
+
+
+def judge(solution: Solution) -> list[Judgement]:
+    """Every judgement of one mode, in an order that depends on the board alone."""
+    view = View(solution)
+    found = [judgement for rule in RULES for judgement in rule(view)]
+    judged = {judgement.ref for judgement in found if judgement.ref and not judgement.only_if_exceeded}
+    return [*found, *coverage.unjudged(view, judged)]
+
+
+__all__ = ["RULES", "Judgement", "View", "judge"]

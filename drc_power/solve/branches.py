@@ -92,6 +92,31 @@ class Efficiency:
 
 
 @dataclass(frozen=True, slots=True)
+class Leg:
+    """One switch of a pulsed pair while it carries the current: a resistive channel or a one-way drop."""
+
+    part: str
+    r_ohm: Param | None = None
+    scale: Curve | None = None
+    drop: Drop | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Buck:
+    """The parts of a buck converter outside its chip: the freewheeling one and the inductor.
+
+    The chip takes the converter's loss less theirs. Duty D = (v_out + drop) / (v_in + drop); ripple
+    ΔI = (v_in − v_out) · D / (L · f).
+    """
+
+    free: Leg | None = None
+    inductor: str | None = None
+    winding_ohm: Param = ZERO
+    inductance_h: Param | None = None
+    frequency_hz: Param | None = None
+
+
+@dataclass(frozen=True, slots=True)
 class Switching:
     """A switching regulator holding `b`: v_in · i_in = v_out · i / η(i, v_in), never below v_in · quiescent more."""
 
@@ -103,6 +128,7 @@ class Switching:
     efficiency: Efficiency
     quiescent_a: Param = ZERO
     part: str | None = None
+    buck: Buck | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -128,16 +154,6 @@ class PowerLoad:
     floor_v: float
     part: str | None = None
     duty: Param = ONE
-
-
-@dataclass(frozen=True, slots=True)
-class Leg:
-    """One switch of a pulsed pair while it carries the current: a resistive channel or a one-way drop."""
-
-    part: str
-    r_ohm: Param | None = None
-    scale: Curve | None = None
-    drop: Drop | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from ..board import Board, BoardPart, Mode, Quantity
 from ..faults import Mark
-from .branches import Branch
+from .branches import Branch, Buck
 from .heat import HeatModel, HeatPath, Sink
 from .variables import ONE, ZERO, Box, Param
 
@@ -20,7 +20,7 @@ class Probe:
     duty: share of the time it carries that current; mean = duty · i, rms = √duty · i.
     blocks: nodes whose difference it holds off while it does not conduct, () where that is its own voltage.
     ground: the third terminal of a regulator. gate: the gate voltage given, or the nodes it is between.
-    peak_share: where the law is no current in the network but a share of the supply (class-AB), else None.
+    push_pull: the class-AB stage that the part swings in. buck: "free" or "inductor" of the converter `currents` names.
     """
 
     ref: str
@@ -36,6 +36,7 @@ class Probe:
     overshoot: Param | None = None
     pulsed: bool = False
     push_pull: PushPull | None = None
+    buck: str | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -119,6 +120,7 @@ class Builder:
     held: dict[str, str] = field(default_factory=dict)
     load_duties: dict[str, Param] = field(default_factory=dict)
     chopped: dict[str, tuple[Param, Param | None]] = field(default_factory=dict)
+    bucks: dict[str, Buck] = field(default_factory=dict)
     staged: set[str] = field(default_factory=set)
     ambient_c: Param = ZERO
 

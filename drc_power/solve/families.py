@@ -15,7 +15,7 @@ from collections.abc import Iterator, Mapping, Sequence
 import numpy as np
 
 from ..physics.tables import interpolate_linear_slope
-from .branches import CurrentLoad, Curve, Drop, Leg, Linear, OneWay, PowerLoad, Pulsed, Resistive, Source, Switching
+from .branches import Buck, CurrentLoad, Curve, Drop, Leg, Linear, OneWay, PowerLoad, Pulsed, Resistive, Source, Switching
 from .layout import Layout
 from .variables import ZERO, values_of
 
@@ -251,7 +251,10 @@ class Switchings(Regulators):
     """Below this input the converter is off: its output follows the input in proportion, its input is a resistor."""
 
     def parameters(self, points: np.ndarray) -> Values:
-        return {"set": values_of([b.setpoint_v for b in self.branches], points),
+        outside = [b.buck or Buck() for b in self.branches]
+        legs = {f"free {name}": value for name, value in _leg_numbers([b.free or Leg("") for b in outside], points).items()}
+        return {**legs, "winding": values_of([b.winding_ohm for b in outside], points),
+                "set": values_of([b.setpoint_v for b in self.branches], points),
                 "quiescent": values_of([b.quiescent_a for b in self.branches], points),
                 "factor": values_of([b.efficiency.factor for b in self.branches], points)}
 
@@ -297,6 +300,36 @@ class Switchings(Regulators):
                    (self.i_in, self.i_in, one), (self.i_in, self.i, d_i), (self.i_in, self.b, d_out),
                    (self.i_in, self.a, d_in), (self.i_in, self.g, -d_in - d_out)]
         return [(self.i, v_out - p["set"] * share), (self.i_in, x[self.i_in] - power / safe)], entries
+
+
+    def follow_temperature(self, layout: Layout) -> None:
+        outside = [b.buck or Buck() for b in self.branches]
+        self.free_parts = tuple(b.free.part if b.free else None for b in outside)
+        self.inductors = tuple(b.inductor for b in outside)
+        self.t_free = layout.places("temperature", [part or "" for part in self.free_parts])
+
+    def buck(self, x: np.ndarray, p: Values) -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
+        """Duty of the high side, drop of the freewheeling part [V] and its slopes over current and temperature."""
+        legs = [(b.buck.free if b.buck and b.buck.free else Leg("")) for b in self.branches]
+        numbers = {name: p[f"free {name}"] for name in ("r", "knee", "slope")}
+        drop, per_i, per_t = _leg_drop(legs, numbers, np.maximum(x[self.i], 0.0), x[self.t_free])
+        v_in, v_out = x[self.a] - x[self.g], x[self.b] - x[self.g]
+        with np.errstate(divide="ignore", invalid="ignore"):
+            duty = np.nan_to_num((v_out + drop) / (v_in + drop), nan=1.0, posinf=1.0, neginf=0.0)
+        return np.clip(duty, 0.0, 1.0), drop, per_i, per_t
+
+    def heats(self, x: np.ndarray, p: Values) -> Heats:
+        """The converter's loss, of which the parts outside the chip take their own; the duty's slopes are left out."""
+        (parts, total, slopes), = super().heats(x, p)
+        if not any(b.buck for b in self.branches):
+            return [(parts, total, slopes)]
+        duty, drop, per_i, per_t = self.buck(x, p)
+        i = np.maximum(x[self.i], 0.0)
+        free, free_i, free_t = (1 - duty) * drop * i, (1 - duty) * (drop + per_i * i), (1 - duty) * per_t * i
+        coil, coil_i = p["winding"] * i * i, 2 * p["winding"] * i
+        chip = [*slopes, (self.i, -free_i - coil_i), (self.t_free, -free_t)]
+        return [(parts, total - free - coil, chip), (self.free_parts, free, [(self.i, free_i), (self.t_free, free_t)]),
+                (self.inductors, coil, [(self.i, coil_i)])]
 
 
 class CurrentLoads(Family):

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from ..board import BoardPart, InterfaceNote
+from .branches import Pulsed
 from .circuit import Builder
 from .heat import HeatPath, Sink
 from .variables import Param
@@ -40,7 +41,7 @@ def add_heat_paths(builder: Builder, followed: set[str]) -> None:
 
 
 def _heated_by(branch) -> tuple[str | None, ...]:
-    if hasattr(branch, "main"):
+    if isinstance(branch, Pulsed):
         return branch.main.part, branch.free.part
     return (getattr(branch, "part", None),)
 

@@ -102,7 +102,7 @@ def make_net_tie(builder: Builder, part: BoardPart) -> None:
     """A net tie: an ideal link."""
     ends = two_ends(builder, part)
     if ends is not None:
-        builder.add(Resistive(part.ref, *ends, ZERO), _with_current(Probe(part.ref, part.kind, "conducting", *ends)))
+        builder.add(Resistive(part.ref, *ends, ZERO, part.ref), _with_current(Probe(part.ref, part.kind, "conducting", *ends)))
 
 
 def forward_drop(builder: Builder, part: BoardPart) -> Drop:
@@ -301,7 +301,7 @@ def make_switching_regulator(builder: Builder, part: BoardPart) -> None:
     a, ground = part.terminals["input"], regulator_ground(builder, part)
     quiescent = part.device.conduction.quiescent if part.device else None
     branch = Switching(part.ref, a, held, ground, builder.setpoints[part.ref], efficiency_of(builder, part),
-                       builder.span(f"{part.ref} quiescent", quiescent) or ZERO, part.ref)
+                       builder.span(f"{part.ref} quiescent", quiescent) or ZERO, part.ref, builder.bucks.get(part.ref))
     builder.add(branch, _with_current(Probe(part.ref, part.kind, "conducting", a, held, ground=ground)))
 
 

@@ -10,7 +10,7 @@ import numpy as np
 
 from ..physics.push_pull import class_b_worst_loss_w
 from .circuit import Circuit, Probe
-from .families import PowerLoads
+from .families import PowerLoads, Switchings
 from .newton import Solver, take
 from .stability import CERTAIN_BELOW, climb, gain_bound, loop_gain
 from .start import starting_point
@@ -124,8 +124,33 @@ class Solution:
             zero = np.zeros(self.n_samples)
             return zero, zero, zero
         on = np.abs(sum(sign * self.current_a(key) for key, sign in probe.currents))
+        if probe.buck is not None:
+            return self._in_buck(probe, on)
         duty = self.value(probe.duty)
         return duty * on, np.sqrt(np.maximum(duty, 0.0)) * on, on
+
+    def _in_buck(self, probe: Probe, i_out: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+        """Mean, rms and peak current of a buck's inductor or freewheeling part, with triangular ripple."""
+        key = probe.currents[0][0]
+        family, row = next((f, k) for f in self.system.families if isinstance(f, Switchings)
+                           for k, b in enumerate(f.branches) if b.key == key)
+        p = self.prepared.families[self.system.families.index(family)]
+        branch, duty = family.branches[row], family.buck(self.x, p)[0][row]
+        ripple = np.full(self.n_samples, np.nan)
+        if branch.buck.inductance_h is not None and branch.buck.frequency_hz is not None:
+            v_in, v_out = self.node_v(branch.a), self.node_v(branch.b)
+            ripple = (v_in - v_out) * duty / (self.value(branch.buck.inductance_h) * self.value(branch.buck.frequency_hz))
+        rms, peak = np.sqrt(i_out**2 + ripple**2 / 12.0), i_out + ripple / 2.0
+        share = 1.0 - duty if probe.buck == "free" else np.ones(self.n_samples)
+        return share * i_out, np.sqrt(share) * rms, peak
+
+    def inflow_a(self) -> Mapping[str, np.ndarray]:
+        """What flows into each net [A], shape (sample,)."""
+        total = np.zeros((self.system.n + 1, self.n_samples))
+        for family, p in zip(self.system.families, self.prepared.families, strict=True):
+            for nodes, currents, weight in family.flows(p):
+                np.add.at(total, nodes, np.maximum(-weight * self.x[currents], 0.0))
+        return {net: total[at] for net, at in self.system.layout.of_kind("node").items()}
 
     def _swing_v(self, probe: Probe) -> np.ndarray:
         """The whole supply of a class-AB stage, which each of its transistors must hold off."""

@@ -7,10 +7,10 @@ from dataclasses import replace
 
 from ..board import BoardPart, StageNote
 from ..faults import Fault, InputError
-from ..quantity import Span
-from .branches import Leg, Pulsed, Resistive
+from ..quantity import Span, parse_value_field
+from .branches import Buck, Leg, Pulsed, Resistive
 from .circuit import Builder, Probe, PushPull
-from .parts import GAP_OHM, forward_drop, gate_of, on_resistance, rds_scale, saturation_drop, two_ends, value_resistance
+from .parts import GAP_OHM, forward_drop, gate_of, on_resistance, rds_scale, regulator_ground, resistance, saturation_drop, two_ends, value_resistance
 from .variables import ZERO, Param
 
 GAP_DUTY = 0.01
@@ -22,7 +22,7 @@ def add_stages(builder: Builder) -> None:
     """Every annotated stage that changes how its parts conduct; their own branches are then not drawn again."""
     for name, stage in builder.mode.view.stages.items():
         maker = {"half-bridge": _half_bridge, "low-side": _single_switch, "high-side": _single_switch,
-                 "push-pull": _push_pull}.get(str(stage.kind))
+                 "push-pull": _push_pull, "buck": _buck}.get(str(stage.kind))
         if maker is not None and _is_running(builder, stage):
             maker(builder, name, stage)
 
@@ -163,6 +163,29 @@ def add_chopped(builder: Builder, ref: str) -> None:
                       overshoot=builder.span(f"{ref} overshoot", part.note.overshoot)))
     if frequency is not None:
         builder.gap(ref, "the edge loss of a switch without a freewheel path (name its clamp)", 0.0, GAP_OHM, "power")
+
+
+def _buck(builder: Builder, name: str, stage: StageNote) -> None:
+    """A converter chip with its freewheeling part or its inductor outside: they take their share of its loss."""
+    if len(stage.chip) != 1 or stage.high or len(stage.low) > 1 or len(stage.inductor) > 1:
+        raise InputError(Fault(stage.mark, f"stage {name} is not one chip with at most one low part and one inductor",
+                               "write chip: U1, low: D1, inductor: L1; switches outside the chip are not supported yet"))
+    chip = builder.parts[str(stage.chip[0])]
+    ends = (chip.terminals.get("input", ""), regulator_ground(builder, chip))
+    low, inductor = (builder.parts[str(refs[0])] if refs else None for refs in (stage.low, stage.inductor))
+    frequency = builder.span(f"{name} at", stage.frequency)
+    henry = parse_value_field(inductor.part.value, "inductance") if inductor else None
+    builder.bucks[chip.ref] = Buck(
+        _leg(builder, low) if low else None, inductor.ref if inductor else None,
+        resistance(builder, inductor) if inductor else ZERO,
+        builder.box.param(f"{inductor.ref} inductance", henry.span, "inductance", stage.mark) if henry else None, frequency)
+    for part, role in ((low, "free"), (inductor, "inductor")):
+        if part is not None:
+            builder.probes[part.ref] = Probe(
+                part.ref, part.kind, "switching", *ends, ((chip.ref, 1.0),), blocks=ends, pulsed=role == "free", buck=role,
+                gate=gate_of(builder, part) if part.kind == "mosfet" else None,
+                overshoot=builder.span(f"{part.ref} overshoot", part.note.overshoot))
+            builder.staged.add(part.ref)
 
 
 def _push_pull(builder: Builder, name: str, stage: StageNote) -> None:

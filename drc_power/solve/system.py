@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from .branches import Branch
+from .branches import Branch, Pulsed, Switching
 from .families import FAMILIES, Values
 from .heat import HeatModel
 from .layout import Layout
@@ -144,6 +144,8 @@ def temperature_dependent(branches: Sequence[Branch]) -> set[str]:
 
 
 def _laws(branch: Branch):
-    if hasattr(branch, "main"):
+    if isinstance(branch, Pulsed):
         return [(branch.main.part, branch.main), (branch.free.part, branch.free)]
+    if isinstance(branch, Switching) and branch.buck and branch.buck.free:
+        return [(branch.buck.free.part, branch.buck.free)]
     return [(getattr(branch, "part", None), branch)]

@@ -1,0 +1,48 @@
+"""coverage.data and coverage.rail: what cannot be judged, by name."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+
+from ..findings.identity import net_subject
+from .judgement import Judgement
+from .view import ElementView, View
+
+
+def rails(view: View) -> Iterator[Judgement]:
+    """`coverage.rail`: nets whose voltage or feed nobody gives."""
+    parts = view.board.netlist.parts
+    for unfed in view.solution.circuit.unfed:
+        pins = [(parts[node.ref].uuid, node.pin) for node in view.board.netlist.nets[unfed.net].nodes if node.ref in parts]
+        yield Judgement(
+            "coverage.rail", net_subject(pins, unfed.net), "supply", "V", view.solution.node_v(unfed.net), view.unknown(),
+            view.unknown(), unfed.mark, "voltage", net=unfed.net, mode=view.mode.name, lacking=("supply",),
+            why=unfed.text, remedy=unfed.remedy)
+
+
+def unjudged(view: View, judged: Iterable[str]) -> Iterator[Judgement]:
+    """`coverage.data`: elements that no other rule has anything to say about, or that the network could not take in."""
+    judged = frozenset(judged)
+    for ref in view.board.elements:
+        if ref not in judged:
+            yield _unjudged(view, ref)
+
+
+def _unjudged(view: View, ref: str) -> Judgement:
+    from ..findings.identity import part_subject
+
+    part = view.mode.parts[ref]
+    missing = view.solution.circuit.missing.get(ref, ())
+    lacking = missing or (("limits",) if part.device else ("device",))
+    if part.device is None:
+        remedy = f"write parts: {{{ref}: {{device: NAME}}}}, or outside: with a reason"
+    else:
+        remedy = f"give {', '.join(lacking)}"
+    return Judgement(
+        "coverage.data", part_subject(part.part.uuid, ref), "device data", "", view.unknown(), view.unknown(),
+        view.unknown(), view.board.where(part), None, ref, mode=view.mode.name, lacking=lacking, remedy=remedy)
+
+
+def without_supply(view: View, element: ElementView) -> bool:
+    """Whether nothing that the solver knows feeds an element."""
+    return not any(view.solution.has_node(net) for net in (element.probe.a, element.probe.b) if net)

@@ -1,0 +1,119 @@
+"""dissipation.part and junction.steady: what a part burns, and how hot that makes it."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from ..findings.model import Step
+from .judgement import Judgement
+from .view import ElementView, View
+
+HAS_POWER = frozenset({"mosfet", "bjt", "igbt", "diode", "bridge", "zener", "tvs", "linear-regulator",
+                       "switching-regulator", "resistor", "thermistor", "potentiometer", "ic", "gate-driver",
+                       "optocoupler"})
+HAS_JUNCTION = HAS_POWER - {"resistor", "thermistor", "potentiometer"}
+"""Kinds whose device data has a power and a junction temperature among its limits; others only where they give one."""
+
+
+def dissipation(view: View) -> Iterator[Judgement]:
+    """`dissipation.part`: the mean loss against the rated power."""
+    for element in view.elements():
+        if element.kind in HAS_POWER or element.part.limit("power") is not None:
+            yield _dissipation(element)
+
+
+def _dissipation(element: ElementView) -> Judgement:
+    rated = element.rating("power")
+    allowed, limit = element.allowed("power", rated)
+    lacking = element.missing + (() if element.part.limit("power") is not None else ("limits.power",))
+    return Judgement(
+        "dissipation.part", element.subject, "dissipation", "W", element.point.power_w, rated, allowed,
+        element.view.board.where(element.part), "power", element.ref, mode=element.view.mode.name, limit=limit,
+        proven=element.solved, lacking=lacking, steps=lambda k: power_steps(element, k),
+        remedy="use a part with a higher power rating, or take voltage or current off this one",
+        inputs=element.sources("limits.power", "conduction.rds", "conduction.rds_scale", "conduction.knee",
+                               "conduction.slope", "conduction.quiescent", "conduction.efficiency"))
+
+
+def junction(view: View) -> Iterator[Judgement]:
+    """`junction.steady`: the junction temperature that the loss and the annotated way of its heat lead to."""
+    for element in view.elements():
+        if element.kind in HAS_JUNCTION or element.part.limit("tj") is not None:
+            yield _junction(element)
+
+
+def _junction(element: ElementView) -> Judgement:
+    rated = element.rating("tj")
+    allowed, limit = element.allowed("tj", rated)
+    lacking = (*element.missing, *element.heat_missing,
+               *(() if element.part.limit("tj") is not None else ("limits.tj",)))
+    return Judgement(
+        "junction.steady", element.subject, "junction temperature", "°C", element.point.tj_c, rated, allowed,
+        element.view.board.where(element.part), "tj", element.ref, mode=element.view.mode.name, limit=limit,
+        ambient_c=element.view.solution.ambient_c, proven=element.solved, lacking=lacking,
+        steps=lambda k: (*power_steps(element, k), *temperature_steps(element, k)),
+        remedy="lower its thermal resistance to the ambient, or its loss",
+        inputs=element.sources("limits.tj", "thermal.rth_jc", "thermal.rth_ja"))
+
+
+def power_steps(element: ElementView, k: int) -> tuple[Step, ...]:
+    """How the loss at one sample came about."""
+    point, ref = element.point, element.ref
+    v, i, p = point.voltage_v[k], point.current_a[k], point.power_w[k]
+    solved = f"network solution, mode {element.view.mode.name}"
+    steps = [Step("V", f"voltage across {ref}", "", _number(v), "V", solved),
+             Step("I", f"mean current through {ref}", "", _number(i), "A", solved)]
+    law = _law(element, k)
+    steps.append(Step("P", law[0], law[1], _number(p), "W", law[2]))
+    return tuple(steps)
+
+
+def _law(element: ElementView, k: int) -> tuple[str, str, str]:
+    """The law of the loss in symbols and in numbers, and where it comes from."""
+    point = element.point
+    v, i, rms, p = (array[k] for array in (point.voltage_v, point.current_a, point.rms_a, point.power_w))
+    if element.probe.push_pull is not None:
+        return "worst output of class B", "", "worst mean loss at 2/π of the swing, class B"
+    if element.probe.pulsed:
+        return "conduction + overlap + charge", "", "averaged switch pair"
+    if element.kind in ("linear-regulator", "switching-regulator"):
+        return "V_in · I_in − V_out · I_out", "", "power balance of the regulator"
+    if element.kind == "mosfet" and rms > 0.0:
+        return "I_rms² · R_DS(on)(Tj)", f"{rms:.6g}² · {p / rms**2:.6g}", "Joule's law, resistance at Tj"
+    return "V · I", f"{v:.6g} · {i:.6g}", "power balance"
+
+
+def temperature_steps(element: ElementView, k: int) -> tuple[Step, ...]:
+    """How the loss leads to the junction temperature, from the ambient inward."""
+    solution = element.view.solution
+    path = next((p for p in solution.circuit.heat.paths if p.part == element.ref), None)
+    if path is None:
+        return ()
+    own = sum(solution.value(param)[k] for param in path.own_k_per_w)
+    tj, p = element.point.tj_c[k], element.point.power_w[k]
+    start, steps = solution.value(path.start_c)[k], []
+    if path.sink:
+        sink, heat = solution.circuit.heat.sinks[path.sink], solution.circuit.heat.sink_power(solution.powers_w, solution.n_samples)
+        r, total = solution.value(sink.r_k_per_w)[k], heat[path.sink][k]
+        sink_c = solution.temperatures.sink_c[path.sink][k]
+        steps.append(Step("T_sink", "T_a + R_sink · ΣP", f"{start:.6g} + {r:.6g} · {total:.6g}", _number(sink_c), "°C",
+                          f"sink {path.sink}"))
+        start = sink_c
+    steps.append(Step("Tj", "T + R_th · P", f"{start:.6g} + {own:.6g} · {p:.6g}", _number(tj), "°C",
+                      "steady heat flow, " + _way(element)))
+    return tuple(steps)
+
+
+def _way(element: ElementView) -> str:
+    heat = element.part.note.heat
+    if heat is None:
+        return "rth_ja to the ambient"
+    if heat.sink:
+        return "rth_jc + interface to the sink"
+    return "rth_jc to a case held at its temperature" if heat.case is not None else "the board's own figure to the ambient"
+
+
+def _number(value: float) -> float | None:
+    return float(value) if np.isfinite(value) else None

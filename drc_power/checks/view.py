@@ -1,0 +1,123 @@
+"""What every rule reads: one solution of one mode, with the parts, their points and the house rules at hand."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from ..board import Board, BoardPart, Limit, Mode, Quantity
+from ..findings.identity import Subject, part_subject
+from ..solve.circuit import Probe
+from ..solve.solution import PartPoint, Solution
+from .house import Conditions, Target, allowed, limits_on, required
+
+
+@dataclass(frozen=True)
+class View:
+    """One mode's solution as the rules see it."""
+
+    solution: Solution
+
+    @property
+    def mode(self) -> Mode:
+        return self.solution.circuit.mode
+
+    @property
+    def board(self) -> Board:
+        return self.mode.board
+
+    @cached_property
+    def solved(self) -> np.ndarray:
+        """Where there is an operating point, shape (sample,)."""
+        return ~self.solution.unsolved()
+
+    def elements(self) -> Iterator[ElementView]:
+        """Every part that needs a verdict and has been solved."""
+        for ref in self.board.elements:
+            if ref in self.solution.circuit.probes:
+                yield ElementView(self, self.mode.parts[ref], self.solution.parts[ref], self.solution.circuit.probes[ref])
+
+    def unknown(self) -> np.ndarray:
+        return np.full(self.solution.n_samples, np.nan)
+
+    def constant(self, value: float | None) -> np.ndarray:
+        return np.full(self.solution.n_samples, np.nan if value is None else value)
+
+
+@dataclass(frozen=True)
+class ElementView:
+    """One part in one mode: its data, its operating points, and what the house allows."""
+
+    view: View
+    part: BoardPart
+    point: PartPoint
+    probe: Probe
+
+    @property
+    def ref(self) -> str:
+        return self.part.ref
+
+    @property
+    def kind(self) -> str:
+        return self.part.kind
+
+    @property
+    def subject(self) -> Subject:
+        return part_subject(self.part.part.uuid, self.ref)
+
+    @cached_property
+    def missing(self) -> tuple[str, ...]:
+        """Data of its own conduction that the solver had to do without."""
+        return self.view.solution.circuit.missing.get(self.ref, ())
+
+    @cached_property
+    def heat_missing(self) -> tuple[str, ...]:
+        lacking = self.view.solution.circuit.heat_missing.get(self.ref)
+        return (lacking,) if lacking else ()
+
+    @cached_property
+    def solved(self) -> np.ndarray:
+        """Where the part has an operating point of its own: it exists, and neither it nor a neighbour on its sink runs away."""
+        solution = self.view.solution
+        running = [flags for ref, flags in solution.runaway.items()
+                   if ref in solution.circuit.heat.coupled_with((self.ref,)) or ref == self.ref]
+        return self.view.solved & ~np.any(running, axis=0) if running else self.view.solved
+
+    def rating(self, stress: str) -> np.ndarray:
+        """The device's own limit at every sample; NaN where it is not given. A span counts by its lower end."""
+        limit = self.part.limit(stress)
+        return self.view.constant(limit.min if isinstance(limit, Quantity) else None)
+
+    @cached_property
+    def conditions(self) -> Conditions:
+        return Conditions(self.view.solution.ambient_c, self.point.case_c, self.point.tj_c)
+
+    def allowed(self, stress: str, rated: np.ndarray) -> tuple[np.ndarray, Limit | None]:
+        """What the house allows of a rating, and the limit that decides."""
+        return allowed(self._limits(stress), rated, self.conditions)
+
+    def required(self, stress: str, rated: np.ndarray) -> tuple[np.ndarray, Limit | None]:
+        """The minimum that the house asks for, never below the rating."""
+        return required(self._limits(stress), rated, self.conditions)
+
+    def _limits(self, stress: str) -> tuple[Limit, ...]:
+        return limits_on(self.view.board.rules, Target(self.kind, stress, self.view.mode.name, self.part))
+
+    def sources(self, *paths: str) -> tuple[tuple[str, str, str], ...]:
+        """Inputs of a finding: (name, value, where) for entries of the device data that exist."""
+        found = []
+        for path in paths:
+            section, _, key = path.partition(".")
+            value = self.part.limit(key) if section == "limits" else self._entry(section, key)
+            if value is not None and self.part.device is not None:
+                said = self.part.device.source_text(path)
+                where = f"{self.part.device.entry(path)}" + (f" ({said})" if said else "")
+                found.append((f"{self.part.device.name} {path}", getattr(value, "text", "table"), where))
+        return tuple(found)
+
+    def _entry(self, section: str, key: str):
+        record = getattr(self.part.device, section, None) if self.part.device else None
+        return getattr(record, key, None) or None

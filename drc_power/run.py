@@ -1,0 +1,236 @@
+"""One check of one board, from files to a `Result`. Nothing here computes; it calls the rooms in order."""
+
+from __future__ import annotations
+
+import os
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass, field, replace
+
+import numpy as np
+
+from .board import Board, Mode
+from .checks import Judgement, judge
+from .checks.judge import make_finding, objective_of
+from .findings.model import Coverage, Finding, InputFile, NetPoint, OperatingPoint, Outside, PartRow, Result, Sensitivity
+from .findings.order import sort_findings
+from .findings.waiving import Waiver, apply_waivers
+from .intake.annotations import Annotations, read_annotations
+from .intake.devices import read_devices
+from .intake.rules import read_rules
+from .intake.waivers import read_waivers
+from .netlist.model import Netlist
+from .netlist.reader import read_netlist
+from .quantity import format_quantity
+from .solve.build import build_circuit
+from .solve.search import Worst, worst_corners
+from .solve.solution import Engine, Solution
+from .survey import survey_netlist
+
+Progress = Callable[[str], None]
+
+MOVES = 1e-6
+"""A side of the box is named in a corner when it moves the quantity by more than this share of its size."""
+
+
+@dataclass(slots=True)
+class Run:
+    """The options of one check."""
+
+    today: str | None = None
+    progress: Progress = lambda text: None
+    confirm_netlist: bool = False
+    self_check: bool = False
+    fails_from: str | None = None
+    faults: list[str] = field(default_factory=list)
+
+
+def check(path: str | os.PathLike[str], run: Run | None = None) -> Result:
+    """Check the board that an annotation file describes. Raises InputError where the check cannot be made."""
+    run = run or Run()
+    run.progress("reading")
+    board, inputs, waivers = read_board(path, run)
+    findings: list[Finding] = []
+    points: list[OperatingPoint] = []
+    nets: list[NetPoint] = []
+    for mode in board.modes:
+        run.progress(f"solving mode {mode.name}")
+        for found in _in_mode(board, mode):
+            findings += found[0]
+            points += found[1]
+            nets += found[2]
+    findings = list(apply_waivers(_once(findings), waivers, run.today))
+    return _result(board, inputs, findings, points, nets, run)
+
+
+def read_board(path: str | os.PathLike[str], run: Run) -> tuple[Board, tuple[InputFile, ...], tuple[Waiver, ...]]:
+    """Read every file that belongs to a board."""
+    annotations = read_annotations(path)
+    netlist = _read_netlist(annotations)
+    if run.confirm_netlist:
+        from .netlist.confirm import confirm_netlist
+
+        confirm_netlist(netlist)
+    rules = read_rules(annotations.rules, annotations.folder)
+    library = read_devices(annotations.devices, annotations.folder)
+    waivers = read_waivers(annotations.waivers, annotations.folder) if annotations.waivers else None
+    board = Board(annotations, netlist, survey_netlist(netlist), library, rules)
+    board.check_names()
+    files = [annotations.source_file, *library.files, *rules.files, *(waivers.files if waivers else ())]
+    inputs = [InputFile("netlist", str(annotations.netlist), netlist.sha256)]
+    inputs += [InputFile(f.role, f.path, f.sha256) for f in files]
+    return board, tuple(inputs), _waivers(waivers)
+
+
+def _read_netlist(annotations: Annotations) -> Netlist:
+    return read_netlist(os.path.join(annotations.folder, str(annotations.netlist)))
+
+
+def _waivers(found) -> tuple[Waiver, ...]:
+    if found is None:
+        return ()
+    return tuple(Waiver(str(w.finding), str(w.because), str(w.by), w.until.isoformat(), w.value.typ, w.mark.file, w.mark.line)
+                 for w in found.waivers)
+
+
+def _in_mode(board: Board, mode: Mode) -> Iterator[tuple[list[Finding], list[OperatingPoint], list[NetPoint]]]:
+    """Search one mode's box and read findings and points off its worst corners."""
+    circuit = build_circuit(mode)
+    engine = Engine(circuit)
+    n_judged = len(judge(engine.solve(circuit.box.typical()[None])))
+
+    def objectives(points: np.ndarray) -> np.ndarray:
+        solution = engine.solve(points)
+        return np.vstack([*(objective_of(j) for j in judge(solution)), *_extremes(solution)])
+
+    worst = worst_corners(circuit.box, objectives, slice(0, n_judged))
+    final = engine.solve(worst.points)
+    judgements = judge(final)
+    gaps = _gaps(engine, worst, judgements, n_judged)
+    findings = []
+    for k, judgement in enumerate(judgements):
+        sample = int(worst.at[k])
+        finding = make_finding(board, judgement, sample, _corner(circuit, worst, k, sample), gaps[k],
+                               _sensitivity(circuit, worst, k, judgement))
+        if finding is not None:
+            findings.append(finding)
+    yield findings, _points(final, worst, n_judged), _nets(final, worst, n_judged)
+
+
+def _extremes(solution: Solution) -> Iterator[np.ndarray]:
+    """Objectives besides the judgements: each part at its highest power and voltage, each net at both ends."""
+    for point in solution.parts.values():
+        yield -np.nan_to_num(point.power_w)
+        yield -np.abs(np.nan_to_num(point.block_v))
+    for net in solution.system.layout.of_kind("node"):
+        yield solution.node_v(net)
+        yield -solution.node_v(net)
+
+
+def _gaps(engine: Engine, worst: Worst, judgements: list[Judgement], n_judged: int) -> list[list[str]]:
+    """For each judgement the missing data that would make it worse, found by trying each of them."""
+    variables = engine.circuit.box.variables
+    missing = [k for k, v in enumerate(variables) if v.probe is not None]
+    reasons: list[list[str]] = [[] for _ in judgements]
+    if not missing:
+        return reasons
+    tried = np.repeat(worst.points, len(missing), axis=0)
+    columns = np.tile(missing, len(worst.points))
+    tried[np.arange(len(tried)), columns] = [variables[k].probe for k in columns]
+    after = judge(engine.solve(tried))
+    for k, (judgement, other) in enumerate(zip(judgements, after, strict=True)):
+        sample = worst.at[k]
+        was, now = judgement.margins()[sample], other.margins()[sample * len(missing) + np.arange(len(missing))]
+        # Without a datum the check itself needs, nothing is left to compare.
+        for column, margin in zip(missing, now, strict=True):
+            if not judgement.lacking and not (margin >= was - 1e-9 * max(1.0, abs(was))):
+                reasons[k].append(variables[column].why)
+    return reasons
+
+
+def _corner(circuit, worst: Worst, objective: int, sample: int) -> str:
+    """The corner in words: the sides that matter, the strongest first."""
+    moves = np.abs(worst.influence[objective])
+    matter = [k for k in np.argsort(-moves, kind="stable") if moves[k] > MOVES]
+    named = [f"{v.name} {format_quantity(worst.points[sample, k], v.dimension)}"
+             for k in matter for v in (circuit.box.variables[k],)]
+    return ", ".join(named) if named else "any corner"
+
+
+def _sensitivity(circuit, worst: Worst, objective: int, judgement: Judgement) -> list[Sensitivity]:
+    """The three inputs that move the margin most across their own span."""
+    moves = worst.influence[objective]
+    strongest = [k for k in np.argsort(-np.abs(moves), kind="stable")[:3] if abs(moves[k]) > MOVES]
+    rows = []
+    for k in strongest:
+        variable = circuit.box.variables[k]
+        span = f"{format_quantity(variable.span.min, variable.dimension)} .. {format_quantity(variable.span.max, variable.dimension)}"
+        rows.append(Sensitivity(variable.name, span, float(moves[k]), "of margin"))
+    return rows
+
+
+def _points(solution: Solution, worst: Worst, first: int) -> list[OperatingPoint]:
+    """Each part at its worst corner for power and at its worst for voltage."""
+    rows, mode = [], solution.circuit.mode
+    for k, (ref, point) in enumerate(solution.parts.items()):
+        for objective in dict.fromkeys((first + 2 * k, first + 2 * k + 1)):
+            s = int(worst.at[objective])
+            numbers = (point.block_v, point.current_a, point.rms_a, point.power_w, point.tj_c, point.case_c)
+            rows.append(OperatingPoint(mode.name, _corner(solution.circuit, worst, objective, s), ref,
+                                       mode.parts[ref].kind, *(_finite(a[s]) for a in numbers)))
+    return list(dict.fromkeys(rows))
+
+
+def _nets(solution: Solution, worst: Worst, first: int) -> list[NetPoint]:
+    """Each net at its lowest and at its highest voltage, with the current that flows into it."""
+    rows, start = [], first + 2 * len(solution.parts)
+    inflow = solution.inflow_a()
+    for k, net in enumerate(solution.system.layout.of_kind("node")):
+        for objective in (start + 2 * k, start + 2 * k + 1):
+            s = int(worst.at[objective])
+            rows.append(NetPoint(solution.circuit.mode.name, _corner(solution.circuit, worst, objective, s), net,
+                                 _finite(solution.node_v(net)[s]), _finite(inflow[net][s])))
+    return list(dict.fromkeys(rows))
+
+
+def _finite(value: float) -> float | None:
+    return float(value) if np.isfinite(value) else None
+
+
+def _once(findings: list[Finding]) -> list[Finding]:
+    """Findings about what no mode changes are made once."""
+    return list({finding.id: finding for finding in reversed(findings)}.values())[::-1]
+
+
+def _result(board: Board, inputs, findings: list[Finding], points, nets, run: Run) -> Result:
+    judged = {f.ref for f in findings if f.ref and f.rule != "coverage.data"}
+    unproven = sorted({f.ref for f in findings if f.ref and "unproven" in (f.verdict, f.was)} & set(board.elements))
+    coverage = Coverage(len(board.elements), len(judged & set(board.elements)), tuple(unproven),
+                        tuple(Outside(ref, why) for ref, why in board.outside.items()), tuple(sorted(board.not_fitted)))
+    rows = tuple(PartRow(ref, part.part.uuid, part.part.sheet, part.part.value,
+                         part.device.name if part.device else None, part.kind)
+                 for ref in board.elements for part in (board.parts[ref],))
+    annotations = board.annotations
+    result = Result(
+        annotations.board_name, annotations.board_revision, str(annotations.netlist), len(board.netlist.parts),
+        len(board.netlist.nets), inputs, tuple(sort_findings(findings)), coverage, run.today, rows, _rails(board),
+        _loads(board), _rules(board), tuple(points), tuple(nets), tuple(board.notes), board.rules.fails_from)
+    return replace(result, fails_from=run.fails_from) if run.fails_from else result
+
+
+def _rails(board: Board) -> tuple[dict, ...]:
+    return tuple({"net": board.net(name), "voltage": rail.voltage.text if rail.voltage else None,
+                  "source": [str(ref) for ref in rail.source], "held_by": str(rail.held_by) if rail.held_by else None}
+                 for name, rail in sorted(board.annotations.rails.items()))
+
+
+def _loads(board: Board) -> tuple[dict, ...]:
+    rows = []
+    for name, load in sorted(board.annotations.loads.items()):
+        demand = {key: getattr(load, key).text for key in ("draws", "power", "resistance") if getattr(load, key) is not None}
+        rows.append({"name": name, "net": str(load.net) if load.net else None, **demand})
+    return tuple(rows)
+
+
+def _rules(board: Board) -> tuple[dict, ...]:
+    return tuple({"name": limit.name, "pack": limit.pack, "stress": str(limit.stress), "locked": limit.locked,
+                  "source": str(limit.source) if limit.source else None} for limit in board.rules.limits.values())
