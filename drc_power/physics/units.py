@@ -31,6 +31,7 @@ UNIT_OF_SUFFIX = {
     "_c": "°C",
     "_k": "K",
     "_k_per_w": "K/W",
+    "_k_s_per_w": "K.s/W",
     "_m2_k_per_w": "m2.K/W",
     "_k_per_s": "K/s",
     "_w_per_k": "W/K",
