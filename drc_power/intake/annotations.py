@@ -39,7 +39,7 @@ class Annotations(AnnotationFile):
         return os.path.dirname(self._path) or "."
 
     @property
-    def file(self) -> SourceFile:
+    def source_file(self) -> SourceFile:
         """Role, path and hash, for the list of inputs."""
         return self._file
 

@@ -1,129 +1,252 @@
-"""Records of device data: what a team knows of the parts it uses, shared across boards."""
+"""Device data: what a team knows of the parts it uses, shared across boards. `read_devices` gives a `DeviceLibrary`."""
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+import fnmatch
+import os
+from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import dataclass, replace
 from typing import Annotated, Any, ClassVar
 
-from pydantic import Field
+from pydantic import BeforeValidator, Field, PlainValidator, PrivateAttr
+from pydantic_core import PydanticCustomError
 
-from ..faults import Mark
-from .fields import *  # noqa
-from .record import Record
+from ..faults import Fault, InputError, Mark
+from .device_kinds import KINDS, LIMITS, SECTIONS_OF_ALL, Kind
+from .fields import (
+    Charge, Current, CurrentRating, EdgeTime, Factor, HeatCapacity, Named, Resistance, TemperatureCoefficient,
+    ThermalResistanceAboveZero, Voltage, VoltageCoefficient, VoltageMagnitude, VoltageRating, Word, as_branch, collected,
+    each, one_of, read_word, reader, table, table_reader,
+)
+from .files import inside, read_file
+from .not_built import not_built
+from .record import Record, complaint, shorten, together, unknown_keys
+from .suggest import nearest
+from .tree import Branch, Row, tree_of
 from .values import Quantity, SourceFile, Table, Text
 
-Curve = Table
+_POSITIVE = {name: reader(name, above=0) for name in
+             ("voltage", "current", "time", "power", "thermal_resistance", "thermal_capacity")}
+_FROM_ZERO = {name: reader(name, least=0) for name in ("voltage", "current")}
+_TEMPERATURE = reader("temperature")
+_EFFICIENCY = reader("ratio", above=0, most=1)
 
 
-class Conduction(Record):
+class Section(Record):
+    """One section of a device. `source` is where its numbers were read, if that is not the device's own."""
+
+    source: Word | None = None
+
+
+def _by_gate_voltage(node: Any) -> dict[float | None, Quantity]:
+    """On-resistance: one value, or one for each gate voltage."""
+    read = reader("resistance", above=0)
+    if not isinstance(node, Branch) or set(node) & {"min", "typ", "max"}:
+        return {None: read(node)}
+    rows = each(lambda key: (_POSITIVE["voltage"](key).typ, read(node[key])), node)
+    return dict(sorted(rows))
+
+
+def _by_temperature(node: Any) -> dict[float, Table]:
+    """Forward curves: for each junction temperature, voltage over current."""
+    read = table_reader(_FROM_ZERO["current"], _POSITIVE["voltage"])
+    branch = as_branch(node)
+    return dict(sorted(each(lambda key: (_TEMPERATURE(key).typ, read(branch[key])), branch)))
+
+
+def _efficiency(node: Any) -> tuple[tuple[float | None, Quantity | Table], ...]:
+    """A value, a curve over output current, or curves by input voltage."""
+    curve = table_reader(_POSITIVE["current"], _EFFICIENCY)
+    if not isinstance(node, Row):
+        return ((None, _EFFICIENCY(node)),)
+    if not all(isinstance(row, Branch) for row in node) or not node:
+        return ((None, curve(node)),)
+    rows = each(lambda row: _efficiency_at(row, curve), node)
+    voltages = [vin_v for vin_v, _ in rows]
+    if len(set(voltages)) < len(voltages):
+        raise complaint(node.mark, "two efficiency curves for one input voltage", "keep one of them")
+    return tuple(sorted(rows, key=lambda row: row[0]))
+
+
+def _efficiency_at(row: Branch, curve: Any) -> tuple[float, Quantity | Table]:
+    wrong = unknown_keys(row, ("vin", "at"), "an efficiency curve")
+    wrong += [complaint(row.mark, f"an efficiency curve without {key!r}", f"add {key}: ...") for key in ("vin", "at") if key not in row]
+    if wrong:
+        raise together(wrong)
+    at = curve(row["at"]) if isinstance(row["at"], Row) else _EFFICIENCY(row["at"])
+    return _POSITIVE["voltage"](row["vin"]).typ, at
+
+
+class Conduction(Section):
     """How the part conducts; which keys a kind takes is in `KINDS`.
 
-    `rds` maps gate voltage in V (None: `at_gate`, or not said) to the resistance at 25 °C.
-    `forward` maps junction temperature in °C to a (current, voltage) curve.
-    `efficiency` is rows of (input voltage in V or None, a `Quantity` or a (current, ratio) curve).
+    `rds` maps gate voltage in V (None where one value is given) to the resistance at 25 °C. `forward` maps junction
+    temperature in °C to a curve of voltage over current. `efficiency` is rows of input voltage in V (None for any)
+    and a `Quantity` or a curve of efficiency over output current.
     """
 
     IS: ClassVar[str] = "conduction"
-    rds: Mapping[float | None, Quantity] = {}
-    rds_scale: Curve | None = None
-    at_gate: Voltage | None = None
-    saturation: Voltage | None = None
+    rds: Annotated[Mapping[float | None, Quantity], PlainValidator(_by_gate_voltage)] = {}
+    rds_scale: Annotated[Table, table(_TEMPERATURE, reader("number", above=0))] | None = None
+    at_gate: VoltageRating | None = None
+    saturation: VoltageMagnitude | None = None
     slope: Resistance | None = None
     gain: Factor | None = None
-    knee: Voltage | None = None
-    knee_tempco: Any = None
-    forward: Mapping[float, Curve] = {}
-    leakage: Curve | None = None
-    clamp: Curve | None = None
-    standoff: Voltage | None = None
-    dropout: Voltage | None = None
+    knee: VoltageMagnitude | None = None
+    knee_tempco: VoltageCoefficient | None = None
+    forward: Annotated[Mapping[float, Table], PlainValidator(_by_temperature)] = {}
+    clamp: Annotated[Table, table(_FROM_ZERO["current"], _POSITIVE["voltage"])] | None = None
+    standoff: VoltageRating | None = None
+    dropout: VoltageMagnitude | None = None
     quiescent: Current | None = None
     reference: Voltage | None = None
     minimum_load: Current | None = None
-    current_limit: Current | None = None
-    efficiency: tuple[tuple[float | None, Quantity | Table], ...] = ()
+    current_limit: CurrentRating | None = None
+    efficiency: Annotated[tuple[tuple[float | None, Quantity | Table], ...], PlainValidator(_efficiency)] = ()
     resistance: Resistance | None = None
-    tempco: Any = None
+    tempco: TemperatureCoefficient | None = None
     winding: Resistance | None = None
     primary: Resistance | None = None
     secondary: Resistance | None = None
-    ratio: Factor | None = None
+    ratio: Annotated[Quantity, PlainValidator(reader("number", above=0))] | None = None
     esr: Resistance | None = None
 
+    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
+        if self.at_gate and self.rds and None not in self.rds:
+            yield complaint(self.source_of("at_gate"), "at_gate beside rds by gate voltage", "leave at_gate out")
+        if self.forward and (self.knee or self.slope):
+            yield complaint(self.source_of("forward"), "forward beside knee and slope", "give the curves or the line")
 
-class Gate(Record):
+
+class Gate(Section):
     """Gate of a mosfet: total charge, threshold, edge times."""
 
     IS: ClassVar[str] = "gate"
     charge: Charge | None = None
     threshold: Voltage | None = None
-    rise: Time | None = None
-    fall: Time | None = None
+    rise: EdgeTime | None = None
+    fall: EdgeTime | None = None
 
 
-class Switching(Record):
+class Switching(Section):
     """Edge times of a bjt or igbt."""
 
     IS: ClassVar[str] = "switching"
-    rise: Time | None = None
-    fall: Time | None = None
+    rise: EdgeTime | None = None
+    fall: EdgeTime | None = None
 
 
-class StoredCharge(Record):
+class StoredCharge(Section):
     """Charges that every switching cycle moves: output and reverse recovery, at a voltage."""
 
     IS: ClassVar[str] = "charge"
     output: Charge | None = None
     recovery: Charge | None = None
-    at: Voltage | None = None
+    at: VoltageRating | None = None
 
 
-class Body(Record):
+class Body(Section):
     """Body diode: V = knee + slope · I."""
 
     IS: ClassVar[str] = "body"
-    knee: Voltage | None = None
+    knee: VoltageMagnitude | None = None
     slope: Resistance | None = None
 
 
-class Transfer(Record):
-    """`alpha` is the temperature coefficient of the drain current [A/K] over drain current [A], gate voltage constant."""
+class Transfer(Section):
+    """`alpha`: temperature coefficient of the drain current [A/K] over drain current [A], at constant gate voltage."""
 
     IS: ClassVar[str] = "transfer"
-    alpha: Curve | None = None
+    alpha: Annotated[Table, table(_FROM_ZERO["current"], reader("current_tempco"))] | None = None
 
 
-class Thermal(Record):
+class Thermal(Section):
     """From junction to case (bottom, top), board and ambient. `zth_jc` is (s, K/W), `foster` (K/W, s), `cauer` (K/W, J/K)."""
 
     IS: ClassVar[str] = "thermal"
-    rth_jc: ThermalResistance | None = None
-    rth_jc_top: ThermalResistance | None = None
-    rth_jb: ThermalResistance | None = None
-    rth_ja: ThermalResistance | None = None
+    rth_jc: ThermalResistanceAboveZero | None = None
+    rth_jc_top: ThermalResistanceAboveZero | None = None
+    rth_jb: ThermalResistanceAboveZero | None = None
+    rth_ja: ThermalResistanceAboveZero | None = None
     capacity: HeatCapacity | None = None
-    zth_jc: Curve | None = None
-    foster: Curve | None = None
-    cauer: Curve | None = None
+    zth_jc: Annotated[Table, table(_POSITIVE["time"], _POSITIVE["thermal_resistance"])] | None = None
+    foster: Annotated[Table, table(_POSITIVE["thermal_resistance"], _POSITIVE["time"], rising=False)] | None = None
+    cauer: Annotated[Table, table(_POSITIVE["thermal_resistance"], _POSITIVE["thermal_capacity"], rising=False)] | None = None
+
+    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
+        given = [key for key in ("zth_jc", "foster", "cauer") if key in self.written]
+        if len(given) > 1:
+            yield complaint(self.source_of(given[1]), f"{' and '.join(given)} in one device", "keep one of them")
 
 
-class Envelope(Record):
+def _pulses(node: Any) -> Any:
+    """The mapping of an envelope, its pulse lengths gathered under one key."""
+    if not isinstance(node, Branch):
+        return node
+    gathered, pulses = Branch(node.mark), Branch(node.mark)
+    for key, value in node.items():
+        (gathered if key in ("dc", "source") else pulses).put(key, value)
+    if pulses:
+        gathered.put(Text("pulses", node.mark), pulses)
+    return gathered
+
+
+def _by_length(node: Any) -> tuple[tuple[float, Table], ...]:
+    read = table_reader(_POSITIVE["voltage"], _POSITIVE["current"])
+    rows = each(lambda key: (_POSITIVE["time"](key).typ, read(node[key])), node)
+    lengths = [length_s for length_s, _ in rows]
+    if len(set(lengths)) < len(lengths):
+        raise complaint(node.mark, "two curves for one pulse length", "keep one of them")
+    return tuple(sorted(rows, key=lambda row: row[0]))
+
+
+class Envelope(Section):
     """Digitised safe-area curves, case at 25 °C, as (V, A). `pulses` runs from the shortest length [s]."""
 
-    IS: ClassVar[str] = "envelope"
-    dc: Curve | None = None
-    pulses: tuple[tuple[float, Curve], ...] = ()
+    IS: ClassVar[str] = "an envelope"
+    dc: Annotated[Table, table(_POSITIVE["voltage"], _POSITIVE["current"])] | None = None
+    pulses: Annotated[tuple[tuple[float, Table], ...], PlainValidator(_by_length)] = ()
+
+
+def _limits(node: Any) -> dict[str, Quantity | Table]:
+    """The limits by name. A `source` among them is handed to each that has none of its own."""
+    branch = as_branch(node)
+    known = [key for key in branch if key in LIMITS]
+    values, complaints = collected(lambda key: LIMITS[key](branch[key]), known)
+    complaints += unknown_keys(branch, (*LIMITS, "source"), "limits")
+    if complaints:
+        raise together(complaints)
+    source = read_word(branch["source"]) if "source" in branch else None
+    return {str(key): _sourced(value, source) for key, value in zip(known, values, strict=True)}
+
+
+def _sourced(value: Quantity | Table, source: Text | None) -> Quantity | Table:
+    return replace(value, source=source) if source and not value.source else value
+
+
+def _matches(node: Any) -> tuple[dict[str, Text], ...]:
+    """What part values and fields the device stands for: one mapping or a list of them."""
+    rows = node if isinstance(node, Row) else [node]
+    return tuple(each(_one_match, rows))
+
+
+def _one_match(node: Any) -> dict[str, Text]:
+    branch = as_branch(node)
+    if not branch:
+        raise complaint(branch.mark, "an empty match, which would fit every part", "write {value: ...} or {FIELD: ...}")
+    return dict(each(lambda key: (str(key), read_word(branch[key])), branch))
 
 
 class Device(Record):
     """One device. `limits` holds magnitudes, as `Quantity` or, where the contract has a curve, `Table`."""
 
     IS: ClassVar[str] = "a device"
-    kind: Word
-    channel: Text | None = None
-    matches: tuple[Mapping[str, Text], ...] = ()
+    NEEDS: ClassVar[tuple[str, ...]] = ("kind",)
+    kind: Annotated[Text, one_of(*KINDS)] | None = None
+    channel: Annotated[Text, one_of("n", "p", "npn", "pnp")] | None = None
+    matches: Annotated[tuple[Mapping[str, Text], ...], PlainValidator(_matches)] = ()
     source: Word | None = None
-    limits: Mapping[str, Quantity | Table] = {}
+    limits: Annotated[Mapping[str, Quantity | Table], PlainValidator(_limits)] = {}
     conduction: Conduction = Field(default_factory=Conduction.of)
     gate: Gate = Field(default_factory=Gate.of)
     switching: Switching = Field(default_factory=Switching.of)
@@ -131,30 +254,80 @@ class Device(Record):
     body: Body = Field(default_factory=Body.of)
     transfer: Transfer = Field(default_factory=Transfer.of)
     thermal: Thermal = Field(default_factory=Thermal.of)
-    envelope: Envelope = Field(default_factory=Envelope.of)
+    envelope: Annotated[Envelope, BeforeValidator(_pulses)] = Field(default_factory=Envelope.of)
+    leakage: Annotated[Table, table(_TEMPERATURE, _FROM_ZERO["current"])] | None = None
+    _name: Text = PrivateAttr(Text(""))
 
     @property
-    def name(self) -> str:
-        raise NotImplementedError
+    def name(self) -> Text:
+        """The name that annotations use."""
+        return self._name
+
+    @classmethod
+    def complaints_about_keys(cls, branch: Branch) -> list[PydanticCustomError]:
+        general = super().complaints_about_keys(branch)
+        kind = KINDS.get(branch.get("kind", ""))
+        return general + list(_foreign_keys(branch, kind)) if kind else general
 
     def entry(self, path: str) -> Mark:
         """Where one entry was written, such as `entry("limits.vds")`; the device's own mark if it is not there."""
-        raise NotImplementedError
+        section, _, key = path.partition(".")
+        if section == "limits" and key in self.limits:
+            return self.limits[key].mark
+        part = getattr(self, section, None)
+        if key and isinstance(part, Record) and key in part.written:
+            return part.source_of(key)
+        return self.source_of(section) if not key or section in self.written else self.mark
 
     def source_text(self, path: str) -> str:
-        """The `source:` that holds for an entry: its own if it has one, else the device's, else ""."""
-        raise NotImplementedError
+        """Where the number of an entry was read: as the entry says, else its section, else the device, else ""."""
+        section, _, key = path.partition(".")
+        part = getattr(self, section, None)
+        value = self.limits.get(key) if section == "limits" else getattr(part, key, None)
+        found = (getattr(value, "source", None), getattr(part, "source", None), self.source)
+        return next((str(source) for source in found if source), "")
 
     def matches_part(self, value: str, fields: Mapping[str, str]) -> bool:
-        """Whether `matches` names a part of this value and these fields (`value` among the keys is the part's value)."""
-        raise NotImplementedError
+        """Whether `matches` names a part of this value and these fields; `value` among its keys is the part's value."""
+        known = {**fields, "value": value}
+        return any(all(fnmatch.fnmatchcase(known.get(key, ""), glob) for key, glob in row.items()) for row in self.matches)
 
 
-def read_devices(paths: Iterable[Text | str], folder: str) -> DeviceLibrary:
-    """Read device files, or every *.yaml of a folder. Raises `InputError` with every fault of all of them."""
-    raise NotImplementedError
+def _foreign_keys(branch: Branch, kind: Kind) -> Iterator[PydanticCustomError]:
+    """Keys that exist, but not for a device of this kind."""
+    what = f"a device of kind {branch['kind']}"
+    top = (*SECTIONS_OF_ALL, *kind.sections)
+    yield from _known_but_foreign(branch, top, Device.attributes(), what)
+    for section, allowed, all_keys in (
+        ("limits", kind.limits, LIMITS),
+        ("conduction", kind.conduction, Conduction.attributes()),
+        ("charge", kind.charge, StoredCharge.attributes()),
+    ):
+        if section in top and isinstance(branch.get(section), Branch):
+            yield from _known_but_foreign(branch[section], (*allowed, "source"), all_keys, f"the {section} of {what}")
+    if "channel" in branch and branch["channel"] not in kind.channels:
+        advice = nearest(str(branch["channel"]), kind.channels) or "leave it out"
+        yield complaint(branch["channel"].mark, f"the channel {shorten(str(branch['channel']))!r} for {what}", advice)
 
 
+def _known_but_foreign(branch: Branch, allowed: Iterable[str], known: Iterable[str], what: str) -> Iterator[PydanticCustomError]:
+    foreign = Branch(branch.mark)
+    for key, value in branch.items():
+        if key in known and key not in allowed:
+            foreign.put(key, value)
+    return iter(unknown_keys(foreign, allowed, what))
+
+
+class DeviceFile(Record):
+    """One file of device data."""
+
+    IS: ClassVar[str] = "a file of device data"
+    NEEDS: ClassVar[tuple[str, ...]] = ("format", "devices")
+    format: Annotated[Text, one_of("1")] | None = None
+    devices: Named[Device] = {}
+
+
+@dataclass(frozen=True, slots=True)
 class DeviceLibrary:
     """All devices by name, and the files they came from."""
 
@@ -163,4 +336,69 @@ class DeviceLibrary:
 
     def matching(self, value: str, fields: Mapping[str, str]) -> tuple[Device, ...]:
         """Every device whose `matches` fits; more than one is for the caller to refuse."""
-        raise NotImplementedError
+        return tuple(device for device in self.devices.values() if device.matches_part(value, fields))
+
+
+def read_devices(paths: Iterable[Text | str], folder: str) -> DeviceLibrary:
+    """Read device files, or every *.yaml of a folder, named as seen from the project folder.
+
+    Raises `InputError` with every fault of all of them: a name given twice, a path that leaves the project.
+    """
+    faults: list[Fault] = []
+    devices: dict[str, Device] = {}
+    files: list[SourceFile] = []
+    for path, named_at in _files_of(paths, folder, faults):
+        try:
+            found, file = _read_one(path, folder, named_at)
+        except InputError as error:
+            faults += error.faults
+            continue
+        files.append(file)
+        faults += _twice(found, devices)
+        devices = {**found, **devices}
+    if faults:
+        raise InputError(*sorted(set(faults)))
+    return DeviceLibrary(devices, tuple(files))
+
+
+def _files_of(paths: Iterable[Text | str], folder: str, faults: list[Fault]) -> list[tuple[str, Mark]]:
+    """The files that the paths stand for, each once, in the order named and by name inside a folder."""
+    found: dict[str, Mark] = {}
+    for named in paths:
+        mark = getattr(named, "mark", Mark(str(named)))
+        try:
+            for path in _listed(inside(named, folder, folder), named, mark, folder):
+                found.setdefault(path, mark)
+        except InputError as error:
+            faults += error.faults
+    return list(found.items())
+
+
+def _listed(path: str, named: str, mark: Mark, folder: str) -> list[str]:
+    if not os.path.isdir(path):
+        return [path]
+    names = sorted(name for name in os.listdir(path) if name.endswith(".yaml") and not name.startswith("."))
+    if not names:
+        raise InputError(Fault(mark, f"the folder {str(named)!r} has no file of device data", "put a NAME.yaml into it"))
+    return [inside(Text(os.path.join(named, name), mark), folder, folder) for name in names]
+
+
+def _read_one(path: str, folder: str, named_at: Mark) -> tuple[dict[str, Device], SourceFile]:
+    data, file = read_file(path, "devices", folder, named_at)
+    root, faults = tree_of(data, path)
+    faults += not_built(root, "devices")
+    try:
+        found = DeviceFile.read(root)
+    except InputError as error:
+        raise InputError(*faults, *error.faults) from None
+    if faults:
+        raise InputError(*faults)
+    for name, device in found.devices.items():
+        device._name = name
+    return {str(name): device for name, device in found.devices.items()}, file
+
+
+def _twice(found: Mapping[str, Device], before: Mapping[str, Device]) -> Iterator[Fault]:
+    for name in found.keys() & before.keys():
+        first = before[name].name.mark
+        yield Fault(found[name].name.mark, f"the device {shorten(name)!r} stands twice, first in {first}", "keep one of them")

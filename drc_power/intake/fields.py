@@ -7,7 +7,7 @@ from __future__ import annotations
 
 import datetime
 import re
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from typing import Annotated, Any, TypeVar
 
 from pydantic import BeforeValidator, PlainValidator, ValidationError
@@ -29,8 +29,8 @@ def due(node: Any, what: str, instead: str) -> PydanticCustomError:
     return complaint(node.mark, f"{what} is due here, found {describe(node)}", instead)
 
 
-def each(reader: Reader, nodes: Any) -> list[Any]:
-    """Every node read, with the complaints of all of them together."""
+def collected(reader: Reader, nodes: Iterable[Any]) -> tuple[list[Any], list[PydanticCustomError]]:
+    """Every node read that can be, and the complaints about the others."""
     values: list[Any] = []
     complaints: list[PydanticCustomError] = []
     for node in nodes:
@@ -40,6 +40,12 @@ def each(reader: Reader, nodes: Any) -> list[Any]:
             complaints.append(error)
         except ValidationError as error:
             complaints += complaints_of(error)
+    return values, complaints
+
+
+def each(reader: Reader, nodes: Iterable[Any]) -> list[Any]:
+    """Every node read; raises the complaints about all of them together."""
+    values, complaints = collected(reader, nodes)
     if complaints:
         raise together(complaints)
     return values
