@@ -234,3 +234,21 @@ def _loads(board: Board) -> tuple[dict, ...]:
 def _rules(board: Board) -> tuple[dict, ...]:
     return tuple({"name": limit.name, "pack": limit.pack, "stress": str(limit.stress), "locked": limit.locked,
                   "source": str(limit.source) if limit.source else None} for limit in board.rules.limits.values())
+
+
+def rules_in_force(path: str | os.PathLike[str]) -> tuple[dict, ...]:
+    """Every limit in force for a board: what it says, where from, and how many parts it applies to."""
+    from .checks.house import Target, applies, describe
+
+    board, _, _ = read_board(path, Run())
+    targets = [Target(part.kind, "", mode.name, part) for mode in board.modes for ref, part in mode.parts.items()
+               if ref in board.elements]
+    rows = []
+    for limit in board.rules.limits.values():
+        fitting = {t.part.ref for t in targets if applies(limit, replace(t, stress=str(limit.stress)))}
+        overrode = [f"{other.pack}" for other in board.rules.overridden if other.name == limit.name]
+        says = describe(limit) + (", locked" if limit.locked else "")
+        rows.append({"limit": limit.name, "stress": str(limit.stress), "says": says, "parts": len(fitting),
+                     "written": f"{limit.pack}, {limit.mark}" + (f", over {', '.join(overrode)}" if overrode else ""),
+                     "source": str(limit.source or "-")})
+    return tuple(rows)

@@ -14,7 +14,7 @@ from .heat import HeatModel
 from .layout import Layout
 from .variables import values_of
 
-LEAK_SIEMENS = 1e-12
+LEAK_SIEMENS = 1e-18
 """From every node to the reference, so that a net nothing drives rests at zero instead of anywhere."""
 
 

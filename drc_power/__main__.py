@@ -1,0 +1,7 @@
+"""`python -m drc_power` is `drc-power`."""
+
+import sys
+
+from .cli import main
+
+sys.exit(main())

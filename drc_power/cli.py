@@ -1,0 +1,226 @@
+"""The commands: arguments in, files and an exit status out. What they do is done elsewhere."""
+
+from __future__ import annotations
+
+import argparse
+import datetime
+import os
+import sys
+from collections.abc import Callable, Sequence
+
+from . import __version__
+from .faults import Fault, InputError, Mark
+
+OK, FINDINGS, NO_CHECK, OWN_FAULT = 0, 1, 2, 70
+FAILING = ("close", "unproven", "exceeded")
+
+
+class Arguments(argparse.ArgumentParser):
+    """Says what is wrong with a command line in one line."""
+
+    def error(self, message: str) -> None:
+        self.exit(NO_CHECK, f"{self.prog}: {message}; see {self.prog} --help\n")
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run one command. Returns the exit status; no traceback ever reaches the user."""
+    options = build_parser().parse_args(arguments)
+    try:
+        return options.run(options)
+    except InputError as error:
+        sys.stderr.write("".join(f"{_one_line(fault)}\n" for fault in error.faults))
+        return NO_CHECK
+    except BrokenPipeError:
+        # Whoever read our output has seen enough; python must not complain at exit either.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return OK
+    except KeyboardInterrupt:
+        sys.stderr.write("drc-power: stopped; nothing was written\n")
+        return NO_CHECK
+    except (Exception, RecursionError) as error:  # noqa: BLE001  the last resort that keeps tracebacks from users
+        if os.environ.get("DRC_POWER_TRACEBACK"):
+            raise
+        sys.stderr.write(f"drc-power: a fault of the tool itself ({_one_line(type(error).__name__)}: {_one_line(error)}); "
+                         "please report it with the files that caused it\n")
+        return OWN_FAULT
+
+
+def _one_line(text: object) -> str:
+    from .text import printable, shorten
+
+    return shorten(printable(str(text)), 600)
+
+
+def build_parser() -> argparse.ArgumentParser:
+    """The command line."""
+    parser = Arguments(prog="drc-power", description="Checks the power paths of a KiCad board: safe operating area, "
+                       "junction temperature, derating.", allow_abbrev=False)
+    parser.add_argument("--version", action="version", version=f"drc-power {__version__}")
+    commands = parser.add_subparsers(title="commands", metavar="COMMAND", required=True, parser_class=Arguments)
+    _survey_arguments(commands)
+    _check_arguments(commands)
+    _compare_arguments(commands)
+    _workings_arguments(commands)
+    _rules_arguments(commands)
+    return parser
+
+
+def _command(commands, name: str, run: Callable, text: str) -> argparse.ArgumentParser:
+    command = commands.add_parser(name, help=text, description=text, allow_abbrev=False)
+    command.set_defaults(run=run)
+    return command
+
+
+def _survey_arguments(commands) -> None:
+    command = _command(commands, "survey", survey, "find rails, grounds and power paths, with no annotation at all")
+    command.add_argument("netlist", metavar="NETLIST")
+    command.add_argument("--json", action="store_true", help="print only JSON on standard output")
+
+
+def _check_arguments(commands) -> None:
+    command = _command(commands, "check", check, "check a board against its device data and house rules")
+    command.add_argument("file", metavar="FILE.power.yaml")
+    command.add_argument("--json", metavar="FILE", help="write the findings as JSON; - is standard output")
+    command.add_argument("--markdown", metavar="FILE", help="write the findings as Markdown; - is standard output")
+    command.add_argument("--confirm-netlist", action="store_true", help="read the netlist with a second, independent reader too")
+    command.add_argument("--self-check", action="store_true", help="verify current and power balance of every solved point")
+    command.add_argument("--fails-from", choices=FAILING, help="the mildest verdict that fails the run")
+    command.add_argument("--today", metavar="DATE", type=_date, help="the date that waivers are held against, YYYY-MM-DD")
+
+
+def _compare_arguments(commands) -> None:
+    command = _command(commands, "compare", compare, "what a revision changed, from two findings JSON files")
+    command.add_argument("base", metavar="BASE.json")
+    command.add_argument("head", metavar="HEAD.json")
+    command.add_argument("--markdown", metavar="FILE", help="write the comparison as Markdown; - is standard output")
+
+
+def _workings_arguments(commands) -> None:
+    command = _command(commands, "workings", workings, "the calculation behind every finding on one part")
+    command.add_argument("file", metavar="FILE.power.yaml")
+    command.add_argument("ref", metavar="REF")
+
+
+def _rules_arguments(commands) -> None:
+    command = _command(commands, "rules", rules, "the rules in force and where each comes from")
+    command.add_argument("file", metavar="FILE.power.yaml")
+
+
+def _date(text: str) -> str:
+    try:
+        return datetime.date.fromisoformat(text).isoformat()
+    except ValueError:
+        raise argparse.ArgumentTypeError(f"{text!r} is no date, write YYYY-MM-DD") from None
+
+
+def survey(options) -> int:
+    """`drc-power survey`."""
+    from .netlist.reader import read_netlist
+    from .survey import survey_netlist
+    from .survey.show import survey_json, survey_text
+
+    found = survey_netlist(read_netlist(options.netlist))
+    if options.json:
+        import json
+
+        sys.stdout.write(json.dumps(survey_json(found), indent=1, ensure_ascii=True) + "\n")
+    else:
+        sys.stdout.write(survey_text(found))
+    return OK
+
+
+def check(options) -> int:
+    """`drc-power check`."""
+    from .findings.verdict import exit_status
+    from .report.json_writer import to_json
+    from .report.markdown import to_markdown
+    from .report.terminal import to_table
+    from .run import Run, check as run_check
+
+    result = run_check(options.file, Run(options.today, _progress, options.confirm_netlist, options.self_check, options.fails_from))
+    _progress("")
+    wanted = [(options.json, to_json), (options.markdown, to_markdown)]
+    to_stdout = _deliver({path: writer(result) for path, writer in wanted if path}, [path for path, _ in wanted])
+    if not to_stdout:
+        sys.stdout.write(to_table(result, _width(), _colour()))
+    return exit_status(result)
+
+
+def compare(options) -> int:
+    """`drc-power compare`."""
+    from .findings.compare import compare as compare_results
+    from .report.comparison import comparison_markdown, comparison_table
+    from .report.json_reader import load_result
+
+    base, head = (load_result(_text_of(path), path) for path in (options.base, options.head))
+    comparison = compare_results(base, head)
+    texts = {options.markdown: comparison_markdown(comparison)} if options.markdown else {}
+    if not _deliver(texts, [options.markdown]):
+        sys.stdout.write(comparison_table(comparison, _width(), _colour()))
+    return OK
+
+
+def workings(options) -> int:
+    """`drc-power workings`."""
+    from .report.workings import workings_text
+    from .run import check as run_check
+
+    result = run_check(options.file)
+    if options.ref not in {f.ref for f in result.findings}:
+        from .intake.suggest import nearest
+
+        known = sorted({f.ref for f in result.findings if f.ref})
+        raise InputError(Fault(Mark(options.file), f"there is no finding on a part {options.ref!r}", nearest(options.ref, known)))
+    sys.stdout.write(workings_text(result, options.ref))
+    return OK
+
+
+def rules(options) -> int:
+    """`drc-power rules`."""
+    from .report.rules_table import rules_text
+    from .run import rules_in_force
+
+    sys.stdout.write(rules_text(rules_in_force(options.file)))
+    return OK
+
+
+def _deliver(texts: dict[str, str], order: Sequence[str | None]) -> bool:
+    """Write the files, all or none; whether anything went to standard output."""
+    from .report.write import write_files
+
+    if sum(path == "-" for path in order) > 1:
+        raise InputError(Fault(Mark("-"), "two outputs go to standard output", "give one of them a file"))
+    write_files({path: text for path, text in texts.items() if path != "-"})
+    if "-" in texts:
+        sys.stdout.write(texts["-"])
+    return "-" in texts
+
+
+def _text_of(path: str) -> str:
+    try:
+        with open(path, encoding="utf-8") as file:
+            return file.read()
+    except (OSError, ValueError) as error:
+        reason = getattr(error, "strerror", None) or "it is not UTF-8 text"
+        raise InputError(Fault(Mark(path), f"cannot be read: {reason.lower()}", "name a findings JSON file of `check --json`")) from None
+
+
+def _width() -> int:
+    import shutil
+
+    return shutil.get_terminal_size((100, 24)).columns
+
+
+def _colour() -> bool:
+    return sys.stdout.isatty() and not os.environ.get("NO_COLOR")
+
+
+def _progress(text: str) -> None:
+    """What is being done, on one line of standard error that the next overwrites; nothing unless it is a terminal."""
+    if sys.stderr.isatty():
+        sys.stderr.write(f"\r\x1b[K{text}")
+        sys.stderr.flush()
+
+
+if __name__ == "__main__":
+    sys.exit(main())
