@@ -5,15 +5,15 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from drc_power.netlist.model import Netlist
-from drc_power.survey import elements, sources
+from drc_power.survey import elements, inlets, outlets
 from drc_power.survey.elements import Found, judge_all
 from drc_power.survey.fitted import why_not_fitted
 from drc_power.survey.graph import directed, distances
 from drc_power.survey.identify import identify
+from drc_power.survey.inlets import End
 from drc_power.survey.model import Element, Identity, Rail, Signal, Survey
 from drc_power.survey.paths import trace
 from drc_power.survey.rails_found import make_rails
-from drc_power.survey.sources import End
 from drc_power.survey.stages import find_stages
 from drc_power.survey.standing import Standing
 from drc_power.survey.wiring import Wiring
@@ -25,13 +25,13 @@ def build_survey(netlist: Netlist) -> Survey:
     identities = identify(netlist)
     wiring = Wiring(netlist, identities, left_out)
     nets = Standing(wiring)
-    drivers = sources.find_drivers(nets)
+    drivers = outlets.find_drivers(nets)
     nets.power |= {end.back for end in drivers}
     founds = judge_all(wiring, nets)
-    inlets = sources.find_sources(nets, founds)
-    steps = distances(founds, nets, [end.net for end in inlets])
+    ways_in = inlets.find_sources(nets, founds)
+    steps = distances(founds, nets, inlets.start_nets(nets, founds, ways_in))
     found_elements = _elements(netlist, identities, founds, nets, steps)
-    found_elements += [_end_element(identities, end) for end in (*inlets, *drivers, *sources.find_loads(nets, inlets))]
+    found_elements += [_end_element(identities, end) for end in (*ways_in, *drivers, *outlets.find_loads(nets, ways_in))]
     order = {ref: i for i, ref in enumerate(netlist.parts)}
     ordered = tuple(sorted(found_elements, key=lambda e: (order[e.ref], _GROUPS.index(e.group), e.from_net, e.to_net)))
     return Survey(

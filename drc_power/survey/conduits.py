@@ -71,26 +71,33 @@ def _transistor(first: str, second: str, control: str):
 
 
 def _regulator(wiring: Wiring, identity: Identity) -> list[Conduit]:
-    """From each input to each output; a converter without an output pin feeds its switch node."""
+    """From the input to each switch node that has an inductor outside, and to each output that no such node feeds."""
     ref = identity.ref
-    grounds = set(wiring.nets_of(ref, "ground"))
-    inputs = [net for net in wiring.nets_of(ref, "input") if net not in grounds]
-    nodes = [net for net in wiring.nets_of(ref, "switch_node") if net not in grounds]
-    outputs = [net for net in wiring.nets_of(ref, "output") if net not in grounds and net not in inputs]
-    targets = nodes or outputs
-    return [Conduit(ref, identity.kind, a, b, wiring.net(ref, "enable"), True) for a in inputs[:1] for b in targets]
+    barred = {*wiring.nets_of(ref, "ground"), *wiring.nets_of(ref, "input")}
+    nodes = [net for net in wiring.nets_of(ref, "switch_node") if net not in barred]
+    outputs = [net for net in wiring.nets_of(ref, "output") if net not in barred]
+    coiled = [net for net in nodes if any(tap.kind in ("inductor", "transformer") for tap in wiring.taps(net))]
+    behind = {wiring.across(tap) for net in coiled for tap in wiring.tied(net, "inductor")}
+    targets = coiled + [net for net in outputs if net not in behind and net not in coiled] or nodes
+    inputs = [net for net in wiring.nets_of(ref, "input") if net not in targets]
+    several = len(wiring.netlist.parts[ref].pins) >= _MANAGER_PINS
+    used = inputs if several else inputs[:1]
+    return [Conduit(ref, identity.kind, a, b, wiring.net(ref, "enable"), True) for a in used for b in targets]
+
+
+_MANAGER_PINS = 20
+"""From this size on a chip may take power in at several inputs (a power manager with charger)."""
 
 
 def _bridge(wiring: Wiring, identity: Identity) -> list[Conduit]:
-    return [
-        Conduit(identity.ref, identity.kind, wiring.net(identity.ref, ac), wiring.net(identity.ref, "plus"), one_way=True)
-        for ac in ("ac1",)
-    ]
+    plus = wiring.net(identity.ref, "plus")
+    return [Conduit(identity.ref, identity.kind, wiring.net(identity.ref, ac), plus, one_way=True) for ac in ("ac1", "ac2")]
 
 
 def _transformer(wiring: Wiring, identity: Identity) -> list[Conduit]:
-    primary, secondary = wiring.nets_of(identity.ref, "primary"), wiring.nets_of(identity.ref, "secondary")
-    return [Conduit(identity.ref, identity.kind, primary[0], secondary[0])] if primary and secondary else []
+    """From the first end of the primary to each end of the secondary."""
+    primary = wiring.nets_of(identity.ref, "primary")
+    return [Conduit(identity.ref, identity.kind, primary[0], net) for net in wiring.nets_of(identity.ref, "secondary")] if primary else []
 
 
 _MAKERS = {

@@ -105,6 +105,8 @@ def _coil_diode(nets: Standing, c: Conduit) -> Verdict | None:
 
 def _rectifier(nets: Standing, c: Conduit) -> Verdict | None:
     """From a switched or alternating node into a reservoir capacitor."""
+    if c.a in nets.low:
+        return None
     moved = _switched(nets, c.a, c.ref) or bool(_kinds(nets, c.a, c.ref) & {"transformer"})
     if moved and (nets.is_power(c.a) or load_on(nets, c.a, c.ref)[0] >= 2.0) and _has_reservoir(nets, c.b) and c.b not in nets.low:
         return Verdict("switch", ("from a switched node into a reservoir: rectifier diode",), 0.85)
@@ -158,7 +160,7 @@ def judge_clamp(nets: Standing, c: Conduit) -> Verdict:
 
 def judge_led(nets: Standing, c: Conduit) -> Verdict:
     """An indicator is signal; one without a series resistor on a power node is a load."""
-    straight = {"resistor", "ic"}.isdisjoint(_kinds(nets, c.a, c.ref) | _kinds(nets, c.b, c.ref))
-    if straight and (nets.is_any(c.a) and nets.is_any(c.b)):
+    straight = {"resistor", "ic", "switching-regulator"}.isdisjoint(_kinds(nets, c.a, c.ref) | _kinds(nets, c.b, c.ref))
+    if straight and (nets.is_any(c.a) or nets.is_any(c.b)):
         return Verdict("load", ("light-emitting diode straight on a power path",), 0.6)
     return signal("indicator")

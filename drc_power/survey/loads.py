@@ -8,6 +8,7 @@ from typing import NamedTuple
 
 from drc_power.netlist.model import Part
 from drc_power.survey.channel import texts
+from drc_power.survey.grounds import is_low_ohm
 from drc_power.survey.pins import plain
 from drc_power.survey.standing import MAIN_ENDS, SWITCHING_PIN, Standing
 from drc_power.survey.values import amperes, ohms, watts
@@ -58,6 +59,12 @@ def _power_resistor(nets: Standing, tap: Tap, value: float) -> bool:
     return 1.0 < value <= 200.0 and (rated >= 1.0 or bool(re.search(r"heater|TO-?2|DIN0[4-9]|25\d\d|L\d\d\.\dmm", f"{tap.part.value} {tap.part.footprint}", re.I)))
 
 
+def _ballast(nets: Standing, tap: Tap) -> bool:
+    """A resistor to the return that is called a load, or a formula of a simulated one."""
+    value = ohms(tap.part.value)
+    return tap.kind == "resistor" and nets.wiring.across(tap) in nets.grounds and (value is None or value < 47.0) and not is_low_ohm(tap)
+
+
 HANGS: tuple[Hang, ...] = (
     Hang(lambda n, t: t.kind == "inductor", 3.0, 3.0, "an inductor"),
     Hang(lambda n, t: t.kind == "transformer", 3.0, 3.0, "a transformer"),
@@ -72,6 +79,8 @@ HANGS: tuple[Hang, ...] = (
     Hang(_resistor(_power_resistor), 2.0, 2.0, "a power resistor"),
     Hang(_resistor(lambda n, t, r: r < 10 and not _to_gate(n, t)), 0.7, 0.7, "a low resistance"),
     Hang(lambda n, t: t.kind == "led", 0.5, 0.5, "a light-emitting diode"),
+    Hang(lambda n, t: t.kind == "led" and bool(re.search(r"laser|high.?power|\dW\b|\bCOB\b|strip", texts(t.part), re.I)), 1.5, 1.5, "a power light-emitting diode"),
+    Hang(_ballast, 1.5, 1.5, "a load resistor"),
     Hang(_resistor(lambda n, t, r: r >= 47 and not _power_resistor(n, t, r)), -0.6, -1.8, "resistors of signal size"),
     Hang(lambda n, t: t.kind in ("ic", "unknown") and t.terminal == "" and t.pin.type != "passive" and not SWITCHING_PIN.match(plain(t.pin.name)), -1.0, -2.0, "signal pins"),
     Hang(lambda n, t: t.terminal == "supply" and t.kind in ("ic", "gate-driver"), 1.0, 2.0, "supply pins"),
@@ -83,6 +92,10 @@ HANGS: tuple[Hang, ...] = (
 
 def load_on(nets: Standing, node: str, without: str = "") -> tuple[float, tuple[str, ...]]:
     """(weight, words) of what hangs on `node`, looked at through beads, ties and low resistances."""
+    if node in nets.grounds:
+        return 0.0, ()
+    if node in nets.supplies:
+        return 1.5, ("a supply",)
     total, words = 0.0, []
     taps = [t for net in sorted(nets.far(node)) for t in nets.wiring.taps(net) if t.ref != without]
     for row in HANGS:

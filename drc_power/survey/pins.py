@@ -29,7 +29,7 @@ PATTERNS: Mapping[str, tuple[tuple[str, str], ...]] = {
     "diode": (("anode", r"A\d?|ANODE\d?|AN"), ("cathode", r"K\d?|C\d?|CATHODE\d?|CATH|KATHODE|COM|TAB|KK")),
     "bridge": (("plus", r"\+|DC\+|P(OS)?|V\+|PLUS"), ("minus", r"-|DC-|N(EG)?|V-|MINUS"), ("ac", r"|AC\d?|A\d|IN\d?|L|N\d|\d")),
     "linear-regulator": (
-        ("ground", _GROUND), ("enable", _ENABLE), ("feedback", _FEEDBACK), ("output", _OUT_MANY), ("input", _IN_MANY),
+        ("ground", _GROUND), ("enable", _ENABLE), ("feedback", _FEEDBACK), ("output", _OUT_MANY + r"|V?BAT\d?"), ("input", _IN_MANY),
     ),
     "switching-regulator": (
         ("ground", _GROUND), ("enable", _ENABLE), ("feedback", _FEEDBACK),

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 
 from drc_power.survey.model import Element, Rail
-from drc_power.survey.pins import plain
+from drc_power.survey.pins import is_ground_pin, plain
 from drc_power.survey.standing import Standing
 from drc_power.survey.values import ohms
 from drc_power.survey.voltages import leaf, reference_of_part, voltage_of_name, voltage_of_part
@@ -17,15 +17,15 @@ def make_rails(nets: Standing, elements: Sequence[Element]) -> tuple[Rail, ...]:
 
 
 def _rail(nets: Standing, net: str, elements: Sequence[Element]) -> Rail:
-    feeders = _fed_by(net, elements)
+    feeders = _fed_by(nets, net, elements)
     volts, because = _voltage(nets, net, feeders)
     return Rail(net, volts, because, feeders)
 
 
-def _fed_by(net: str, elements: Sequence[Element]) -> tuple[str, ...]:
+def _fed_by(nets: Standing, net: str, elements: Sequence[Element]) -> tuple[str, ...]:
     """What supply current comes through to the rail; behind a converter's inductor stands the converter."""
     direct = [e for e in elements if e.to_net == net and e.group in ("source", "pass", "switch")]
-    fed: dict[str, None] = {}
+    fed: dict[str, None] = {tap.ref: None for tap in nets.wiring.taps(net) if tap.kind == "ic" and tap.pin.type == "power_out" and not is_ground_pin(tap.pin)}
     for e in direct:
         chips = [c.ref for c in elements if c.role == "switching-regulator" and c.to_net == e.from_net] if e.role == "inductor" else []
         for ref in chips or [e.ref]:

@@ -56,6 +56,8 @@ class Standing:
         """Whether the net is a gate's, or reaches one through one gate resistor."""
         if net in self.gates:
             return True
+        if net in self.supplies or net in self.low:
+            return False
         return any(
             self.wiring.across(tap) in self.gates
             for tap in self.wiring.tied(net, "resistor")
@@ -67,9 +69,9 @@ class Standing:
         found, waiting = {net}, [net]
         while waiting:
             for tap in self.wiring.taps(waiting.pop()):
-                if tap.kind in ("net-tie", "ferrite", "fuse") or tap.kind == "resistor" and is_low_ohm(tap):
+                if tap.kind in ("net-tie", "ferrite", "fuse") or tap.kind == "resistor" and is_low_ohm(tap, 5.0):
                     other = self.wiring.across(tap)
-                    if other and other not in found and other not in self.supplies and other not in self.grounds:
+                    if other and other not in found | self.supplies | self.grounds | self.gates:
                         found.add(other)
                         waiting.append(other)
         return found
