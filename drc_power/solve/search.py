@@ -107,13 +107,12 @@ class _Search:
         """Flip every side at every worst point; whether that made any followed objective worse."""
         before = self.values[flip].min(axis=1)
         worst = np.unique(self.values[flip].argmin(axis=1))
-        self.evaluate(self._neighbours(self.points[worst]))
+        if self.n_free:
+            self.evaluate(self._neighbours(self.points[worst]))
         after = self.values[flip].min(axis=1)
         return bool((after < before - SAME * np.maximum(1.0, np.abs(before))).any())
 
     def _neighbours(self, points: np.ndarray) -> np.ndarray:
-        if not self.n_free:
-            return points
         out = np.repeat(points, self.n_free, axis=0)
         side = np.tile(self.free, len(points))
         row = np.arange(len(out))

@@ -1,0 +1,53 @@
+"""The worst corner: found by signs, confirmed by flips and random points, on functions whose worst corner is known."""
+
+from __future__ import annotations
+
+import itertools
+
+import numpy as np
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from drc_power.faults import Mark
+from drc_power.quantity import Span
+from drc_power.solve.search import worst_corners
+from drc_power.solve.variables import Box
+
+
+def box_of(n: int) -> Box:
+    box = Box()
+    for k in range(n):
+        box.param(f"x{k}", Span(-1.0, 0.25, 1.0), "voltage", Mark("here"))
+    return box
+
+
+@settings(max_examples=40, deadline=None)
+@given(st.integers(1, 12), st.integers(0, 2**31))
+def test_linear_functions_have_their_worst_corner_by_sign(n, seed):
+    weights = np.random.default_rng(seed).normal(size=(3, n))
+    worst = worst_corners(box_of(n), lambda points: weights @ points.T)
+    values = (weights @ worst.points.T)[np.arange(3), worst.at]
+    assert values == pytest.approx(-np.abs(weights).sum(axis=1))
+
+
+@pytest.mark.parametrize("n", [6, 9])
+def test_products_change_sign_and_need_flips(n):
+    """x0·x1 + x2·x3 + ...: around the typical point the signs mislead where a side looks the other way at the far end."""
+    def objective(points):
+        return (points[:, 0::3] * points[:, 1::3]).sum(axis=1)[None] - 0.1 * points.sum(axis=1)[None]
+
+    worst = worst_corners(box_of(n), objective)
+    found = objective(worst.points)[0, worst.at[0]]
+    corners = np.array(list(itertools.product((-1.0, 1.0), repeat=n)))
+    assert found == pytest.approx(objective(corners).min())
+
+
+def test_influence_names_the_sides_that_matter():
+    worst = worst_corners(box_of(8), lambda points: points[:, [2]].T * 3.0)
+    assert np.flatnonzero(np.abs(worst.influence[0]) > 1e-9).tolist() == [2]
+
+
+def test_a_box_without_sides_is_one_point():
+    worst = worst_corners(Box(), lambda points: np.zeros((2, len(points))))
+    assert worst.points.shape == (1, 0)
