@@ -128,7 +128,7 @@ def quantity_from(node: Any, *dimensions: str) -> Quantity:
 def _from_ends(branch: Branch, dimensions: tuple[str, ...]) -> Quantity:
     _refuse_other_keys(branch)
     given = [key for key in branch if key in ENDS]
-    ends = dict(zip(given, each(lambda key: _end(branch[key], dimensions), given), strict=True))
+    ends = dict(zip(given, each(lambda key: one_value(branch[key], dimensions), given), strict=True))
     if len({end.dimension for end in ends.values()}) > 1:
         raise complaint(branch.mark, "a span whose ends measure different things", "write every end in the same unit")
     try:
@@ -146,12 +146,13 @@ def _refuse_other_keys(branch: Branch) -> None:
         raise together(complaint(key.mark, f"{shorten(key)!r} is not an end of a span", nearest(key, ENDS)) for key in wrong)
 
 
-def _end(node: Any, dimensions: tuple[str, ...]) -> Quantity:
+def one_value(node: Any, dimensions: tuple[str, ...]) -> Quantity:
+    """A quantity that is one value and no span."""
     if not isinstance(node, Text):
         raise due(node, "one value", such_as(dimensions))
     end = quantity_from(node, *dimensions)
     if not end.span.is_exact:
-        raise complaint(end.mark, f"{shorten(end.text)!r} is a span where one value is due", "write one value for each end")
+        raise complaint(end.mark, f"{shorten(end.text)!r} is a span where one value is due", "write one value")
     return end
 
 

@@ -38,10 +38,7 @@ NOT_BUILT: dict[str, dict[str, bool]] = {
         "sinks.*.faces": True,
     },
     "devices": {},
-    "rules": {
-        "methods.envelope_scaling=!current": True,
-        "methods.derived_envelope=!unproven": True,
-    },
+    "rules": {},
 }
 """By kind of file: path of keys, `*` for any name, `=word` for one value, `=!word` for every other value.
 

@@ -43,7 +43,9 @@ def describe(node: Any) -> str:
         return "a mapping"
     if isinstance(node, Blank):
         return "nothing"
-    return f"{shorten(node)!r}" if isinstance(node, Text) else "a list"
+    if isinstance(node, Text):
+        return repr(shorten(node))
+    return "a list" if node else "an empty list"
 
 
 def shorten(text: str, width: int = 40) -> str:

@@ -1,17 +1,28 @@
-"""Records of waivers: findings that somebody accepted, for a time and at a value."""
+"""Waivers: findings that somebody accepted, until a day and at a value. `read_waivers` gives `Waivers`."""
 
 from __future__ import annotations
 
-import datetime
-from typing import Any, ClassVar
+import os
+from dataclasses import dataclass
+from typing import Annotated, Any, ClassVar
 
-from .fields import Day, Word, quantity
-from .record import Record
+from pydantic import PlainValidator
+
+from ..faults import InputError, Mark
+from ..quantity import DIMENSIONS
+from .fields import Day, Word, as_row, collected, one_value
+from .files import read_file
+from .record import Record, faults_of, together
+from .tree import tree_of
 from .values import Quantity, SourceFile, Text
 
 
+def _value(node: Any) -> Quantity:
+    return one_value(node, tuple(DIMENSIONS))
+
+
 class Waiver(Record):
-    """One accepted finding. It counts until the day `until`, and while the finding is not worse than `value`."""
+    """One accepted finding. It counts to the end of the day `until`, and while the finding is not worse than `value`."""
 
     IS: ClassVar[str] = "a waiver"
     NEEDS: ClassVar[tuple[str, ...]] = ("finding", "because", "by", "until", "value")
@@ -19,15 +30,26 @@ class Waiver(Record):
     because: Word | None = None
     by: Word | None = None
     until: Day | None = None
-    value: Quantity | None = None
+    value: Annotated[Quantity, PlainValidator(_value)] | None = None
 
 
+@dataclass(frozen=True, slots=True)
 class Waivers:
-    """Every waiver of one file."""
+    """Every waiver of a file, in its order."""
 
     waivers: tuple[Waiver, ...]
-    file: SourceFile
+    files: tuple[SourceFile, ...]
 
 
 def read_waivers(path: Text | str, folder: str) -> Waivers:
-    raise NotImplementedError
+    """Read a list of waivers, named as seen from the project folder. Raises `InputError` with every fault of it."""
+    name = os.path.normpath(os.path.join(folder, path))
+    data, file = read_file(name, "waivers", folder, getattr(path, "mark", Mark(name)))
+    root, faults = tree_of(data, name)
+    rows, wrong = collected(as_row, [root])
+    waivers, complaints = collected(Waiver.model_validate, rows[0] if rows else ())
+    complaints += wrong
+    faults += faults_of(together(complaints)) if complaints else []
+    if faults:
+        raise InputError(*sorted(set(faults)))
+    return Waivers(tuple(waivers), (file,))
