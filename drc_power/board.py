@@ -14,6 +14,7 @@ from .intake.notes import InterfaceNote, LoadNote, PartNote, RailNote, StageNote
 from .intake.rules import Limit, RulePack
 from .intake.suggest import nearest
 from .intake.values import Quantity, Table, Text
+from .quantity import QuantityError, Span, parse_span, parse_value_field
 from .netlist.model import Netlist, Part
 from .netlist.natural import natural_key
 from .survey.model import Element, Identity, Survey
@@ -35,6 +36,7 @@ class BoardPart:
     element: Element | None
     device: Device | None
     note: PartNote
+    written_ratings: Mapping[str, Quantity] = field(default_factory=dict)
 
     @property
     def ref(self) -> str:
@@ -60,8 +62,9 @@ class BoardPart:
         return found
 
     def limit(self, stress: str):
-        """The device's own limit for a stress, or None."""
-        return self.device.limits.get(stress) if self.device else None
+        """The rating for a stress: the device data's, else what the schematic's fields or value say, else None."""
+        given = self.device.limits.get(stress) if self.device else None
+        return given if given is not None else self.written_ratings.get(stress)
 
 
 @dataclass(frozen=True, slots=True)
@@ -131,7 +134,7 @@ class Board:
             except InputError as error:
                 faults += error.faults
                 continue
-            bound[ref] = BoardPart(part, self.survey.parts[ref], elements.get(ref), device, note)
+            bound[ref] = BoardPart(part, self.survey.parts[ref], elements.get(ref), device, note, self._written(part))
         if faults:
             raise InputError(*dict.fromkeys(faults))
         return bound
@@ -157,6 +160,20 @@ class Board:
             raise InputError(Fault(Mark(self.netlist_name, part.line), f"{part.ref} matches the devices {names}",
                                    f"name one of them: parts: {{{part.ref}: {{device: {fitting[0].name}}}}}"))
         return fitting[0] if fitting else None
+
+    def _written(self, part: Part) -> dict[str, Quantity]:
+        """Ratings that the schematic gives: in fields that the house maps, and behind the value as in 10uF/25V."""
+        mark, found = Mark(self.netlist_name, part.line), {}
+        for stress in ("voltage", "current", "power", "temperature"):
+            for name in getattr(self.rules.fields, stress):
+                text = part.fields.get(str(name))
+                if text and stress not in found and (span := _span_or_none(text, stress)) is not None:
+                    found[stress] = Quantity(span, stress, text, mark)
+        for dimension in VALUE_DIMENSIONS.get(self.survey.parts[part.ref].kind, ()):
+            read = parse_value_field(part.value, dimension)
+            for stress, rating in (read.ratings.items() if read else ()):
+                found.setdefault(stress, Quantity(Span.exact(rating), stress, part.value, mark))
+        return found
 
     @cached_property
     def netlist_name(self) -> str:
@@ -248,6 +265,19 @@ class Board:
         for part in mode.parts.values():
             if part.note.heat is not None and part.note.heat.sink:
                 yield "sink", part.note.heat.sink, sinks
+
+
+VALUE_DIMENSIONS = {"capacitor": ("capacitance",), "resistor": ("resistance",), "inductor": ("inductance",),
+                    "ferrite": ("impedance",), "fuse": ("current",)}
+"""What the main value of a kind is, for reading the ratings written behind it."""
+
+
+def _span_or_none(text: str, dimension: str) -> Span | None:
+    """A rating as a schematic field has it; text that is not understood in full gives no value."""
+    try:
+        return parse_span(text, dimension)
+    except QuantityError:
+        return None
 
 
 STAGE_PART_KEYS = ("chip", "high", "low", "switch", "pair", "parts", "controller", "inductor", "shunts", "clamp",

@@ -12,7 +12,7 @@ from .board import Board, Mode
 from .checks import Judgement, judge
 from .checks.judge import make_finding, objective_of
 from .findings.model import Coverage, Finding, InputFile, NetPoint, OperatingPoint, Outside, PartRow, Result, Sensitivity
-from .findings.order import sort_findings
+from .findings.order import finding_key
 from .findings.waiving import Waiver, apply_waivers
 from .intake.annotations import Annotations, read_annotations
 from .intake.devices import read_devices
@@ -29,7 +29,10 @@ from .survey import survey_netlist
 Progress = Callable[[str], None]
 
 MOVES = 1e-6
-"""A side of the box is named in a corner when it moves the quantity by more than this share of its size."""
+"""A side of the box that moves a quantity by less than this matters to nobody."""
+
+NAMED_FROM = 0.02
+"""A side is named in a corner when it moves the quantity by this share or more of what the strongest side does."""
 
 
 @dataclass(slots=True)
@@ -150,7 +153,8 @@ def _gaps(engine: Engine, worst: Worst, judgements: list[Judgement], n_judged: i
 def _corner(circuit, worst: Worst, objective: int, sample: int) -> str:
     """The corner in words: the sides that matter, the strongest first."""
     moves = np.abs(worst.influence[objective])
-    matter = [k for k in np.argsort(-moves, kind="stable") if moves[k] > MOVES]
+    least = max(MOVES, NAMED_FROM * moves.max(initial=0.0))
+    matter = [k for k in np.argsort(-moves, kind="stable") if moves[k] >= least]
     named = [f"{v.name} {format_quantity(worst.points[sample, k], v.dimension)}"
              for k in matter for v in (circuit.box.variables[k],)]
     return ", ".join(named) if named else "any corner"
@@ -212,7 +216,7 @@ def _result(board: Board, inputs, findings: list[Finding], points, nets, run: Ru
     annotations = board.annotations
     result = Result(
         annotations.board_name, annotations.board_revision, str(annotations.netlist), len(board.netlist.parts),
-        len(board.netlist.nets), inputs, tuple(sort_findings(findings)), coverage, run.today, rows, _rails(board),
+        len(board.netlist.nets), inputs, tuple(sorted(findings, key=finding_key)), coverage, run.today, rows, _rails(board),
         _loads(board), _rules(board), tuple(points), tuple(nets), tuple(board.notes), board.rules.fails_from)
     return replace(result, fails_from=run.fails_from) if run.fails_from else result
 

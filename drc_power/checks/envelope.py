@@ -60,7 +60,7 @@ def _case_c(element: ElementView) -> np.ndarray:
 
 def safe_a(element: ElementView, voltage_v: np.ndarray, lasts_s: float, case_c: np.ndarray) -> np.ndarray:
     """The current that the area allows at a voltage for a time, at the case temperature [A]."""
-    device, tj_max_c = element.part.device, element.rating("tj")
+    device, tj_max_c = element.part.device, element.part.limit("tj").min
     if device.envelope.dc is None and not device.envelope.pulses:
         return power_line_a(voltage_v, device.thermal.rth_jc.max, case_c, tj_max_c)
     scaling = str(element.view.board.rules.methods.get("envelope_scaling", "current"))

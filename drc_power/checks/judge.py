@@ -17,6 +17,9 @@ from .judgement import Judgement
 UNKNOWN_MARGIN = -1e-12
 """In the search for the worst corner a missing margin goes before every margin that holds, after every one that does not."""
 
+TIE_BREAK = 1e-7
+"""Of two corners of equal margin the one with the worse value is shown, as for a part that is as warm as the air."""
+
 
 def objective_of(judgement: Judgement) -> np.ndarray:
     """What the search for the worst corner makes as small as it can, shape (sample,)."""
@@ -24,7 +27,17 @@ def objective_of(judgement: Judgement) -> np.ndarray:
         value = np.nan_to_num(judgement.value, nan=0.0, posinf=0.0, neginf=0.0)
         return value if judgement.sense == "at_least" else -value
     margins = judgement.margins()
-    return np.where(np.isnan(margins), UNKNOWN_MARGIN, np.maximum(margins, -1e6))
+    known = np.where(np.isnan(margins), UNKNOWN_MARGIN, np.maximum(margins, -1e6))
+    return known + TIE_BREAK * _room(judgement)
+
+
+def _room(judgement: Judgement) -> np.ndarray:
+    """How far the value is from its limit, on a scale of its own, shape (sample,): decides between equal margins."""
+    sign = -1.0 if judgement.sense == "at_least" else 1.0
+    size = np.abs(judgement.allowed) + np.abs(judgement.value)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        room = sign * (judgement.allowed - judgement.value) / size
+    return np.nan_to_num(room, nan=0.0, posinf=0.0, neginf=0.0)
 
 
 def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, gaps: Sequence[str],
