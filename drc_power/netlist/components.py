@@ -9,6 +9,7 @@ from types import MappingProxyType
 from drc_power.faults import Fault, InputError
 from drc_power.netlist.clauses import contradiction, is_set, only_value, plain, says_yes
 from drc_power.netlist.model import Part
+from drc_power.netlist.natural import natural_key
 from drc_power.netlist.sexpr import Clause
 from drc_power.netlist.source import Source, shown
 from drc_power.netlist.symbols import Jumpers, Symbol, Symbols, read_jumpers
@@ -81,7 +82,7 @@ def _component(source: Source, ref: str, comp: Clause, symbols: Symbols) -> Comp
         sheet=sheetpath.value("names") or "/",
         uuid=_uuid_path(sheetpath.value("tstamps"), uuids),
         uuids=uuids,
-        units=tuple(unit.value("name") for unit in units),
+        units=tuple(sorted((unit.value("name") for unit in units), key=natural_key)),
         **{mark: mark in marks or is_set(comp, mark) for mark in _MARKS},
         line=source.line(comp.at),
     )

@@ -39,14 +39,12 @@ def not_a_netlist(source: Source) -> Fault | None:
         if re.match(pattern, beginning):
             return source.fault(0, f"this is {kind}, not a netlist", _export_line(source.path))
     first = _FIRST_NAME.match(source.text)
-    if first is None:
-        found = f"this is not a netlist: it begins with {shown(beginning.split(maxsplit=1)[0])}"
-        return source.fault(0, found, _export_line(source.path))
-    if first[1] == "export":
+    if first and first[1] == "export":
         return None
-    kind = _BY_FIRST_NAME.get(first[1])
-    found = f"this is {kind}, not a netlist" if kind else f"this is not a netlist: it holds ({shown(first[1])} ...)"
-    return source.fault(first.start(1), found, _export_line(source.path))
+    if first and (kind := _BY_FIRST_NAME.get(first[1])):
+        return source.fault(first.start(1), f"this is {kind}, not a netlist", _export_line(source.path))
+    found = f"this is not a netlist: it begins with {shown(beginning.split(maxsplit=1)[0])}"
+    return source.fault(len(source.text) - len(beginning), found, _export_line(source.path))
 
 
 def _export_line(path: str) -> str:

@@ -32,7 +32,7 @@ _TOKEN = re.compile(
     | \( \s*+ (?P<name>{_BARE}|)
     | (?P<close>\))
     | ^[ \t]*+ (?P<comment>\#.*+)
-    | "(?P<text>(?:[^"\\\n]|\\.)*+)"
+    | "(?P<text>(?:[^"\\\n]++|\\.)*+)"
     | (?P<word>{_BARE})
     | (?P<bad>\S)
     """,

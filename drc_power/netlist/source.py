@@ -99,7 +99,7 @@ def _decode(path: str, data: bytes) -> str:
         found = "a zero byte, so this is not a text file"
         raise InputError(Fault(_mark_of_byte(path, data, zero), found, "give a netlist exported by KiCad"))
     try:
-        return data.decode("utf-8-sig")
+        return data.decode("utf-8").removeprefix("\ufeff")
     except UnicodeDecodeError as error:
         found = f"byte 0x{data[error.start]:02X} is not UTF-8 text"
         mark = _mark_of_byte(path, data, error.start)
