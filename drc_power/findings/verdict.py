@@ -35,8 +35,8 @@ def margin(value: ArrayLike, allowed: ArrayLike, *, at_least: bool = False,
     unit: the unit of value and allowed; "°C" counts from ambient: m = (allowed − value)/(allowed − ambient), and −1
         where the limit lies on ambient's wrong side and the quotient has no meaning.
     Returns the margin [1], shape (corner,) or a float: 0 at the limit, negative past it, NaN where a datum is missing
-    or infinite (an infinite value alone is infinitely past a maximum). The scale of a negative limit is its magnitude,
-    so that the sign stays right; a limit of 0, which has none, gives 0 on it, 1 on its good side, −1 on its bad side.
+    or infinite (only a value that is infinitely past its limit gives −infinity). The scale of a negative limit is its
+    magnitude, so that the sign stays right; a limit of 0 has none and gives 0 on it, 1 on its good side, −1 past it.
     Source: definitions of the findings format.
 
     >>> round(margin(163.2, 150.0, ambient_c=55.0, unit="°C"), 4)

@@ -17,7 +17,7 @@ from dataclasses import dataclass, replace
 from drc_power.findings.identity import finding_id, named_subject
 from drc_power.findings.model import Finding
 from drc_power.findings.verdict import EQUAL_WITHIN
-from drc_power.text import si
+from drc_power.text import si, si_apart
 
 WORSE_BY = 0.02
 """Share of the margin's scale by which a value may pass the waived one before the waiver stops to count."""
@@ -44,7 +44,8 @@ def apply_waivers(findings: Iterable[Finding], waivers: Sequence[Waiver], today:
     """The findings with waivers applied, and one more `rules.waiver` finding per waiver that does not count.
 
     today: ISO date, or None where the run knows no date; then no waiver is out of date.
-    A waived finding keeps its verdict as `was`, and its text says who waived it and why. The order of the findings stays; extra findings follow.
+    A waived finding keeps its verdict as `was`, and its text says who waived it and why. The order of the findings
+    stays; extra findings follow.
     """
     findings = tuple(findings)
     named: dict[str, list[Finding]] = {}
@@ -77,8 +78,9 @@ def why_not(findings: Sequence[Finding], waiver: Waiver, today: str | None) -> s
         return f"ended on {waiver.until}"
     if not _is_number(finding.value):
         return "accepts a value, but the finding has none to hold against it"
-    if worse_by(finding, waiver.value) > WORSE_BY + EQUAL_WITHIN:
-        return f"was granted for {si(waiver.value, finding.unit)}; the value is now {si(finding.value, finding.unit)}"
+    if not worse_by(finding, waiver.value) <= WORSE_BY + EQUAL_WITHIN:
+        granted, now = si_apart(waiver.value, finding.value, finding.unit)
+        return f"was granted for {granted}; the value is now {now}"
     return ""
 
 
@@ -86,7 +88,8 @@ def worse_by(finding: Finding, waived_value: float) -> float:
     """How far the finding's value is past the waived one, as a share of the margin's scale [1]; negative if better.
 
     The scale is what the finding's own margin was divided by, so it is (value − allowed)/margin. Where the finding has
-    no margin, or a margin of 0, neither scale nor direction is known: then every departure counts as worse.
+    no margin, or a margin of 0, neither scale nor direction is known: then every departure counts as worse. A margin of
+    −1 that stands for "no meaning" gives the excess itself as scale, which is the stricter reading.
     """
     change = finding.value - waived_value
     if not (_is_number(finding.allowed) and _is_number(finding.margin) and finding.margin):

@@ -123,11 +123,11 @@ def _standings_section(title: str, standings: Iterable[Standing], open: bool = T
 _FINDING_COLUMNS = ("Part", "What", "Verdict", "Found", "Allowed", "Margin", "Worst corner")
 
 
-def _section(title: str, columns: tuple[str, ...], rows: Sequence[tuple[str, ...]], n_quiet: int, open: bool) -> Section:
+def _section(title: str, columns: Sequence[str], rows: Sequence[tuple[str, ...]], n_quiet: int, open: bool) -> Section:
     n_cut = max(0, len(rows) - MOST_ROWS)
     more = [f"{n_cut} more in the JSON"] if n_cut else []
     more += [f"{n_quiet} that need{'s' if n_quiet == 1 else ''} no action"] if n_quiet else []
-    return Section(title, columns, tuple(rows[:MOST_ROWS]), f"and {' and '.join(more)}" if more else "", open)
+    return Section(title, tuple(columns), tuple(rows[:MOST_ROWS]), f"and {' and '.join(more)}" if more else "", open)
 
 
 def as_finding(row: Row) -> Finding:
@@ -223,6 +223,7 @@ def _cut(line: str, width: int) -> str:
     """The line cut at its end, where the least important column stands."""
     if display_width(line) <= width:
         return line
+    line = line[: 2 * width]
     while display_width(line) > width - 1:
         line = line[:-1]
     return f"{line}…"

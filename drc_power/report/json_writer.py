@@ -122,10 +122,10 @@ def _dumps(value: Any) -> str:
 
 def _plain(value: Any) -> Any:
     """The value made of what JSON has: arrays become lists, sets sorted lists, floats rounded, NaN null."""
-    if value is None or isinstance(value, (bool, str, int)):
-        return value
     if isinstance(value, float):
         return _rounded(value)
+    if value is None or isinstance(value, (str, int)):
+        return value
     if isinstance(value, Mapping):
         return {str(key): _plain(item) for key, item in value.items()}
     if isinstance(value, (set, frozenset)):

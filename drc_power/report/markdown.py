@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterable, Sequence
+from collections.abc import Callable, Iterable, Sequence
+from typing import TypeVar
 
 from drc_power.findings.model import VERDICTS, Finding, Result, Sensitivity, Step
 from drc_power.findings.order import finding_key, gravest_first
@@ -24,6 +25,8 @@ from drc_power.report.phrases import (
     tally_text,
 )
 from drc_power.text import NOT_KNOWN, natural_key, si
+
+T = TypeVar("T")
 
 LIMIT_CHARS = 60_000
 """Comments may be no longer than this on the platforms that people use."""
@@ -67,8 +70,7 @@ def _action_table(findings: Sequence[Finding], room: int) -> list[str]:
         return ["Nothing needs action.", ""]
     head = table_head(**{"Part": "left", "What": "left", "Found": "right", "Allowed": "right", "Margin": "right",
                          "Worst corner": "left"})
-    rows = [_action_row(finding) for finding in findings]
-    return [*head, *_kept(rows, room - _size(head), "finding", "\n"), ""]
+    return [*head, *_kept(findings, _action_row, room - _size(head), "finding", "\n"), ""]
 
 
 def _action_row(finding: Finding) -> str:
@@ -92,8 +94,11 @@ def _reasons(findings: Sequence[Finding], result: Result, room: int) -> list[str
     """Why each finding is as it is and what would help, folded."""
     if not findings:
         return []
-    entries = ["\n".join(_reason(finding, fails_run(finding, result))) for finding in findings]
-    return folded("Why, and what would help", _kept(entries, room - _FOLD_CHARS, "finding", ""))
+
+    def entry(finding: Finding) -> str:
+        return "\n".join(_reason(finding, fails_run(finding, result)))
+
+    return folded("Why, and what would help", _kept(findings, entry, room - _FOLD_CHARS, "finding"))
 
 
 def _waived(result: Result, room: int) -> list[str]:
@@ -101,8 +106,7 @@ def _waived(result: Result, room: int) -> list[str]:
     waived = gravest_first(finding for finding in result.findings if finding.verdict == "waived")
     if not waived:
         return []
-    entries = [_waived_line(finding) for finding in waived]
-    return folded("Waived", _kept(entries, room - _FOLD_CHARS, "finding", ""))
+    return folded("Waived", _kept(waived, _waived_line, room - _FOLD_CHARS, "finding"))
 
 
 def _waived_line(finding: Finding) -> str:
@@ -152,8 +156,12 @@ def _all_parts(result: Result, room: int) -> list[str]:
         return []
     values = {part.ref: part.value for part in result.parts}
     head = table_head(**{"Part": "left", "Value": "left", "Verdict": "left", "Least margin": "right", "Of": "left"})
-    rows = [_part_row(ref, values.get(ref, ""), findings) for ref, findings in by_ref.items()]
-    return folded("Every part with findings", [*head, *_kept(rows, room - _size(head) - _FOLD_CHARS, "part", "\n")])
+
+    def row(ref: str) -> str:
+        return _part_row(ref, values.get(ref, ""), by_ref[ref])
+
+    rows = _kept(list(by_ref), row, room - _size(head) - _FOLD_CHARS, "part", "\n")
+    return folded("Every part with findings", [*head, *rows])
 
 
 def _part_row(ref: str, value: str, findings: Sequence[Finding]) -> str:
@@ -167,43 +175,45 @@ def _part_row(ref: str, value: str, findings: Sequence[Finding]) -> str:
 def _coverage_lines(result: Result) -> list[str]:
     coverage = result.coverage
     outside = sorted(coverage.outside, key=lambda o: natural_key(o.ref))
-    lists = {
-        "Unproven": [code(ref) for ref in sorted(coverage.unproven, key=natural_key)],
-        "Left out by the annotation": [f"{code(o.ref)} ({prose(o.because, 160)})" for o in outside],
-        "Not fitted": [code(ref) for ref in sorted(coverage.not_fitted, key=natural_key)],
-    }
-    sentences = [f"{title}: {_listed(names)}." for title, names in lists.items() if names]
-    return [f"**Coverage.** {' '.join([coverage_text(coverage), *sentences])}"]
+    sentences = [
+        coverage_text(coverage),
+        _listed("Unproven", sorted(coverage.unproven, key=natural_key), code),
+        _listed("Left out by the annotation", outside, lambda o: f"{code(o.ref)} ({prose(o.because, 160)})"),
+        _listed("Not fitted", sorted(coverage.not_fitted, key=natural_key), code),
+    ]
+    return [f"**Coverage.** {' '.join(filter(None, sentences))}"]
 
 
-def _listed(names: Sequence[str]) -> str:
-    kept = _fitting(names, _LIST_CHARS, separator=2)
-    more = [f"and {len(names) - kept} more"] if kept < len(names) else []
-    return ", ".join([*names[:kept], *more])
+def _listed(title: str, items: Sequence[T], shown: Callable[[T], str]) -> str:
+    names = _fitting(items, shown, _LIST_CHARS, separator=2)
+    more = [f"and {len(items) - len(names)} more"] if len(names) < len(items) else []
+    return f"{title}: {', '.join([*names, *more])}." if items else ""
 
 
 def _remark_lines(result: Result) -> list[str]:
     notes = remarks(result)
     if not notes:
         return []
-    return ["**Notes**", "", *_kept([f"- {prose(note)}" for note in notes], _REMARKS_CHARS, "note", ""), ""]
+    return ["**Notes**", "", *_kept(notes, lambda note: f"- {prose(note)}", _REMARKS_CHARS, "note"), ""]
 
 
-def _kept(entries: Sequence[str], room: int, noun: str, gap: str) -> list[str]:
-    """As many entries as fit in `room` characters, then how many more there are; `gap` ends a table first."""
-    kept = _fitting(entries, room - _MORE_CHARS, separator=1)
-    left = len(entries) - kept
-    if not left:
-        return list(entries)
-    return [*entries[:kept], f"{gap}and {left} more {noun}{'s' if left > 1 else ''}, see the JSON"]
+def _kept(items: Sequence[T], shown: Callable[[T], str], room: int, noun: str, gap: str = "") -> list[str]:
+    """As many items as fit in `room` characters, then how many more there are; `gap` ends a table first."""
+    entries = _fitting(items, shown, room - _MORE_CHARS, separator=1)
+    left = len(items) - len(entries)
+    return [*entries, f"{gap}and {left} more {noun}{'s' if left > 1 else ''}, see the JSON"] if left else entries
 
 
-def _fitting(entries: Sequence[str], room: int, separator: int) -> int:
-    for index, entry in enumerate(entries):
+def _fitting(items: Iterable[T], shown: Callable[[T], str], room: int, separator: int) -> list[str]:
+    """The first items as text, none made in vain, as long as there is room for them."""
+    entries = []
+    for item in items:
+        entry = shown(item)
         room -= len(entry) + separator
         if room < 0:
-            return index
-    return len(entries)
+            break
+        entries.append(entry)
+    return entries
 
 
 def _size(lines: Iterable[str]) -> int:

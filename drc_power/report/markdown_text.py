@@ -22,7 +22,7 @@ _ENTITIES = {ord(c): f"&#{ord(c)};" for c in string.punctuation}
 _ENTITIES[ord("@")] = "<span>&#64;</span>"
 
 _RISKY = re.compile(
-    r"[`|<>\\&*_\[\]{}~@#$]|![\d\[]|%\w|:.*:|://|www\.|mailto:|xmpp:|\bGH-\d|^[0-9a-f]{7,40}$", re.IGNORECASE
+    r"""[`|<>\\&*_\[\]{}~@#$]|[!%][\w"\[]|:.*:|://|www\.|mailto:|xmpp:|\bGH-\d|^[0-9a-f]{7,40}$""", re.IGNORECASE
 )
 _LOOKS_LIKE_BLOCK = re.compile(r"[-+=]+|\d+[.)]")
 _LONE = {"<": "&lt;", ">": "&gt;", "&": "&amp;", "|": "&#124;", "*": "&#42;"}

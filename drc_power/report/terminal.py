@@ -104,9 +104,8 @@ def _column_widths(rows: Sequence[Sequence[str]], width: int) -> list[int]:
 def _reason_lines(finding: Finding, width: int) -> list[str]:
     """Where it happens and why, on two lines at most."""
     place = ", ".join(place_parts(finding))
-    reason = printable(f"{place}: {finding.text}" if place and finding.text else place or finding.text)
-    wrapped = textwrap.wrap(reason[: 2 * _MOST_REASON_LINES * width], width, max_lines=_MOST_REASON_LINES, placeholder=" …")
-    return [fit(line, width) for line in wrapped]
+    reason = f"{place}: {finding.text}" if place and finding.text else place or finding.text
+    return _wrapped(reason, width, _MOST_REASON_LINES)
 
 
 def _more(n_left: int) -> list[str]:
@@ -137,8 +136,8 @@ def _listed(refs: Sequence[str]) -> str:
     return ", ".join([*shown, *more])
 
 
-def _wrapped(text: str, width: int) -> list[str]:
-    lines = textwrap.wrap(printable(text)[: 8 * width], width, max_lines=4, placeholder=" …")
+def _wrapped(text: str, width: int, most_lines: int = 4) -> list[str]:
+    lines = textwrap.wrap(printable(text)[: 2 * most_lines * width], width, max_lines=most_lines, placeholder=" …")
     return [fit(line, width) for line in lines]
 
 

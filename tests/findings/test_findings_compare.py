@@ -13,8 +13,9 @@ def _part(ref, uuid, value="NF6008", device="nfet", sheet="/"):
 
 def _finding(about, ref, uuid, verdict="met", margin=0.5, **more):
     return {"id": about, "rule": "junction.steady", "stress": "tj", "verdict": verdict, "was": None, "ref": ref,
-            "uuid": uuid, "net": None, "mode": "run", "event": None, "corner": "hot", "quantity": "junction temperature",
-            "value": 100.0, "allowed": 150.0, "unit": "°C", "margin": margin, "text": ""} | more
+            "uuid": uuid, "net": None, "mode": "run", "event": None, "corner": "hot",
+            "quantity": "junction temperature", "value": 100.0,
+            "allowed": 150.0, "unit": "°C", "margin": margin, "text": ""} | more
 
 
 @pytest.fixture

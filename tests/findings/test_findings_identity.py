@@ -28,7 +28,8 @@ def test_every_thing_that_a_finding_is_about_makes_another_id():
     rules = ["junction.steady", "derating.power"]
     stresses = [None, "", "tj", "power"]
     modes = [None, "run", "tj"]
-    ids = [finding_id(*s, rule=r, stress=t, mode=m) for s, r, t, m in itertools.product(subjects, rules, stresses, modes)]
+    every = itertools.product(subjects, rules, stresses, modes)
+    ids = [finding_id(*about, rule=rule, stress=stress, mode=mode) for about, rule, stress, mode in every]
     assert len(set(ids)) == len(ids)
 
 

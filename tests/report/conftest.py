@@ -96,8 +96,8 @@ def hostile_result(hostile):
         "sensitivity": (Sensitivity(hostile, hostile, 1.0, "W"),),
         "workings": (Step(hostile, hostile, hostile, 1.0, "W", hostile),),
     }
-    findings = [make_finding(verdict=v, was=w, margin=m, **names, **extra, stress=v) for v, w, m in
-                (("exceeded", None, -0.1), ("unproven", None, None), ("close", None, 0.05), ("waived", "exceeded", -0.1))]
+    outcomes = (("exceeded", None, -0.1), ("unproven", None, None), ("close", None, 0.05), ("waived", "exceeded", -0.1))
+    findings = [make_finding(verdict=v, was=w, margin=m, stress=v, **names, **extra) for v, w, m in outcomes]
     return make_result(
         *findings, board_name=hostile, board_revision=hostile, netlist=hostile, notes=(hostile,),
         parts=(PartRow(hostile, "u", hostile, hostile, hostile, hostile),),
@@ -122,7 +122,10 @@ def example():
             text="3.2 W through 33.8 K/W lift the junction of Q3 108.2 K above ambient.",
             remedy="A path of at most 29.7 K/W to ambient, or at most 2.81 W.",
             inputs_used=(InputUsed("rth_ja", "33.8 K/W", "devices/nfet.yaml:14"),),
-            sensitivity=(Sensitivity("rds", "6.4 mohm .. 8 mohm", 21.6, "K"), Sensitivity("ambient", "-30 °C .. 55 °C", 85.0, "K")),
+            sensitivity=(
+                Sensitivity("rds", "6.4 mohm .. 8 mohm", 21.6, "K"),
+                Sensitivity("ambient", "-30 °C .. 55 °C", 85.0, "K"),
+            ),
             workings=(
                 Step("T_J", "T_A + P · R_thJA", "55 °C + 3.2 W · 33.8 K/W", 163.16, "°C", "heat path of Q3"),
             ),
@@ -143,13 +146,19 @@ def example():
             text="The load gets 4.92 V and needs 4.75 V.",
         ),
         today="2027-01-15",
-        inputs=(InputFile("netlist", "frost-fan.net", "9f" * 32), InputFile("annotations", "frost-fan.power.yaml", "31" * 32)),
+        inputs=(
+            InputFile("netlist", "frost-fan.net", "9f" * 32),
+            InputFile("annotations", "frost-fan.power.yaml", "31" * 32),
+        ),
         coverage=Coverage(6, 4, ("Q2",), (Outside("TP3", "test point"), Outside("D1", "signal level")), ("R77",)),
         parts=(
             PartRow("R12", "/root/r12", "/", "10k", None, "resistor"),
             PartRow("Q3", "/root/q3", "/", "NF6008", "nfet-60v-8m", "mosfet"),
         ),
-        rails=({"net": "+24V", "voltage": [21.0, 24.0, 29.0], "source": ["J1"]}, {"net": "+5V", "voltage": [4.9, 5.0, 5.1]}),
+        rails=(
+            {"net": "+24V", "voltage": [21.0, 24.0, 29.0], "source": ["J1"]},
+            {"net": "+5V", "voltage": [4.9, 5.0, 5.1]},
+        ),
         operating_points=(
             OperatingPoint("run", "+24V 29 V", "Q3", "mosfet", 0.16, 20.0, 20.0, 3.2, 163.16, float("nan")),
             OperatingPoint("run", "+24V 29 V", "D4", "diode", -0.0, 0.0, None, 0.0, 55.0, None),

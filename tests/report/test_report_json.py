@@ -33,8 +33,8 @@ KEYS_OF_ROWS = {
     "parts": "ref uuid sheet value device role",
     "operating_points": "mode corner ref role voltage current rms power tj case",
     "nets": "mode corner net voltage current",
-    "findings": "id rule stress verdict was ref uuid sheet net mode event corner quantity value allowed rated unit margin "
-    "text remedy inputs_used sensitivity samples workings where",
+    "findings": "id rule stress verdict was ref uuid sheet net mode event corner quantity value allowed rated unit "
+    "margin text remedy inputs_used sensitivity samples workings where",
 }
 
 
@@ -111,8 +111,8 @@ from drc_power.report.markdown import to_markdown
 from drc_power.report.terminal import to_table
 import sys
 names = {f"Q{i}" for i in range(40)}
-findings = tuple(Finding(f"id{n}", "junction.steady", "tj", "close", None, n, n, "/", None, "run", None, "hot", "temperature",
-                         100.0, 110.0, 120.0, "°C", 0.05, "text", "") for n in names)
+findings = tuple(Finding(f"id{n}", "junction.steady", "tj", "close", None, n, n, "/", None, "run", None, "hot",
+                         "temperature", 100.0, 110.0, 120.0, "°C", 0.05, "text", "") for n in names)
 result = Result("b", "r", "n", 40, 1, (), findings, Coverage(40, 40, tuple(names), (), tuple(names)),
                 parts=tuple(PartRow(n, n, "/", "", None, "") for n in names), extra={"names": names})
 sys.stdout.buffer.write((to_json(result) + to_markdown(result) + to_table(result)).encode())
@@ -155,7 +155,9 @@ def test_a_document_of_another_shape_is_refused_with_what_is_wrong(example, chan
     assert said in str(refusal.value)
 
 
-@pytest.mark.parametrize(("key", "value"), [("verdict", "fine"), ("verdict", []), ("margin", "0.1"), ("ref", 3), ("was", "ok")])
+@pytest.mark.parametrize(
+    ("key", "value"), [("verdict", "fine"), ("verdict", []), ("margin", "0.1"), ("ref", 3), ("was", "ok")]
+)
 def test_a_finding_with_a_wrong_value_is_refused(example, key, value):
     document = json.loads(to_json(example))
     document["findings"][2][key] = value
@@ -195,6 +197,7 @@ def test_files_that_cannot_be_read(tmp_path, example):
     (tmp_path / "latin.json").write_bytes(b'"\xe9"')
     (tmp_path / "good.json").write_text(to_json(example), encoding="utf-8")
     assert read_result(str(tmp_path / "good.json"))["verdict"] == "exceeded"
-    for name, said in (("latin.json", "is not UTF-8"), ("none.json", "no such file"), ("", "is a directory"), ("a\0b", "null")):
+    unreadable = {"latin.json": "is not UTF-8", "none.json": "no such file", "": "is a directory", "a\0b": "null"}
+    for name, said in unreadable.items():
         with pytest.raises(InputError, match=said):
             read_result(f"{tmp_path}/{name}")

@@ -104,6 +104,13 @@ def test_a_failure_half_way_leaves_the_old_file_and_no_litter(monkeypatch, old_f
     assert _names(old_file.parent) == ["out.json"]
 
 
+def test_the_text_is_on_the_disk_in_full_before_it_takes_the_old_ones_place(monkeypatch, old_file):
+    synced = []
+    monkeypatch.setattr(write.os, "fsync", lambda handle: synced.append(os.fstat(handle).st_size))
+    write_file(str(old_file), "new µ")
+    assert synced == [6]
+
+
 def test_an_interruption_half_way_leaves_the_old_file_and_no_litter(monkeypatch, old_file):
     def interrupt(*_):
         raise KeyboardInterrupt
