@@ -96,6 +96,8 @@ def _peak(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
 
 
 def _across(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
+    if element.probe.push_pull is not None and element.probe.push_pull.resistor_ohm is not None:
+        return element.point.peak_a * element.view.solution.value(element.probe.push_pull.resistor_ohm), ()
     return np.abs(element.point.voltage_v), ()
 
 
@@ -117,16 +119,24 @@ def _to_ground(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
 
 
 def _feeds(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
-    """The current that leaves the board's sources through a connector; per contact of its most loaded net."""
-    solution, total = element.view.solution, np.zeros(element.view.solution.n_samples)
+    """The current per contact of a connector: on its most loaded net, shared by the contacts on that net."""
+    solution, part = element.view.solution, element.part.part
+    by_net: dict[str, np.ndarray] = {}
     for source in solution.circuit.sources:
-        rail = element.view.mode.rails[source.rail]
-        if element.ref in [str(ref) for ref in rail.source]:
-            total = total + np.abs(solution.current_a(source.key)) / len(rail.source)
+        refs = [str(ref) for ref in element.view.mode.rails[source.rail].source]
+        if element.ref in refs:
+            share = np.abs(solution.current_a(source.key)) / len(refs)
+            for net in part.nets_of():
+                by_net[net] = by_net.get(net, 0.0) + share
     for load in solution.circuit.loads:
-        if load.a in element.part.part.nets_of():
-            total = np.maximum(total, np.abs(solution.current_a(load.key)))
-    return total, ()
+        # A load that hangs on the connector has both its ends there, or its own end if it returns elsewhere.
+        ends = [net for net in (load.a, load.b) if net in part.nets_of()]
+        if len(ends) == 2 or (ends == [load.a] and load.a not in element.view.mode.rails):
+            for net in ends:
+                by_net[net] = by_net.get(net, 0.0) + np.abs(solution.current_a(load.key))
+    contacts = {net: sum(pin.net == net for pin in part.pins) for net in by_net}
+    zero = np.zeros(solution.n_samples)
+    return np.max([by_net[net] / contacts[net] for net in by_net] or [zero], axis=0), ()
 
 
 def _temperature(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
@@ -147,6 +157,7 @@ _DIODES = frozenset({"diode", "bridge"})
 _CONTACTS = frozenset({"fuse", "relay", "switch", "load-switch"})
 _WINDINGS = frozenset({"inductor", "ferrite"})
 _LINEAR, _SWITCHING = frozenset({"linear-regulator"}), frozenset({"switching-regulator"})
+_CHIPS = frozenset({"ic", "gate-driver", "optocoupler"})
 _RESISTORS = frozenset({"resistor", "thermistor", "potentiometer"})
 _WITH_TEMPERATURE = _RESISTORS | _WINDINGS | {"fuse", "connector", "relay", "switch", "capacitor"}
 
@@ -169,6 +180,7 @@ STRESSES = (
     Stress(_CONTACTS, "voltage", "voltage to interrupt", "V", _to_ground, must=False),
     Stress(frozenset({"load-switch"}), "vin", "input voltage", "V", _to_ground, must=False),
     Stress(frozenset({"connector"}), "current", "current", "A", _feeds),
+    Stress(_CHIPS, "vin", "supply voltage", "V", _input, must=False),
     Stress(_RESISTORS, "voltage", "voltage", "V", _across, must=False),
     Stress(_WINDINGS, "current", "current, rms", "A", _rms),
     Stress(_WINDINGS, "saturation", "current, peak", "A", _peak, must=False),

@@ -73,21 +73,20 @@ def _number(value: float) -> float | None:
 
 def _sentence(judgement: Judgement, verdict: str, value, allowed, rated, gaps: Sequence[str]) -> str:
     """What was found, in one or two sentences that stand alone."""
-    subject = judgement.ref or judgement.net or "the board"
-    what = judgement.quantity
+    what = judgement.quantity + (f" of {judgement.ref}" if judgement.ref else "")
     if judgement.why and (judgement.lacking or verdict == "unproven"):
         return f"{judgement.why[0].upper()}{judgement.why[1:]}."
     if verdict == "unproven":
         reasons = list(dict.fromkeys((*judgement.lacking, *gaps)))
         seen = f"; without it, {si(value, judgement.unit)}" if value is not None and len(reasons) == 1 else ""
         because = f"not given: {'; '.join(reasons)}{seen}" if reasons else "there is no operating point at this corner"
-        return f"The {what} of {subject} cannot be shown to hold: {because}."
+        return f"The {what} cannot be shown to hold: {because}."
     shown, limit = si_apart(value, allowed, judgement.unit)
     if judgement.sense == "between":
         return f"The {what} is {shown}; it must stay within its window, of which this corner leaves least."
     bound = "at least" if judgement.sense == "at_least" else "at most"
     why = f" ({describe(judgement.limit)}, {si(rated, judgement.unit)})" if rated is not None and judgement.limit else ""
-    return f"The {what} of {subject} is {shown}; {bound} {limit} is allowed{why}."
+    return f"The {what} is {shown}; {bound} {limit} is allowed{why}."
 
 
 def _remedy(judgement: Judgement, verdict: str, gaps: Sequence[str]) -> str:

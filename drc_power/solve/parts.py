@@ -321,8 +321,16 @@ def efficiency_of(builder: Builder, part: BoardPart) -> Efficiency:
 
 
 def make_quiescent(builder: Builder, part: BoardPart) -> None:
-    """A chip that only draws: its heat is what its supply pins take."""
-    builder.probes[part.ref] = Probe(part.ref, part.kind, "conducting", part.terminals.get("input", ""), "")
+    """A chip that only draws: its heat is what its supply pins take, by `draws`, a load that heats it, or quiescent."""
+    nets = supply_nets(builder, part)
+    builder.probes[part.ref] = Probe(part.ref, part.kind, "conducting", nets[0] if len(nets) == 1 else "", "")
+
+
+def supply_nets(builder: Builder, part: BoardPart) -> list[str]:
+    """The nets of a chip's supply pins, grounds left out."""
+    named = [part.terminals[name] for name in ("input", "supply") if name in part.terminals]
+    nets = named or [p.net for p in part.part.pins if p.type.startswith("power_in") and p.net]
+    return [net for net in dict.fromkeys(nets) if net not in builder.board.grounds]
 
 
 def make_open(builder: Builder, part: BoardPart) -> None:

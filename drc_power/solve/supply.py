@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from ..board import BoardPart, LoadNote, RailNote
 from .branches import CurrentLoad, PowerLoad, Resistive, Source
 from .circuit import Builder, LoadProbe, SourceProbe, Unfed
-from .parts import GAP_A, state_of
+from .parts import GAP_A, state_of, supply_nets
 from .variables import ONE, ZERO
 
 REGULATORS = ("linear-regulator", "switching-regulator")
@@ -176,12 +176,3 @@ def _add_own_draw(builder: Builder, ref: str, part: BoardPart) -> None:
         return
     current = builder.span(f"{ref} draw", draws)
     builder.add(CurrentLoad(f"{ref} draw", nets[0], ground_of(builder, nets[0]), current, ref))
-
-
-def supply_nets(builder: Builder, part: BoardPart) -> list[str]:
-    """The nets of a chip's supply pins, grounds left out."""
-    if "input" in part.terminals:
-        return [part.terminals["input"]]
-    nets = dict.fromkeys(p.net for p in part.part.pins if p.type.startswith("power_in") and p.net)
-    return [net for net in nets if net not in builder.board.grounds]
-

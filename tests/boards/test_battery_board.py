@@ -1,0 +1,208 @@
+"""A whole run on a board annotated by the contract alone, against an independent solution of its equations.
+
+Battery → fuse → p-channel FET → linear regulator with a controller, and a heater on a low-side FET with a shunt in
+its return. The reference equations are written here and solved by scipy at the corner that engineering says is worst.
+"""
+
+from __future__ import annotations
+
+import itertools
+import re
+
+import pytest
+from draw import write_board
+from scipy.optimize import root
+
+from drc_power.run import check
+
+PARTS = {
+    "J1": ("Conn_01x02", "BATTERY", "VBAT", "GND"),
+    "F1": ("Fuse", "10A", "VBAT", "VF"),
+    "Q1": ("Q_PMOS_GDS", "PF4012", "QG", "VF", "+24V"),
+    "R1": ("R", "100k", "QG", "GND"),
+    "C1": ("C", "10u", "+24V", "GND"),
+    "U1": ("REG", "REG-5V0", "+24V", "GND", "+5V"),
+    "C2": ("C", "10u", "+5V", "GND"),
+    "U2": ("MCU", "MC-01", "+5V", "GND", "/HEAT_EN", ""),
+    "J2": ("Conn_01x02", "HEATER", "+24V", "/HEAT-"),
+    "Q2": ("Q_NMOS_GDS", "NF6008", "/GATE", "/HEAT-", "/SHUNT"),
+    "R2": ("R", "100", "/HEAT_EN", "/GATE"),
+    "R3": ("R", "10mR", "/SHUNT", "GND"),
+}
+
+DEVICES = """
+  fuse-10a: {kind: fuse, source: "invented, table 1", limits: {current: 10 A, voltage: 63 V}, conduction: {resistance: 9 mohm}}
+  pfet-40v: {kind: mosfet, channel: p, source: "invented, table 2", limits: {vds: 40 V, vgs: 30 V, id: 30 A, tj: 150 °C, power: 60 W},
+    conduction: {rds: 12 mohm, rds_scale: [[25 °C, 1.0], [100 °C, 1.4], [150 °C, 1.8]], at_gate: 10 V},
+    body: {knee: 0.7 V, slope: 10 mohm}, thermal: {rth_jc: 2 K/W, rth_ja: 50 K/W},
+    envelope: {dc: [[0.1 V, 30 A], [2 V, 30 A], [40 V, 0.5 A]]}}
+  nfet-60v: {kind: mosfet, channel: n, source: "invented, table 3", limits: {vds: 60 V, vgs: 20 V, id: 50 A, tj: 175 °C, power: 110 W},
+    conduction: {rds: {typ: 6.4 mohm, max: 8 mohm}, rds_scale: [[25 °C, 1.0], [100 °C, 1.45], [150 °C, 1.85]], at_gate: 10 V},
+    body: {knee: 0.7 V, slope: 4 mohm}, thermal: {rth_jc: 1.36 K/W, rth_ja: 62 K/W},
+    envelope: {dc: [[0.4 V, 50 A], [2.2 V, 50 A], [10 V, 8 A], [60 V, 0.6 A]]}}
+  ldo-5v: {kind: linear-regulator, source: "invented, table 4", limits: {vin: 40 V, differential: 38 V, current: 0.8 A, power: 20 W, tj: 125 °C},
+    conduction: {dropout: 1.2 V, quiescent: 5 mA}, thermal: {rth_jc: 3 K/W, rth_ja: 60 K/W}}
+  shunt-2512: {kind: resistor, source: "invented, table 5", limits: {power: 2 W, voltage: 100 V}}
+"""
+
+ANNOTATIONS = """
+surroundings: {ambient: -20 °C .. 50 °C}
+grounds: [GND]
+rails:
+  VBAT: {voltage: 20 V .. 24 V .. 28 V, source: J1, limit: 10 A}
+  "+5V": {voltage: 5 V}
+loads:
+  controller: {net: "+5V", draws: 20 mA .. 60 mA, needs: 4.5 V .. 5.5 V, heats: U2}
+  heater: {net: "+24V", return: "/HEAT-", resistance: 12 ohm ± 5 %}
+sinks:
+  plate: {resistance: 8 K/W}
+parts:
+  F1: {device: fuse-10a}
+  Q1: {device: pfet-40v, gate: 20 V .. 28 V}
+  Q2: {device: nfet-60v, gate: 10 V, heat: {sink: plate, interface: 0.6 K/W}}
+  U1: {device: ldo-5v, heat: {sink: plate, interface: 1.0 K/W}}
+  R3: {device: shunt-2512}
+outside:
+  - {parts: [U2], because: signal level}
+"""
+
+
+def scale_q1(t):
+    return 1.0 if t < 25 else 1 + 0.4 * (t - 25) / 75 if t < 100 else 1.4 + 0.4 * (t - 100) / 50
+
+
+def scale_q2(t):
+    return 1.0 if t < 25 else 1 + 0.45 * (t - 25) / 75 if t < 100 else 1.45 + 0.4 * (t - 100) / 50
+
+
+def reference(v_bat=28.0, i_load=0.06, r_heater=11.4, rds2=0.008, ambient=50.0):
+    """Every operating point at one corner, from Kirchhoff's and Ohm's laws written out."""
+    def equations(u):
+        v24, i_heat, t1, t2, tu = u
+        i_fuse = i_heat + i_load + 0.005
+        p1, p2 = i_fuse**2 * 0.012 * scale_q1(t1), i_heat**2 * rds2 * scale_q2(t2)
+        pu = (v24 - 5.0) * i_load + v24 * 0.005
+        return [v24 - (v_bat - i_fuse * (0.009 + 0.012 * scale_q1(t1))),
+                i_heat - v24 / (r_heater + rds2 * scale_q2(t2) + 0.010),
+                t1 - (ambient + 50.0 * p1),
+                t2 - (ambient + 8.0 * (p2 + pu) + (1.36 + 0.6) * p2),
+                tu - (ambient + 8.0 * (p2 + pu) + (3.0 + 1.0) * pu)]
+
+    v24, i_heat, t1, t2, tu = root(equations, [24.0, 2.0, 60.0, 80.0, 90.0], tol=1e-13).x
+    i_fuse = i_heat + i_load + 0.005
+    return {"v24": v24, "i_heat": i_heat, "i_fuse": i_fuse, "t1": t1, "t2": t2, "tu": tu,
+            "p1": i_fuse**2 * 0.012 * scale_q1(t1), "p2": i_heat**2 * rds2 * scale_q2(t2),
+            "pu": (v24 - 5.0) * i_load + v24 * 0.005, "pr": i_heat**2 * 0.010}
+
+
+def worst(key, pick=max):
+    """The worst of a quantity over every corner of the board's spans."""
+    box = itertools.product((20.0, 28.0), (0.02, 0.06), (11.4, 12.6), (0.0064, 0.008), (-20.0, 50.0))
+    return pick(reference(*corner)[key] for corner in box)
+
+
+@pytest.fixture(scope="module")
+def result(tmp_path_factory):
+    return check(write_board(tmp_path_factory.mktemp("battery"), PARTS, ANNOTATIONS, DEVICES))
+
+
+def finding(result, ref, rule, mode="run"):
+    found = [f for f in result.findings if (f.ref, f.rule, f.mode) == (ref, rule, mode)]
+    assert len(found) == 1, [f"{f.ref} {f.rule}" for f in result.findings]
+    return found[0]
+
+
+@pytest.mark.parametrize(("ref", "current", "power", "temperature"), [
+    ("F1", "i_fuse", None, None), ("Q1", "i_fuse", "p1", "t1"), ("Q2", "i_heat", "p2", "t2"), ("R3", "i_heat", "pr", None),
+    ("U1", None, "pu", "tu")])
+def test_operating_points_are_those_of_the_independent_solution(result, ref, current, power, temperature):
+    row = max((p for p in result.operating_points if p.ref == ref), key=lambda p: p.power_w)
+    if power:
+        assert row.power_w == pytest.approx(worst(power), rel=1e-7)
+    if current and power is None:
+        assert row.current_a == pytest.approx(worst(current), rel=1e-7)
+    if temperature:
+        assert finding(result, ref, "junction.steady").value == pytest.approx(worst(temperature), rel=1e-7)
+
+
+def test_verdicts_and_corners_of_the_junctions(result):
+    assert [finding(result, ref, "junction.steady").verdict for ref in ("Q1", "Q2", "U1")] == ["met", "met", "met"]
+    corner = finding(result, "Q1", "junction.steady").corner
+    assert "VBAT at 28 V" in corner
+    assert "ambient 50 °C" in corner
+    assert "heater at 11.4 ohm" in corner
+
+
+def test_load_voltage_and_source_limit(result):
+    assert next(f for f in result.findings if f.rule == "network.voltage").verdict == "met"
+    limit = next(f for f in result.findings if f.rule == "network.limit")
+    assert limit.verdict == "met"
+    assert limit.value == pytest.approx(worst("i_fuse"), rel=1e-7)
+
+
+def test_every_element_ends_in_a_finding(result):
+    assert {f.ref for f in result.findings if f.ref} >= {"F1", "Q1", "Q2", "U1", "R3"}
+    assert result.coverage.judged == result.coverage.elements
+
+
+def test_nothing_is_unproven_or_exceeded(result):
+    assert [(f.ref, f.rule, f.text) for f in result.findings if f.verdict in ("unproven", "exceeded")] == []
+
+
+DELETIONS = [
+    ("thermal: {rth_jc: 2 K/W, rth_ja: 50 K/W}", "thermal: {rth_jc: 2 K/W}", "Q1", ("junction.steady", "dissipation.part")),
+    ("limits: {vds: 40 V, vgs: 30 V, id: 30 A, tj: 150 °C, power: 60 W}", "limits: {vds: 40 V, vgs: 30 V, id: 30 A, power: 60 W}",
+     "Q1", ("junction.steady",)),
+    ("rds: 12 mohm, ", "", "Q1", ("junction.steady", "dissipation.part")),
+    ("vds: 60 V, ", "", "Q2", ("derating.vds",)),
+    ("id: 50 A, ", "", "Q2", ("derating.id",)),
+    (", quiescent: 5 mA", "", "U1", ("junction.steady", "dissipation.part")),
+    ("dropout: 1.2 V, ", "", "U1", ("network.headroom",)),
+    ("vin: 40 V, ", "", "U1", ("derating.vin",)),
+    ("power: 20 W, ", "", "U1", ("dissipation.part",)),
+    ("limits: {power: 2 W, voltage: 100 V}", "limits: {voltage: 100 V}", "R3", ("dissipation.part",)),
+    ("limits: {current: 10 A, voltage: 63 V}", "limits: {voltage: 63 V}", "F1", ("derating.current",)),
+    (", interface: 0.6 K/W", "", "Q2", ("junction.steady",)),
+    ("R3: {device: shunt-2512}", "R3: {}", "R3", ("dissipation.part",)),
+]
+
+
+@pytest.mark.parametrize(("datum", "instead", "ref", "rules"), DELETIONS, ids=[f"{d[2]}-{d[0][:24]}" for d in DELETIONS])
+def test_a_deleted_datum_is_unproven_never_met(tmp_path, datum, instead, ref, rules):
+    devices, annotations = DEVICES.replace(datum, instead), ANNOTATIONS.replace(datum, instead)
+    assert (devices, annotations) != (DEVICES, ANNOTATIONS)
+    devices = re.sub(r", *}", "}", devices)
+    result = check(write_board(tmp_path, PARTS, annotations, devices))
+    for rule in rules:
+        found = finding(result, ref, rule)
+        assert found.verdict == "unproven", found
+        assert found.remedy
+
+
+def test_without_its_device_a_part_is_unproven(tmp_path):
+    annotations = ANNOTATIONS.replace("  Q2: {device: nfet-60v, gate: 10 V,", "  Q2: {gate: 10 V,")
+    result = check(write_board(tmp_path, PARTS, annotations, DEVICES))
+    assert not [f for f in result.findings if f.ref == "Q2" and f.verdict in ("met", "close")]
+    assert [f for f in result.findings if f.ref == "Q2" and f.verdict == "unproven"]
+
+
+def test_a_missing_fuse_resistance_leaves_what_gets_worse_by_it_unproven(tmp_path):
+    """More drop lowers the load's and the regulator's input voltage: headroom is then not shown, dissipation still is."""
+    devices = DEVICES.replace("conduction: {resistance: 9 mohm}", "conduction: {}")
+    result = check(write_board(tmp_path, PARTS, ANNOTATIONS, devices))
+    assert finding(result, "U1", "network.headroom").verdict == "unproven"
+    assert finding(result, "U1", "dissipation.part").verdict == "met"
+
+
+def test_without_an_ambient_no_junction_is_proven(tmp_path):
+    annotations = ANNOTATIONS.replace("surroundings: {ambient: -20 °C .. 50 °C}", "surroundings: {}")
+    result = check(write_board(tmp_path, PARTS, annotations, DEVICES))
+    assert {f.verdict for f in result.findings if f.rule == "junction.steady"} == {"unproven"}
+
+
+def test_a_rail_without_a_voltage_is_unproven_and_so_is_what_hangs_on_it(tmp_path):
+    annotations = ANNOTATIONS.replace('  "+5V": {voltage: 5 V}\n', "")
+    result = check(write_board(tmp_path, PARTS, annotations, DEVICES))
+    assert [f.verdict for f in result.findings if f.rule == "coverage.rail"] == ["unproven"]
+    assert not [f for f in result.findings if f.ref == "U1" and f.rule in ("junction.steady", "dissipation.part") and f.verdict == "met"]
+    assert finding(result, "F1", "derating.current").verdict == "unproven"
