@@ -29,7 +29,10 @@ _WAIVABLE = ("exceeded", "unproven", "close")
 
 @dataclass(frozen=True, slots=True)
 class Waiver:
-    """One line of a waivers file. `value` is in the finding's own unit (SI, °C), `until` an ISO date, inclusive."""
+    """One line of a waivers file. `value` is in SI units (°C), `until` an ISO date, inclusive.
+
+    `unit` is the SI unit that the value was given in; None where nobody knows, and then it is taken to be right.
+    """
 
     finding: str
     because: str
@@ -38,6 +41,7 @@ class Waiver:
     value: float
     file: str = ""
     line: int = 0
+    unit: str | None = None
 
 
 def apply_waivers(findings: Iterable[Finding], waivers: Sequence[Waiver], today: str | None) -> tuple[Finding, ...]:
@@ -78,6 +82,8 @@ def why_not(findings: Sequence[Finding], waiver: Waiver, today: str | None) -> s
         return f"ended on {waiver.until}"
     if not _is_number(finding.value):
         return "accepts a value, but the finding has none to hold against it"
+    if waiver.unit not in (None, finding.unit):
+        return f"accepts a value in {waiver.unit or 'no unit'}, but the finding's is in {finding.unit or 'no unit'}"
     if not worse_by(finding, waiver.value) <= WORSE_BY + EQUAL_WITHIN:
         granted, now = si_apart(waiver.value, finding.value, finding.unit)
         return f"was granted for {granted}; the value is now {now}"

