@@ -79,14 +79,19 @@ def _regulator(wiring: Wiring, identity: Identity) -> list[Conduit]:
     coiled = [net for net in nodes if any(tap.kind in ("inductor", "transformer") for tap in wiring.taps(net))]
     behind = {wiring.across(tap) for net in coiled for tap in wiring.tied(net, "inductor")}
     targets = coiled + [net for net in outputs if net not in behind and net not in coiled] or nodes
-    inputs = [net for net in wiring.nets_of(ref, "input") if net not in targets]
-    several = len(wiring.netlist.parts[ref].pins) >= _MANAGER_PINS
-    used = inputs if several else inputs[:1]
+    inputs = [net for net in wiring.nets_of(ref, "input") if net not in targets and net not in wiring.nets_of(ref, "ground")]
+    used = _manager_inputs(wiring, ref, inputs) or inputs[:1]
     return [Conduit(ref, identity.kind, a, b, wiring.net(ref, "enable"), True) for a in used for b in targets]
 
 
 _MANAGER_PINS = 20
-"""From this size on a chip may take power in at several inputs (a power manager with charger)."""
+
+
+def _manager_inputs(wiring: Wiring, ref: str, inputs: list[str]) -> list[str]:
+    """A power manager takes power in at every input that a contact or battery is on (charger and cell)."""
+    if len(wiring.netlist.parts[ref].pins) < _MANAGER_PINS:
+        return []
+    return [net for net in inputs if wiring.tied(net, "connector") or wiring.tied(net, "battery")]
 
 
 def _bridge(wiring: Wiring, identity: Identity) -> list[Conduit]:

@@ -21,7 +21,7 @@ def is_small(nets: Standing, ref: str) -> bool:
 
 
 def _kinds(nets: Standing, net: str, ref: str) -> set[str]:
-    return {tap.kind for tap in nets.wiring.taps(net) if tap.ref != ref}
+    return nets.wiring.kinds_on(net, ref)
 
 
 def _feeder(nets: Standing, net: str, ref: str) -> bool:
@@ -33,12 +33,12 @@ def _feeder(nets: Standing, net: str, ref: str) -> bool:
 
 
 def _has_reservoir(nets: Standing, net: str) -> bool:
-    return any(tap.kind == "capacitor" for tap in nets.wiring.taps(net))
+    return bool(nets.wiring.tied(net, "capacitor"))
 
 
 def _switched(nets: Standing, net: str, ref: str) -> bool:
     """A node that a transistor, a converter or a winding moves about."""
-    return net not in nets.supplies and any(
+    return net not in nets.supplies and not nets.holds_charge(net) and any(
         tap.terminal in MAIN_ENDS or tap.terminal == "switch_node" or tap.kind in ("inductor", "transformer")
         for tap in nets.wiring.taps(net)
         if tap.ref != ref
@@ -48,6 +48,18 @@ def _switched(nets: Standing, net: str, ref: str) -> bool:
 def _reversed_across_supply(nets: Standing, c: Conduit) -> Verdict | None:
     if c.a in nets.low and (c.b in nets.supplies or nets.is_power(c.b) and not _switched(nets, c.b, c.ref)):
         return Verdict("clamp", ("across the supply, conducts only when it is reversed",), 0.85)
+    return None
+
+
+def _bridge_leg(nets: Standing, c: Conduit) -> Verdict | None:
+    """One of two diodes that meet at an alternating input, as in a bridge of single diodes."""
+    for node, mine in ((c.a, "cathode"), (c.b, "anode")):
+        if is_small(nets, c.ref) or node in nets.supplies or node in nets.low:
+            continue
+        partner = any(t.ref != c.ref and t.terminal == mine for t in nets.wiring.tied(node, "diode"))
+        rest = _kinds(nets, node, c.ref) - {"diode", "capacitor", "tvs", "resistor", "test-point", "fuse"}
+        if partner and rest and rest <= {"connector", "transformer", "source", "inductor", "switch"}:
+            return Verdict("switch", ("leg of a rectifier bridge",), 0.85)
     return None
 
 
@@ -63,13 +75,27 @@ def _in_gate_network(nets: Standing, c: Conduit) -> Verdict | None:
 
 def _around_regulator(nets: Standing, c: Conduit) -> Verdict | None:
     """From a regulator's output back to its input, or from its adjust pin to its output."""
-    regulators = {t.ref: t.terminal for t in nets.wiring.taps(c.a) if t.kind in ("linear-regulator", "switching-regulator")}
-    for tap in nets.wiring.taps(c.b):
+    kinds = ("linear-regulator", "switching-regulator")
+    regulators = {t.ref: t.terminal for kind in kinds for t in nets.wiring.tied(c.a, kind)}
+    for tap in (t for kind in kinds for t in nets.wiring.tied(c.b, kind)):
         ends = (regulators.get(tap.ref), tap.terminal)
         if ends == ("output", "input"):
             return Verdict("clamp", ("back over a regulator: conducts only when its input falls below its output",), 0.7)
         if ends == ("feedback", "output"):
             return signal("discharges the capacitor at a regulator's adjust pin")
+    return None
+
+
+def _around_pass(nets: Standing, c: Conduit) -> Verdict | None:
+    """Back over a series transistor, from its steady output to its input."""
+    if not nets.holds_charge(c.a) and c.a not in nets.supplies:
+        return None
+    reach = nets.far(c.a, c.ref)
+    for kind in ("mosfet", "bjt"):
+        for tap in nets.wiring.tied(c.b, kind):
+            ends = {net for end in MAIN_ENDS for net in nets.wiring.nets_of(tap.ref, end)}
+            if tap.terminal in MAIN_ENDS and ends & reach:
+                return Verdict("clamp", ("back over a series transistor: conducts only when its input falls below its output",), 0.65)
     return None
 
 
@@ -97,8 +123,8 @@ def _freewheel_down(nets: Standing, c: Conduit) -> Verdict | None:
 
 def _coil_diode(nets: Standing, c: Conduit) -> Verdict | None:
     """Across a relay's coil or a motor, wherever that stands."""
-    for tap in nets.wiring.taps(c.a):
-        if tap.kind in ("relay", "motor", "inductor") and any(t.ref == tap.ref for t in nets.wiring.taps(c.b)):
+    for kind in ("relay", "motor", "inductor"):
+        if {t.ref for t in nets.wiring.tied(c.a, kind)} & {t.ref for t in nets.wiring.tied(c.b, kind)}:
             return Verdict("switch", ("across a coil: freewheel diode",), 0.85)
     return None
 
@@ -135,7 +161,7 @@ def _feeds(nets: Standing, net: str, ref: str) -> bool:
 
 
 _RULES: tuple[Callable[[Standing, Conduit], Verdict | None], ...] = (
-    _bootstrap, _around_regulator, _coil_diode, _reversed_across_supply, _line_clamp, _freewheel_up, _freewheel_down,
+    _bridge_leg, _bootstrap, _around_regulator, _around_pass, _coil_diode, _reversed_across_supply, _line_clamp, _freewheel_up, _freewheel_down,
     _in_gate_network, _rectifier, _multiplier, _series,
 )
 

@@ -55,17 +55,16 @@ def judge_all(wiring: Wiring, nets: Standing) -> list[Found]:
     """
     ways = [c for part in wiring.parts() for c in conduits(wiring, wiring.identities[part.ref])]
     settled: dict[Conduit, Verdict] = {}
+    fresh: dict[Conduit, Verdict] = {}
     for _ in range(_ROUNDS):
         fresh = {c: JUDGES[c.kind](nets, c) for c in ways if c not in settled}
         on_path = {c: verdict for c, verdict in fresh.items() if verdict.group in ("pass", "switch")}
-        before = len(nets.power)
+        if not on_path:
+            break
         settled |= on_path
         for conduit in on_path:
             nets.power |= {net for net in (conduit.a, conduit.b) if net not in nets.low and net not in nets.gates}
-        if not on_path and len(nets.power) == before:
-            break
-    final = {c: settled.get(c) or JUDGES[c.kind](nets, c) for c in ways}
-    return [Found(c, _after_all(nets, c, verdict)) for c, verdict in final.items()]
+    return [Found(c, _after_all(nets, c, settled.get(c) or fresh[c])) for c in ways]
 
 
 def _after_all(nets: Standing, conduit: Conduit, verdict: Verdict) -> Verdict:

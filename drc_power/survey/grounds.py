@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterable
 
+from drc_power.netlist.model import Part
 from drc_power.survey import pins
 from drc_power.survey.values import ohms
 from drc_power.survey.voltages import leaf
@@ -17,15 +18,16 @@ _NAMES: tuple[tuple[str, float], ...] = (
 )
 _LIKELY = 4.0
 _POSSIBLE = 3.0
+_SMALL_NET = 40
 
 
 def _score(wiring: Wiring, net: str, capacitors: int) -> float:
     taps = wiring.taps(net)
     name = sum(weight for pattern, weight in _NAMES if re.match(pattern, leaf(net)))
-    named_pins = sum(1 for tap in taps if tap.kind not in ("capacitor", "resistor") and pins.is_ground_pin(tap.pin))
+    named_pins = 1.5 * len({tap.ref for tap in taps if tap.kind not in ("capacitor", "resistor") and pins.is_ground_pin(tap.pin)})
     minus = sum(2.0 if tap.kind == "battery" else 1.0 for tap in taps if tap.terminal == "minus")
     share = sum(1 for tap in taps if tap.kind == "capacitor") / max(1, capacitors)
-    return name + min(4.0, named_pins) + min(3.0, minus) + 3.0 * share
+    return name + min(6.0, named_pins) + min(3.0, minus) + 3.0 * share
 
 
 def find_grounds(wiring: Wiring) -> frozenset[str]:
@@ -51,7 +53,7 @@ def _joined(wiring: Wiring, grounds: Iterable[str], possible: set[str]) -> set[s
             for other in _return_ends(wiring, tap):
                 if other in possible:
                     reached.add(other)
-                if other not in seen and (other in possible or len(wiring.taps(other)) <= 12 and is_channel(tap)):
+                if other and other not in seen and (other in possible or len(wiring.taps(other)) <= _SMALL_NET):
                     seen.add(other)
                     waiting.append(other)
     return reached
@@ -63,7 +65,7 @@ def is_channel(tap: Tap) -> bool:
 
 
 def _return_ends(wiring: Wiring, tap: Tap) -> tuple[str, ...]:
-    if tap.kind in ("net-tie", "ferrite") or tap.kind == "resistor" and is_low_ohm(tap):
+    if tap.kind in ("net-tie", "ferrite") or tap.kind == "resistor" and is_low_ohm(tap.part):
         return (wiring.across(tap),)
     if is_channel(tap):
         suffix = "_2" if tap.terminal.endswith("_2") else ""
@@ -75,11 +77,11 @@ def _return_ends(wiring: Wiring, tap: Tap) -> tuple[str, ...]:
 _SHUNT = re.compile(r"shunt|sense|current", re.IGNORECASE)
 
 
-def is_low_ohm(tap: Tap, limit_ohm: float = 1.0) -> bool:
+def is_low_ohm(part: Part, limit_ohm: float = 1.0) -> bool:
     """Whether a resistor is small enough to carry supply current, or is called a shunt and says no value."""
-    value = ohms(tap.part.value)
+    value = ohms(part.value)
     if value is None:
-        return bool(_SHUNT.search(f"{tap.part.value} {tap.part.symbol} {tap.part.description}"))
+        return bool(_SHUNT.search(f"{part.value} {part.symbol} {part.description}"))
     return value <= limit_ohm
 
 
@@ -90,7 +92,7 @@ def low_side(wiring: Wiring, grounds: frozenset[str], supplies: Iterable[str]) -
     waiting = sorted(found)
     while waiting:
         for tap in wiring.taps(waiting.pop()):
-            if tap.kind in ("net-tie", "ferrite") or tap.kind == "resistor" and is_low_ohm(tap):
+            if tap.kind in ("net-tie", "ferrite") or tap.kind == "resistor" and is_low_ohm(tap.part):
                 other = wiring.across(tap)
                 if other and other not in found and other not in barred:
                     found.add(other)

@@ -12,6 +12,7 @@ from drc_power.survey.graph import distances
 from drc_power.survey.pins import plain
 from drc_power.survey.standing import Standing
 from drc_power.survey.verdict import Verdict
+from drc_power.survey.voltages import leaf
 
 
 class End(NamedTuple):
@@ -37,7 +38,7 @@ class Contact(NamedTuple):
     @property
     def words(self) -> str:
         p = self.part
-        return f"{p.ref} {p.value} {p.symbol} {p.footprint} {p.description}"
+        return f"{p.ref} {p.value} {p.symbol} {p.footprint} {p.description} {leaf(self.net)}"
 
     def others(self) -> set[str]:
         return {net for net in self.part.nets_of() if not net.startswith("unconnected-")}
@@ -76,6 +77,7 @@ ROWS: tuple[Row, ...] = (
 def _contacts(nets: Standing, founds: Sequence[Found]) -> list[tuple[float, End]]:
     passing = [f for f in founds if f.verdict.group == "pass"]
     fed = frozenset(f.conduit.b for f in founds if f.conduit.one_way and f.verdict.group in ("pass", "switch"))
+    fed |= frozenset(net for net in nets.supplies if any(t.pin.type == "power_out" for t in nets.wiring.tied(net, "ic")))
     feeds = frozenset(f.conduit.a for f in passing) | frozenset(f.conduit.b for f in passing if not f.conduit.one_way)
     behind = frozenset(distances([f for f in founds if not f.conduit.one_way], nets, sorted(fed))) - fed
     driven = frozenset(net for f in founds if f.verdict.group == "switch" and not f.conduit.one_way for net in (f.conduit.a, f.conduit.b) if net not in nets.supplies)

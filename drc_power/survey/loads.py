@@ -62,7 +62,7 @@ def _power_resistor(nets: Standing, tap: Tap, value: float) -> bool:
 def _ballast(nets: Standing, tap: Tap) -> bool:
     """A resistor to the return that is called a load, or a formula of a simulated one."""
     value = ohms(tap.part.value)
-    return tap.kind == "resistor" and nets.wiring.across(tap) in nets.grounds and (value is None or value < 47.0) and not is_low_ohm(tap)
+    return tap.kind == "resistor" and nets.wiring.across(tap) in nets.grounds and (value is None or value < 47.0) and not is_low_ohm(tap.part)
 
 
 HANGS: tuple[Hang, ...] = (
@@ -97,7 +97,7 @@ def load_on(nets: Standing, node: str, without: str = "") -> tuple[float, tuple[
     if node in nets.supplies:
         return 1.5, ("a supply",)
     total, words = 0.0, []
-    taps = [t for net in sorted(nets.far(node)) for t in nets.wiring.taps(net) if t.ref != without]
+    taps = [t for net in sorted(nets.far(node, without)) for t in nets.wiring.taps(net) if t.ref != without]
     for row in HANGS:
         weight = row.weight * sum(1 for tap in taps if row.holds(nets, tap))
         weight = max(weight, row.limit) if row.limit < 0 else min(weight, row.limit)

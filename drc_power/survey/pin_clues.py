@@ -43,7 +43,12 @@ class PinSet:
     @cached_property
     def drives(self) -> int:
         """Pins that drive gates outside."""
-        return sum(1 for name in self.names if DRIVE_NAME.match(name))
+        return sum(1 for p in self.part.pins if p.type != "input" and DRIVE_NAME.match(plain(p.name)))
+
+    @cached_property
+    def power_block(self) -> bool:
+        """Two transistors as half a bridge in one package, named after what they do."""
+        return self.has("VIN", "PGND") and self.any_of("SW", "VSW") and self.any_of("TG", "HG", "GH") and not self.any_of("VCC", "VDD", "PVCC", "VDRV")
 
     @cached_property
     def boosts(self) -> bool:
@@ -89,6 +94,7 @@ PIN_CLUES: tuple[PinClue, ...] = (
     PinClue(lambda p: p.has("G1", "G2") and p.any_of("S1", "S2", "D1", "D2", "S1/D2"), "mosfet", 6.0, "two sets of drain, gate, source"),
     PinClue(lambda p: p.count <= 3 and p.shows("diode", "anode", "cathode") and p.only("diode"), "diode", 2.5, "pins named anode, cathode"),
     PinClue(lambda p: p.count <= 3 and p.shows("diode", "anode", "cathode") and p.only("diode"), "led", 1.0, "pins named anode, cathode"),
+    PinClue(lambda p: p.power_block, "mosfet", 9.0, "half a bridge in one package"),
     PinClue(lambda p: p.any_of("RK", "GK", "BK", "RA", "GA"), "led", 4.0, "anodes or cathodes by colour"),
     PinClue(lambda p: p.count == 4 and p.has("+", "-"), "bridge", 3.0, "pins + and - and two more"),
     PinClue(lambda p: p.count <= 8 and p.shows("linear-regulator", "input", "output", "ground") and not p.drives

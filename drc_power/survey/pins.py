@@ -81,7 +81,8 @@ def named(kind: str, pins: Iterable[Pin]) -> dict[str, tuple[str, ...]]:
     for pin in pins:
         name = plain(pin.name)
         for terminal, pattern in PATTERNS.get(kind, ()):
-            if (name or kind == "bridge") and _pattern(pattern).match(name):
+            shown = name or (pin.number if kind == "relay" else "")
+            if (shown or kind == "bridge") and _pattern(pattern).match(shown):
                 found.setdefault(terminal, []).append(pin.number)
                 break
     return {terminal: tuple(numbers) for terminal, numbers in found.items()}
@@ -114,9 +115,14 @@ def numbered(kind: str, part: Part) -> dict[str, tuple[str, ...]]:
     return {}
 
 
+_FLOATING_NAME = re.compile(r"^(V[SB]|H[SB])[ABCUVW123]?$")
+"""Supply and return of a high-side gate driver: they ride on the switch node and are no rails."""
+
+
 def supply_pins(part: Part) -> tuple[str, ...]:
     """Pins through which a chip takes its supply, by name or type."""
-    return tuple(p.number for p in part.pins if _is_supply(p))
+    floats = any(DRIVE_NAME.match(plain(p.name)) for p in part.pins)
+    return tuple(p.number for p in part.pins if _is_supply(p) and not (floats and _FLOATING_NAME.match(plain(p.name))))
 
 
 @lru_cache(maxsize=8192)

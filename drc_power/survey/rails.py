@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Iterable
 from typing import NamedTuple
 
@@ -39,12 +40,24 @@ class Row(NamedTuple):
     words: str
 
 
+def _is_big(tap: Tap) -> bool:
+    """A suppressor of supply size, not one for a data line."""
+    return bool(re.search(r"SM[ABCD]J|P6KE|1\.?5KE|5KP|SM[ABC](\b|_)|DO-?(201|214|15)|SMF\d|RV_Disc|varistor|\d\dD\d\d\dK", f"{tap.part.value} {tap.part.footprint} {tap.part.symbol}", re.IGNORECASE))
+
+
 def _is_supply_tap(tap: Tap) -> bool:
     return tap.kind in _CHIPS and tap.terminal == "supply"
 
 
 def _is_signal_tap(tap: Tap) -> bool:
     return tap.kind in _CHIPS and tap.terminal == "" and tap.pin.type in ("output", "bidirectional", "tri_state", "open_collector")
+
+
+def _channels_meet(view: NetView) -> bool:
+    """Ends of two transistors' channels, and no capacitor to ground: a switched node."""
+    ends = {t.ref for t in view.taps if t.kind in ("mosfet", "igbt") and t.terminal.startswith(("drain", "source", "collector", "emitter"))}
+    sources = any(t.kind in ("mosfet", "igbt") and t.terminal.startswith(("source", "emitter")) for t in view.taps)
+    return len(ends) >= 2 and sources and not view.decouplers()
 
 
 def _steady_source(view: NetView) -> float:
@@ -70,8 +83,12 @@ ROWS: tuple[Row, ...] = (
     Row(_steady_source, 3.0, 3.0, "source or battery"),
     Row(lambda v: v.count(lambda t: t.kind == "connector" and t.pin.number in pins.supply_pins(t.part)), 2.0, 2.0, "supply contact of a connector"),
     Row(lambda v: len(v.decouplers()), 0.5, 1.5, "capacitors to ground"),
+    Row(lambda v: v.count(lambda t: t.kind == "tvs" and v.wiring.across(t) in v.grounds and _is_big(t)), 1.5, 1.5, "surge suppressor to ground"),
+    Row(lambda v: v.count(lambda t: t.kind == "diode" and t.terminal == "cathode" and bool(v.wiring.tied(v.wiring.across(t), "connector"))), 1.0, 1.0, "fed through a diode from a contact"),
     Row(lambda v: any((farads(t.part.value) or 0) >= 4.7e-6 for t in v.decouplers()), 1.0, 1.0, "bulk capacitor"),
-    Row(lambda v: not v.decouplers() and not v.count(_is_supply_tap) and v.count(lambda t: t.kind == "ic" and t.pin.type == "output"), -3.0, -3.0, "driven by a signal output"),
+    Row(lambda v: not v.decouplers() and not v.count(_is_supply_tap) and v.count(_is_signal_tap), -3.0, -3.0, "driven by a signal output"),
+    Row(_channels_meet, -3.0, -3.0, "two channels meet and nothing holds it steady"),
+    Row(lambda v: bool(v.wiring.tied(v.net, "connector")) and any((farads(t.part.value) or 0) >= 47e-6 for t in v.decouplers()), 1.5, 1.5, "bulk capacitor at a contact"),
     Row(lambda v: v.count(_is_signal_tap), -1.0, -3.0, "signal pins of chips"),
 )
 

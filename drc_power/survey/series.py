@@ -115,8 +115,9 @@ def judge_resistor(nets: Standing, c: Conduit) -> Verdict:
     value = ohms(part.value)
     if c.a in nets.gates or c.b in nets.gates:
         return signal("gate or base resistor")
-    tap = next((t for t in nets.wiring.taps(c.a) if t.ref == c.ref), None)
-    if tap is not None and is_low_ohm(tap):
+    if {t.ref for t in nets.wiring.tied(c.a, "inductor")} & {t.ref for t in nets.wiring.tied(c.b, "inductor")}:
+        return signal("across an inductor: damping")
+    if is_low_ohm(part):
         verdict = _shunt(nets, c, value)
     elif value is not None and value <= 100.0:
         verdict = _dropper(nets, c, value)
@@ -138,7 +139,7 @@ def _shunt(nets: Standing, c: Conduit, value: float | None) -> Verdict | None:
 
 
 def _dropper(nets: Standing, c: Conduit, value: float) -> Verdict | None:
-    if c.a in nets.supplies and c.b in nets.supplies:
+    if nets.is_power(c.a) and nets.is_power(c.b) and (c.a in nets.supplies or c.b in nets.supplies) and not _switching(nets, c):
         return Verdict("pass", ("resistor between two supplies: filter or dropper",), 0.7)
     if value > 10.0 or nets.leads_to_gate(c.a) or nets.leads_to_gate(c.b):
         return None
@@ -146,6 +147,11 @@ def _dropper(nets: Standing, c: Conduit, value: float) -> Verdict | None:
         if nets.is_power(one) and other not in nets.low and load_on(nets, other, c.ref)[0] >= 1.5:
             return Verdict("pass", ("low resistance in series with a load",), 0.6)
     return None
+
+
+def _switching(nets: Standing, c: Conduit) -> bool:
+    """Whether an end is a node that neither is a supply nor holds charge, so that a filter makes no sense there."""
+    return any(net not in nets.supplies and not nets.holds_charge(net) and any(t.terminal in MAIN_ENDS for t in nets.wiring.taps(net)) for net in (c.a, c.b))
 
 
 def _load_resistor(nets: Standing, c: Conduit, value: float | None, rated_w: float | None) -> Verdict | None:
@@ -162,12 +168,12 @@ def _load_resistor(nets: Standing, c: Conduit, value: float | None, rated_w: flo
 
 def _why_signal(nets: Standing, c: Conduit, value: float | None) -> str:
     """The plainest reason that holds, for the reader."""
-    taps = [t for net in (c.a, c.b) for t in nets.wiring.taps(net) if t.ref != c.ref]
-    if any(t.kind == "led" for t in taps):
+    wiring = nets.wiring
+    if any(wiring.tied(net, "led") for net in (c.a, c.b)):
         return "series resistor of a light-emitting diode"
-    if any(t.terminal == "feedback" for t in taps):
+    if any("feedback" in wiring.terminals_on(net) for net in (c.a, c.b)):
         return "feedback divider"
-    if any({t.kind for t in nets.wiring.taps(net) if t.ref != c.ref} == {"capacitor"} for net in (c.a, c.b)):
+    if any(wiring.kinds_on(net, c.ref) == {"capacitor"} for net in (c.a, c.b)):
         return "in series with a capacitor: snubber or filter"
     sides = {"supply" if nets.is_power(n) else "return" if n in nets.low else "signal" for n in (c.a, c.b)}
     reasons = (

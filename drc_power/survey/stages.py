@@ -8,6 +8,7 @@ from dataclasses import dataclass, field
 from functools import cached_property
 
 from drc_power.survey.channel import texts
+from drc_power.survey.grounds import is_low_ohm
 from drc_power.survey.model import Element, Stage
 from drc_power.survey.standing import Standing
 from drc_power.survey.values import farads
@@ -135,9 +136,15 @@ def _converter_coil(scene: Scene, half: _Half) -> Element | None:
     for coil in scene.inductors_at(half.node):
         other = coil.to_net if coil.from_net == half.node else coil.from_net
         diode_below = all(e.role == "diode" for e in half.low)
-        if other in scene.nets.supplies or diode_below and not any(t.kind in ("connector", "speaker") for t in scene.wiring.taps(other)):
+        if _leads_to_supply(scene, other) or diode_below and not any(t.kind in ("connector", "speaker") for t in scene.wiring.taps(other)):
             return coil
     return None
+
+
+def _leads_to_supply(scene: Scene, net: str) -> bool:
+    """A supply, or a net with a sense resistor on to one."""
+    behind = (scene.wiring.across(t) for t in scene.wiring.tied(net, "resistor") if is_low_ohm(t.part))
+    return net in scene.nets.supplies or any(other in scene.nets.supplies for other in behind)
 
 
 def _bridges(scene: Scene, halves: Sequence[_Half]) -> list[Stage]:

@@ -6,7 +6,7 @@ import re
 
 from drc_power.survey.grounds import find_grounds, is_low_ohm, low_side
 from drc_power.survey.rails import find_supplies
-from drc_power.survey.values import ohms
+from drc_power.survey.values import farads, ohms
 from drc_power.survey.wiring import Tap, Wiring
 
 MAIN_ENDS = ("drain", "source", "collector", "emitter", "drain_2", "source_2", "collector_2", "emitter_2")
@@ -33,6 +33,10 @@ class Standing:
     def is_any(self, net: str) -> bool:
         """Power or return."""
         return net in self.power or net in self.low
+
+    def holds_charge(self, net: str) -> bool:
+        """A capacitor of 1 uF or more to a return: the net's voltage is steady."""
+        return any((farads(t.part.value) or 0.0) >= 1e-6 and self.wiring.across(t) in self.low for t in self.wiring.tied(net, "capacitor"))
 
     def _gate_nets(self) -> frozenset[str]:
         """Nets of gates and bases, and nets one resistor away that lead nowhere but to such a gate."""
@@ -64,12 +68,14 @@ class Standing:
             if (ohms(tap.part.value) or limit_ohm) <= limit_ohm
         ) and not any(tap.kind in ("connector", "inductor") for tap in self.wiring.taps(net))
 
-    def far(self, net: str) -> set[str]:
+    def far(self, net: str, without: str = "") -> set[str]:
         """The net and those behind beads, net ties, fuses and low resistances: what a node reaches without loss."""
         found, waiting = {net}, [net]
         while waiting:
             for tap in self.wiring.taps(waiting.pop()):
-                if tap.kind in ("net-tie", "ferrite", "fuse") or tap.kind == "resistor" and is_low_ohm(tap, 5.0):
+                if tap.ref == without:
+                    continue
+                if tap.kind in ("net-tie", "ferrite", "fuse") or tap.kind == "resistor" and is_low_ohm(tap.part, 5.0):
                     other = self.wiring.across(tap)
                     if other and other not in found | self.supplies | self.grounds | self.gates:
                         found.add(other)

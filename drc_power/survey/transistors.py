@@ -39,7 +39,9 @@ def _between_power(nets: Standing, c: Conduit) -> Verdict:
 
 def _is_switch_node(nets: Standing, node: str, ref: str) -> bool:
     """Another transistor or a diode from the node to a return, or an inductor on it: the node moves."""
-    for tap in nets.wiring.taps(node):
+    if any(nets.holds_charge(net) for net in nets.far(node, ref)):
+        return False
+    for tap in (t for net in sorted(nets.far(node, ref)) for t in nets.wiring.taps(net)):
         if tap.ref == ref:
             continue
         if tap.kind in ("inductor", "transformer", "relay", "motor"):
@@ -48,15 +50,34 @@ def _is_switch_node(nets: Standing, node: str, ref: str) -> bool:
             return True
         if tap.kind in ("mosfet", "bjt", "igbt") and tap.terminal.startswith(("drain", "collector", "source", "emitter")):
             ends = [n for name in ("drain", "source", "collector", "emitter") for n in nets.wiring.nets_of(tap.ref, name)]
-            if any(n in nets.low for n in ends):
+            if any(n in nets.low for n in ends) or _complements(nets, tap.ref, ref):
                 return True
     return False
+
+
+def _complements(nets: Standing, one: str, other: str) -> bool:
+    """A pair of opposite polarity, as in a push-pull stage between split supplies."""
+    channels = {nets.wiring.identities[one].channel, nets.wiring.identities[other].channel}
+    return channels in ({"n", "p"}, {"npn", "pnp"})
+
+
+def _in_return_chain(nets: Standing, node: str, ref: str) -> bool:
+    """The node only joins channels whose far ends are returns too: back-to-back transistors in a battery's return."""
+    others = [t for t in nets.wiring.taps(node) if t.ref != ref and t.kind not in ("resistor", "capacitor", "test-point", "zener", "tvs")]
+    far_ends = []
+    for tap in others:
+        if tap.kind != "mosfet" or not tap.terminal.startswith(("drain", "source")):
+            return False
+        far_ends += [n for end in ("drain", "source") for n in nets.wiring.nets_of(tap.ref, end) if n != node]
+    return bool(far_ends) and all(n in nets.low for n in far_ends)
 
 
 def _low_side(nets: Standing, c: Conduit) -> Verdict:
     node = c.b if c.a in nets.low else c.a
     load, words = load_on(nets, node, c.ref)
     own, own_words = own_size(nets.wiring.netlist.parts[c.ref])
+    if c.kind == "mosfet" and _in_return_chain(nets, node, c.ref):
+        return Verdict("pass", ("one of several transistors in series in the return", *own_words), 0.85)
     if nets.leads_to_gate(node) and load < 3.0:
         return signal("drives a gate")
     if nets.is_power(node) and node in nets.supplies:

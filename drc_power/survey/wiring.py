@@ -38,6 +38,7 @@ class Wiring:
         self.identities = identities
         self.left_out = frozenset(left_out)
         self._taps: dict[str, list[Tap]] = {}
+        self._by_kind: dict[tuple[str, str], list[Tap]] = {}
         for part in self.parts():
             self._add(part)
 
@@ -53,7 +54,9 @@ class Wiring:
                 terminal_of.setdefault(number, name)
         for pin in part.pins:
             if pin.net:
-                self._taps.setdefault(pin.net, []).append(Tap(part, identity, pin, terminal_of.get(pin.number, "")))
+                tap = Tap(part, identity, pin, terminal_of.get(pin.number, ""))
+                self._taps.setdefault(pin.net, []).append(tap)
+                self._by_kind.setdefault((pin.net, identity.kind), []).append(tap)
 
     @cached_property
     def nets(self) -> tuple[str, ...]:
@@ -87,7 +90,30 @@ class Wiring:
 
     def tied(self, net: str, kind: str) -> list[Tap]:
         """The taps of one kind of part on a net."""
-        return [tap for tap in self.taps(net) if tap.kind == kind]
+        return self._by_kind.get((net, kind), [])
+
+    def kinds_on(self, net: str, without: str = "") -> set[str]:
+        """Kinds of the parts on a net, one part left out."""
+        found = self._kinds.get(net, set())
+        mine = self.identities[without].kind if without else ""
+        if mine in found and all(tap.ref == without for tap in self.tied(net, mine)):
+            return found - {mine}
+        return found
+
+    @cached_property
+    def _kinds(self) -> dict[str, set[str]]:
+        kinds: dict[str, set[str]] = {}
+        for net, kind in self._by_kind:
+            kinds.setdefault(net, set()).add(kind)
+        return kinds
+
+    @cached_property
+    def _terminals(self) -> dict[str, set[str]]:
+        return {net: {tap.terminal for tap in taps} for net, taps in self._taps.items()}
+
+    def terminals_on(self, net: str) -> set[str]:
+        """Names of the terminals on a net."""
+        return self._terminals.get(net, set())
 
 
 TWO_ENDED = frozenset(
