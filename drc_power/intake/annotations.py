@@ -1,7 +1,5 @@
 """The annotation file, read and checked within itself: `read_annotations`."""
 
-from __future__ import annotations
-
 import os
 from collections.abc import Iterable, Iterator
 from typing import Any
@@ -9,14 +7,13 @@ from typing import Any
 from pydantic import PrivateAttr
 
 from ..faults import Fault, InputError
+from .documents import record_from
 from .files import read_file
 from .modes import THE_ONLY_MODE, ModeView, view_of
-from .not_built import not_built
 from .notes import AnnotationFile, PartNote
 from .parts import lay_file_over_fields, part_note_from_fields, resolve
 from .record import shorten
 from .suggest import nearest
-from .tree import tree_of
 from .values import SourceFile, Text
 
 __all__ = ["Annotations", "ModeView", "lay_file_over_fields", "part_note_from_fields", "read_annotations"]
@@ -81,17 +78,14 @@ def read_annotations(path: str | os.PathLike[str]) -> Annotations:
 
 def annotations_from(data: bytes, name: str, file: SourceFile) -> Annotations:
     """The annotations of a file's bytes. Raises `InputError` with every fault of them."""
-    root, faults = tree_of(data, name)
-    faults += not_built(root, "annotations")
-    try:
-        notes = Annotations.read(root)
-    except InputError as error:
-        raise InputError(*sorted({*faults, *error.faults})) from None
+    notes = record_from(Annotations, data, name, "annotations", _faults_between)
     notes._path, notes._file = name, file
-    faults += [*_unknown_names(notes), *_faults_of_modes(notes)]
-    if faults:
-        raise InputError(*sorted(set(faults)))
     return notes
+
+
+def _faults_between(notes: Annotations) -> Iterator[Fault]:
+    yield from _unknown_names(notes)
+    yield from _faults_of_modes(notes)
 
 
 def _faults_of_modes(notes: Annotations) -> Iterator[Fault]:

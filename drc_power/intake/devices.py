@@ -1,7 +1,5 @@
 """Device data: what a team knows of the parts it uses, shared across boards. `read_devices` gives a `DeviceLibrary`."""
 
-from __future__ import annotations
-
 import fnmatch
 import os
 from collections.abc import Iterable, Iterator, Mapping
@@ -13,16 +11,16 @@ from pydantic_core import PydanticCustomError
 
 from ..faults import Fault, InputError, Mark
 from .device_kinds import KINDS, LIMITS, SECTIONS_OF_ALL, Kind
+from .documents import record_from, refuse
 from .fields import (
     Charge, Current, CurrentRating, EdgeTime, Factor, HeatCapacity, Named, Resistance, TemperatureCoefficient,
     ThermalResistanceAboveZero, Voltage, VoltageCoefficient, VoltageMagnitude, VoltageRating, Word, as_branch, collected,
     each, one_of, read_word, reader, table, table_reader,
 )
 from .files import inside, read_file
-from .not_built import not_built
 from .record import Record, complaint, shorten, together, unknown_keys
 from .suggest import nearest
-from .tree import Branch, Row, tree_of
+from .tree import Branch, Row
 from .values import Quantity, SourceFile, Table, Text
 
 _POSITIVE = {name: reader(name, above=0) for name in
@@ -356,8 +354,7 @@ def read_devices(paths: Iterable[Text | str], folder: str) -> DeviceLibrary:
         files.append(file)
         faults += _twice(found, devices)
         devices = {**found, **devices}
-    if faults:
-        raise InputError(*sorted(set(faults)))
+    refuse(faults)
     return DeviceLibrary(devices, tuple(files))
 
 
@@ -385,14 +382,7 @@ def _listed(path: str, named: str, mark: Mark, folder: str) -> list[str]:
 
 def _read_one(path: str, folder: str, named_at: Mark) -> tuple[dict[str, Device], SourceFile]:
     data, file = read_file(path, "devices", folder, named_at)
-    root, faults = tree_of(data, path)
-    faults += not_built(root, "devices")
-    try:
-        found = DeviceFile.read(root)
-    except InputError as error:
-        raise InputError(*faults, *error.faults) from None
-    if faults:
-        raise InputError(*faults)
+    found = record_from(DeviceFile, data, path, "devices")
     for name, device in found.devices.items():
         device._name = name
     return {str(name): device for name, device in found.devices.items()}, file

@@ -1,14 +1,11 @@
 """One house rule: how far a stress may go, for what, and in which unit."""
 
-from __future__ import annotations
-
 from collections.abc import Iterable, Iterator, Mapping
 from typing import Annotated, Any, ClassVar
 
 from pydantic import PlainValidator, PrivateAttr
 from pydantic_core import PydanticCustomError
 
-from ..faults import Mark
 from ..quantity import a_dimension, such_as
 from .device_kinds import KINDS, STRESSES
 from .fields import Flag, Listed, Temperature, Word, as_branch, collected, one_of, read_words, reader, table_reader

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TypeVar
 
 from ..faults import Fault, InputError, Mark
+from .documents import refuse
 from .notes import DEMANDS, AnnotationFile, LoadNote, ModeNote, PartNote, RailNote, StageNote, Surroundings
 from .parts import resolve
 from .record import Record, shorten
@@ -51,9 +52,7 @@ def view_of(file: AnnotationFile, name: str) -> ModeView:
         surroundings=_surroundings(file, chain),
         part_layers=tuple(layer for layer in (file.parts, *(mode.parts for mode in chain)) if layer),
     )
-    faults = sorted({*_incomplete(view, file), *_foreign_stage_keys(view)})
-    if faults:
-        raise InputError(*faults)
+    refuse(_incomplete(view, file), _foreign_stage_keys(view))
     return view
 
 

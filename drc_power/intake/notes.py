@@ -1,7 +1,5 @@
 """Records of the annotation file: what the netlist cannot know. Attributes mirror its keys."""
 
-from __future__ import annotations
-
 from collections.abc import Iterable
 from typing import Annotated, Any, ClassVar
 

@@ -9,10 +9,11 @@ from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any
 
-from ..faults import Fault, InputError, Mark
+from ..faults import Fault, Mark
+from .documents import refuse
 from .notes import PartNote
-from .record import Record
-from .suggest import nearest
+from .record import Record, shorten
+from .suggest import MOST_ADVISED, nearest
 from .tree import Branch, tree_of_text
 from .values import Quantity, Text
 
@@ -43,7 +44,8 @@ def expand(patterns: Iterable[Text], refs: Iterable[str]) -> tuple[dict[str, tup
         named = _named(pattern, known)
         found[pattern] = named
         if not named:
-            faults.append(Fault(pattern.mark, f"{str(pattern)!r} names no part of the netlist", nearest(pattern, known)))
+            advice = nearest(pattern, known) if len(faults) < MOST_ADVISED else ""
+            faults.append(Fault(pattern.mark, f"{shorten(pattern)!r} names no part of the netlist", advice))
     return found, faults
 
 
@@ -67,8 +69,7 @@ def resolve(layers: Iterable[Mapping[str, PartNote]], refs: Iterable[str]) -> di
         claims = _claims(layer, known, faults)
         for ref, note in _resolved_layer(claims, faults).items():
             merged[ref] = note.over(merged[ref]) if ref in merged else note
-    if faults:
-        raise InputError(*sorted(set(faults)))
+    refuse(faults)
     return {ref: merged[ref] for ref in known if ref in merged}
 
 

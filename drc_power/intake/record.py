@@ -10,7 +10,7 @@ from pydantic import BaseModel, ConfigDict, PrivateAttr, ValidationError, model_
 from pydantic_core import InitErrorDetails, PydanticCustomError
 
 from ..faults import Fault, InputError, Mark
-from .suggest import nearest
+from .suggest import MOST_ADVISED, nearest
 from .tree import Blank, Branch
 from .values import NOWHERE, Text
 
@@ -144,7 +144,7 @@ class Record(BaseModel):
             raise together([*complaints, *complaints_of(error)]) from None
         record._mark = branch.mark
         record._sources = {cls.attributes()[key]: branch.marks[key] for key in known}
-        complaints += record.complaints_between_keys()
+        complaints = complaints or list(record.complaints_between_keys())
         if complaints:
             raise together(complaints)
         return record
@@ -162,10 +162,10 @@ def as_mapping(node: Any, what: str) -> Branch:
 def unknown_keys(branch: Branch, allowed: Iterable[str], what: str) -> list[PydanticCustomError]:
     """A complaint for each key that is not allowed, with the nearest that is."""
     names = list(allowed)
+    wrong = [key for key in branch if key not in names]
     return [
-        complaint(key.mark, f"{shorten(key)!r} is not a key of {what}", nearest(key, names))
-        for key in branch
-        if key not in names
+        complaint(key.mark, f"{shorten(key)!r} is not a key of {what}", nearest(key, names) if n < MOST_ADVISED else "")
+        for n, key in enumerate(wrong)
     ]
 
 

@@ -1,7 +1,5 @@
 """House rules: limits, methods and field names, and the chain of packs that they come from. `read_rules` gives a `RulePack`."""
 
-from __future__ import annotations
-
 import functools
 import os
 from collections.abc import Iterable, Iterator, Mapping
@@ -11,13 +9,12 @@ from typing import Annotated, Any, ClassVar
 from pydantic import Field, PlainValidator, PrivateAttr
 
 from ..faults import Fault, InputError, Mark
+from .documents import record_from, refuse
 from .fields import Named, Word, Words, as_branch, choice, collected, one_of, reader
 from .files import inside, read_file
 from .limits import VERDICTS_THAT_FAIL, Limit, LimitPart
-from .not_built import not_built
 from .record import Record, shorten, together, unknown_keys
 from .suggest import nearest
-from .tree import tree_of
 from .values import Quantity, SourceFile, Text
 
 __all__ = ["METHODS", "FieldNames", "Limit", "LimitPart", "RuleFile", "RulePack", "read_rules", "shipped_packs"]
@@ -101,9 +98,7 @@ def read_rules(paths: Iterable[Text | str], folder: str) -> RulePack:
     chain = _Chain(folder)
     for named in paths:
         chain.add(named, folder, ())
-    chain.faults += _same_names(chain.packs)
-    if chain.faults:
-        raise InputError(*sorted(set(chain.faults)))
+    refuse(chain.faults, _same_names(chain.packs))
     return _laid_over_each_other(list(chain.packs.values()))
 
 
@@ -149,14 +144,7 @@ def _mark_of(named: Text | str) -> Mark:
 
 def _read_pack(path: str, shown: str, folder: str, named_at: Mark) -> RuleFile:
     data, file = read_file(path, "rules", folder, named_at)
-    root, faults = tree_of(data, shown)
-    faults += not_built(root, "rules")
-    try:
-        pack = RuleFile.read(root)
-    except InputError as error:
-        raise InputError(*faults, *error.faults) from None
-    if faults:
-        raise InputError(*faults)
+    pack = record_from(RuleFile, data, shown, "rules")
     pack._file = file if shown == path else SourceFile(file.role, shown, file.sha256)
     for name, limit in pack.limits.items():
         limit._name, limit._pack = str(name), str(pack.name)

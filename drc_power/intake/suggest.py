@@ -6,6 +6,10 @@ import difflib
 from collections.abc import Iterable
 
 
+MOST_ADVISED = 20
+"""Wrong names of one place that get a suggestion; looking for the nearest takes time."""
+
+
 def nearest(wrong: str, right: Iterable[str]) -> str:
     """Advice for a misspelt name: the nearest right one, or the choice when there is none near.
 
@@ -17,7 +21,7 @@ def nearest(wrong: str, right: Iterable[str]) -> str:
     choice = list(dict.fromkeys(right))
     by_fold = {name.casefold().replace("-", "_"): name for name in choice}
     folded = wrong[:80].casefold().replace("-", "_")
-    near = difflib.get_close_matches(folded, by_fold, n=1, cutoff=0.6)
+    near = difflib.get_close_matches(folded, by_fold, n=1, cutoff=0.6 if len(folded) > 3 else 0.5)
     if near:
         return f"write {by_fold[near[0]]!r}"
     return _choice(choice)

@@ -7,6 +7,7 @@ which count nodes as if every alias were written out.
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass, field, replace
 from typing import Any
 
@@ -19,6 +20,9 @@ MOST_BYTES = 8_000_000
 MOST_NODES = 400_000
 MOST_DEPTH = 40
 MOST_FAULTS = 100
+
+_NOT_TEXT = re.compile("[^\\t\\n\\r\\x20-\\x7e\\x85\\xa0-\\ud7ff\\ue000-\\ufffd\\U00010000-\\U0010ffff]")
+"""What YAML does not take for text."""
 
 _LOADER = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
 
@@ -65,7 +69,7 @@ def tree_of(data: bytes, file: str) -> tuple[Any, list[Fault]]:
 
 def tree_of_text(text: str, mark: Mark) -> Any:
     """The tree of a short text that stands at one place, such as a schematic field. Raises `InputError`."""
-    plain = text.encode("utf-8", "replace").decode().replace("\0", "\ufffd")
+    plain = _NOT_TEXT.sub("\ufffd", text)
     root, faults = _built(plain, _Builder(mark.file, at=mark))
     if faults:
         raise InputError(*faults)
@@ -85,26 +89,34 @@ def _built(text: str, builder: _Builder) -> tuple[Any, list[Fault]]:
 def _decoded(data: bytes, file: str) -> str:
     if len(data) > MOST_BYTES:
         raise InputError(Fault(Mark(file), f"a file of {len(data)} bytes", f"split it; {MOST_BYTES} is the most that is read"))
-    if b"\0" in data:
-        raise InputError(Fault(_mark_at(data, data.index(b"\0"), file), "a NUL byte", "save the file as UTF-8 text"))
     try:
-        return data.decode("utf-8-sig")
+        text = data.decode("utf-8-sig")
     except UnicodeDecodeError as error:
-        raise InputError(Fault(_mark_at(data, error.start, file), "bytes that are not UTF-8", "save the file as UTF-8 text")) from None
+        before = data[: error.start].decode("utf-8-sig", errors="replace")
+        raise InputError(Fault(_end_of(before, file), "bytes that are not UTF-8", "save the file as UTF-8 text")) from None
+    if control := _NOT_TEXT.search(text):
+        found = f"the control character U+{ord(control[0]):04X}"
+        raise InputError(Fault(_end_of(text[: control.start()], file), found, "save the file as plain UTF-8 text"))
+    return text
 
 
-def _mark_at(data: bytes, position: int, file: str) -> Mark:
-    before = data[:position].decode("utf-8", errors="replace")
+def _end_of(before: str, file: str) -> Mark:
+    """The place right after a text."""
     return Mark(file, before.count("\n") + 1, len(before) - before.rfind("\n"))
 
+
+_ADVICE_AT = {
+    "\t": "indent with spaces, not with tabs",
+    "}": "check the brackets", "]": "check the brackets",
+    "@": "put the text in quotes", "`": "put the text in quotes", "%": "put the text in quotes",
+}
+"""What to write instead, by the character that the parser stumbled over."""
 
 _ADVICE = (
     ("mapping values are not allowed", "put the text that holds ': ' in quotes, or check the indentation"),
     ("could not find expected ':'", "write key: value"),
     ("block end", "check the indentation"),
     ("flow", "check the commas and brackets"),
-    ("alias", "put a text that begins with * in quotes"),
-    ("cannot start any token", "put the text in quotes"),
     ("quoted", "close the quotes"),
 )
 """What to write instead, by what the parser says."""
@@ -112,15 +124,12 @@ _ADVICE = (
 
 def _fault_of(error: yaml.YAMLError, text: str, file: str) -> Fault:
     """The parser's complaint in one line, at its place."""
-    if isinstance(error, yaml.reader.ReaderError):
-        place = _mark_at(text.encode(), error.position, file)
-        return Fault(place, "a control character", "save the file as plain text")
-    mark = error.problem_mark or error.context_mark
+    mark = getattr(error, "problem_mark", None) or getattr(error, "context_mark", None)
     place = Mark(file, mark.line + 1, mark.column + 1) if mark else Mark(file)
-    said = " ".join(" ".join(filter(None, (error.context, error.problem))).split())[:160]
-    if mark and _character_at(text, mark) == "\t":
-        return Fault(place, "this is not YAML: a tab where spaces are due", "indent with spaces")
-    advice = next((advice for sign, advice in _ADVICE if sign in said), "put the text in quotes, or check the indentation")
+    said = " ".join(str(part) for part in (getattr(error, "context", ""), getattr(error, "problem", "") or error) if part)
+    said = " ".join(said.split())[:160]
+    advice = _ADVICE_AT.get(_character_at(text, mark) if mark else "")
+    advice = advice or next((advice for sign, advice in _ADVICE if sign in said), "put the text in quotes, or check the indentation")
     return Fault(place, f"this is not YAML: {said}", advice)
 
 
@@ -186,7 +195,7 @@ class _Builder:
 
     def _scalar(self, event: yaml.ScalarEvent) -> Text:
         self._refuse_tag(event)
-        blank = event.style is None and event.value in ("", "~", "null")
+        blank = not event.style and event.value in ("", "~", "null")
         return (Blank if blank else Text)(event.value, self._mark(event))
 
     def _start(self, event: Any) -> None:

@@ -1,15 +1,14 @@
 """Waivers: findings that somebody accepted, until a day and at a value. `read_waivers` gives `Waivers`."""
 
-from __future__ import annotations
-
 import os
 from dataclasses import dataclass
 from typing import Annotated, Any, ClassVar
 
 from pydantic import PlainValidator
 
-from ..faults import InputError, Mark
+from ..faults import Mark
 from ..quantity import DIMENSIONS
+from .documents import refuse
 from .fields import Day, Word, as_row, collected, one_value
 from .files import read_file
 from .record import Record, faults_of, together
@@ -50,6 +49,5 @@ def read_waivers(path: Text | str, folder: str) -> Waivers:
     waivers, complaints = collected(Waiver.model_validate, rows[0] if rows else ())
     complaints += wrong
     faults += faults_of(together(complaints)) if complaints else []
-    if faults:
-        raise InputError(*sorted(set(faults)))
+    refuse(faults)
     return Waivers(tuple(waivers), (file,))
