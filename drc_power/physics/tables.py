@@ -51,16 +51,39 @@ def interpolate_linear_slope(x, xs, ys, *, below="hold", above="extend"):
     >>> float(value), round(float(slope), 6)
     (1.45, 0.008)
     """
-    xs, ys = _checked(xs, ys, below, above)
-    x = np.asarray(x, dtype=float)
-    anchor = np.clip(np.searchsorted(xs, x, side="right") - 1, 0, xs.size - 1)
-    slopes = np.diff(ys) / np.diff(xs) if xs.size > 1 else np.zeros(1)
-    held = (x < xs[0]) & (below == "hold") | (x >= xs[-1]) & (above == "hold")
-    slope = np.where(held, 0.0, slopes[np.minimum(anchor, slopes.size - 1)])
-    # A held value must not see x itself: 0 · infinity is NaN.
-    value = ys[anchor] + slope * np.where(held, 0.0, x - xs[anchor])
-    outside = np.isnan(x) | (x < xs[0]) & (below == "nan") | (x > xs[-1]) & (above == "nan")
-    return nan_where(outside, value), nan_where(outside, slope)
+    return StraightLines(xs, ys, below=below, above=above).read(x)
+
+
+class StraightLines:
+    """A table checked once and read many times: `read(x)` is `interpolate_linear_slope(x, xs, ys, ...)`.
+
+    >>> value, slope = StraightLines([25.0, 100.0, 150.0], [1.0, 1.45, 1.85]).read(100.0)
+    >>> float(value), round(float(slope), 6)
+    (1.45, 0.008)
+    """
+
+    def __init__(self, xs, ys, *, below="hold", above="extend"):
+        self.xs, self.ys = _checked(xs, ys, below, above)
+        self.below, self.above = below, above
+        slopes = np.diff(self.ys) / np.diff(self.xs) if self.xs.size > 1 else np.zeros(1)
+        before, after = 0.0 if below == "hold" else slopes[0], 0.0 if above == "hold" else slopes[-1]
+        # Line k starts at point k − 1: the first lies before the table, the last after it.
+        self.slopes = np.concatenate([[before], slopes[: self.xs.size - 1], [after]])
+        self.anchors = np.concatenate([[0], np.arange(self.xs.size)])
+
+    def read(self, x):
+        """Value and slope at x, each of its shape."""
+        x = np.asarray(x, dtype=float)
+        line = np.searchsorted(self.xs, x, side="right")
+        anchor, slope = self.anchors[line], self.slopes[line]
+        # A held value must not see x itself: 0 · infinity is NaN.
+        value = self.ys[anchor] + slope * np.where(slope == 0.0, 0.0, x - self.xs[anchor])
+        outside = np.isnan(x)
+        if self.below == "nan":
+            outside = outside | (x < self.xs[0])
+        if self.above == "nan":
+            outside = outside | (x > self.xs[-1])
+        return (nan_where(outside, value), nan_where(outside, slope)) if outside.any() else (value, slope)
 
 
 def interpolate_bilinear(x, y, rows, *, x_outside="hold", y_below="hold", y_above="hold"):

@@ -20,8 +20,8 @@ FUNCTIONS = [
     for name, function in inspect.getmembers(module, inspect.isfunction)
     if function.__module__ == module.__name__ and not name.startswith("_")
 ]
-NOT_NUMBERS = {"text", "word", "flag", "any"}
-"""In place of a unit: words, switches, and numbers whose unit the caller chooses (tables alone)."""
+NOT_NUMBERS = {"text", "word", "flag", "record", "any"}
+"""In place of a unit: words, switches, records of this room, and numbers whose unit the caller chooses (tables alone)."""
 
 
 def name_of(function):
