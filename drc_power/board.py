@@ -229,11 +229,20 @@ class Board:
         """A resistor across a supply is a load that heats up on the board itself."""
         return element.group == "load" and self.parts[element.ref].kind == "resistor"
 
+    @cached_property
+    def _marks(self) -> dict[str, Mark]:
+        return {}
+
     def where(self, part: BoardPart) -> Mark:
         """The line a reader should look at for a part: its annotation, else its netlist entry."""
-        if part.note.written:
-            return part.note.source_of(part.note.written[0])
-        return Mark(self.netlist_name, part.part.line)
+        if part.ref not in self._marks:
+            written = part.note.written
+            self._marks[part.ref] = part.note.source_of(written[0]) if written else Mark(self.netlist_name, part.part.line)
+        return self._marks[part.ref]
+
+    def shown(self, path: str) -> str:
+        """A file as a report names it: from the project folder, so that a checkout elsewhere gives the same bytes."""
+        return os.path.relpath(path, self.annotations.folder or ".").replace(os.sep, "/") if path else ""
 
     def check_names(self) -> None:
         """Raise InputError with every net, part or sink that the annotations name and that is not there."""

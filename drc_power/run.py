@@ -9,8 +9,8 @@ from dataclasses import dataclass, field, replace
 import numpy as np
 
 from .board import Board, Mode
-from .checks import Judgement, judge
-from .checks.judge import make_finding, objective_of
+from .checks import House, Judgement, judge
+from .checks.judge import finite_or_zero, make_finding, objective_of
 from .findings.model import Coverage, Finding, InputFile, NetPoint, OperatingPoint, Outside, PartRow, Result, Sensitivity
 from .findings.order import finding_key
 from .findings.waiving import Waiver, apply_waivers
@@ -52,12 +52,13 @@ def check(path: str | os.PathLike[str], run: Run | None = None) -> Result:
     run = run or Run()
     run.progress("reading")
     board, inputs, waivers = read_board(path, run)
+    house = House(board.rules)
     findings: list[Finding] = []
     points: list[OperatingPoint] = []
     nets: list[NetPoint] = []
     for mode in board.modes:
         run.progress(f"solving mode {mode.name}")
-        for found in _in_mode(board, mode):
+        for found in _in_mode(board, mode, house):
             findings += found[0]
             points += found[1]
             nets += found[2]
@@ -95,20 +96,21 @@ def _waivers(found) -> tuple[Waiver, ...]:
                  for w in found.waivers)
 
 
-def _in_mode(board: Board, mode: Mode) -> Iterator[tuple[list[Finding], list[OperatingPoint], list[NetPoint]]]:
+def _in_mode(board: Board, mode: Mode, house: House) -> Iterator[tuple[list[Finding], list[OperatingPoint], list[NetPoint]]]:
     """Search one mode's box and read findings and points off its worst corners."""
     circuit = build_circuit(mode)
     engine = Engine(circuit)
-    n_judged = len(judge(engine.solve(circuit.box.typical()[None])))
 
-    def objectives(points: np.ndarray) -> np.ndarray:
+    def objectives(points: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
         solution = engine.solve(points)
-        return np.vstack([*(objective_of(j) for j in judge(solution)), *_extremes(solution)])
+        return np.vstack([objective_of(j) for j in judge(solution, house)] or [np.zeros((0, len(points)))]), np.vstack(
+            [*_extremes(solution)] or [np.zeros((0, len(points)))])
 
-    worst = worst_corners(circuit.box, objectives, slice(0, n_judged))
+    worst = worst_corners(circuit.box, objectives)
     final = engine.solve(worst.points)
-    judgements = judge(final)
-    gaps = _gaps(engine, worst, judgements, n_judged)
+    judgements = judge(final, house)
+    n_judged = len(judgements)
+    gaps = _gaps(engine, house, worst, judgements)
     findings = []
     for k, judgement in enumerate(judgements):
         sample = int(worst.at[k])
@@ -122,14 +124,14 @@ def _in_mode(board: Board, mode: Mode) -> Iterator[tuple[list[Finding], list[Ope
 def _extremes(solution: Solution) -> Iterator[np.ndarray]:
     """Objectives besides the judgements: each part at its highest power and voltage, each net at both ends."""
     for point in solution.parts.values():
-        yield -np.nan_to_num(point.power_w)
-        yield -np.abs(np.nan_to_num(point.block_v))
+        yield -finite_or_zero(point.power_w)
+        yield -np.abs(finite_or_zero(point.block_v))
     for net in solution.system.layout.of_kind("node"):
         yield solution.node_v(net)
         yield -solution.node_v(net)
 
 
-def _gaps(engine: Engine, worst: Worst, judgements: list[Judgement], n_judged: int) -> list[list[str]]:
+def _gaps(engine: Engine, house: House, worst: Worst, judgements: list[Judgement]) -> list[list[str]]:
     """For each judgement the missing data that would make it worse, found by trying each of them."""
     variables = engine.circuit.box.variables
     missing = [k for k, v in enumerate(variables) if v.probe is not None]
@@ -139,7 +141,7 @@ def _gaps(engine: Engine, worst: Worst, judgements: list[Judgement], n_judged: i
     tried = np.repeat(worst.points, len(missing), axis=0)
     columns = np.tile(missing, len(worst.points))
     tried[np.arange(len(tried)), columns] = [variables[k].probe for k in columns]
-    after = judge(engine.solve(tried))
+    after = judge(engine.solve(tried), house)
     for k, (judgement, other) in enumerate(zip(judgements, after, strict=True)):
         sample = worst.at[k]
         was, now = judgement.margins()[sample], other.margins()[sample * len(missing) + np.arange(len(missing))]

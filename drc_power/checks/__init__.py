@@ -6,6 +6,7 @@ from collections.abc import Iterator
 
 from ..solve.solution import Solution
 from . import coverage, derating, envelope, heat, network
+from .house import House
 from .judgement import Judgement
 from .view import View
 
@@ -13,12 +14,12 @@ RULES = (heat.dissipation, heat.junction, envelope.envelope, derating.derating, 
          network.load_voltage, network.source_limit, network.runaway, network.unsolved, coverage.rails)
 
 
-def judge(solution: Solution) -> list[Judgement]:
+def judge(solution: Solution, house: House) -> list[Judgement]:
     """Every judgement of one mode, in an order that depends on the board alone."""
-    view = View(solution)
+    view = View(solution, house)
     found = [judgement for rule in RULES for judgement in rule(view)]
     judged = {judgement.ref for judgement in found if judgement.ref and not judgement.only_if_exceeded}
     return [*found, *coverage.unjudged(view, judged)]
 
 
-__all__ = ["RULES", "Judgement", "View", "judge"]
+__all__ = ["RULES", "House", "Judgement", "View", "judge"]

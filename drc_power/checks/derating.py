@@ -50,7 +50,7 @@ def _judge(element: ElementView, row: Stress) -> Judgement:
         element.view.board.where(element.part), row.key, element.ref, mode=element.view.mode.name, limit=limit,
         ambient_c=ambient_c, proven=element.view.solved, lacking=lacking,
         remedy=f"use a part with a higher {row.key} rating, or lower what it sees",
-        inputs=element.sources(f"limits.{row.key}"))
+        inputs=lambda: element.sources(f"limits.{row.key}"))
 
 
 def _held_off(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:

@@ -34,7 +34,7 @@ def _envelope(element: ElementView) -> Judgement:
         "envelope.steady", element.subject, "current inside the safe area", "A", value, rated, allowed,
         element.view.board.where(element.part), "envelope", element.ref, mode=element.view.mode.name, limit=limit,
         proven=element.solved, lacking=lacking, remedy="use a part with a wider safe area, or take voltage off it",
-        inputs=element.sources("limits.tj"))
+        inputs=lambda: element.sources("limits.tj"))
 
 
 def _lacking(element: ElementView) -> tuple[str, ...]:

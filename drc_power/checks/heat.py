@@ -33,7 +33,7 @@ def _dissipation(element: ElementView) -> Judgement:
         element.view.board.where(element.part), "power", element.ref, mode=element.view.mode.name, limit=limit,
         proven=element.solved, lacking=lacking, steps=lambda k: power_steps(element, k),
         remedy="use a part with a higher power rating, or take voltage or current off this one",
-        inputs=element.sources("limits.power", "conduction.rds", "conduction.rds_scale", "conduction.knee",
+        inputs=lambda: element.sources("limits.power", "conduction.rds", "conduction.rds_scale", "conduction.knee",
                                "conduction.slope", "conduction.quiescent", "conduction.efficiency"))
 
 
@@ -55,7 +55,7 @@ def _junction(element: ElementView) -> Judgement:
         ambient_c=element.view.solution.ambient_c, proven=element.solved, lacking=lacking,
         steps=lambda k: (*power_steps(element, k), *temperature_steps(element, k)),
         remedy="lower its thermal resistance to the ambient, or its loss",
-        inputs=element.sources("limits.tj", "thermal.rth_jc", "thermal.rth_ja"))
+        inputs=lambda: element.sources("limits.tj", "thermal.rth_jc", "thermal.rth_ja"))
 
 
 def power_steps(element: ElementView, k: int) -> tuple[Step, ...]:

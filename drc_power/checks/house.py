@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import fnmatch
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 
@@ -56,8 +56,22 @@ def _fits(patterns: Iterable[str], words: Iterable[str]) -> bool:
     return any(fnmatch.fnmatchcase(word, str(pattern)) for word in words for pattern in patterns)
 
 
-def limits_on(rules: RulePack, target: Target) -> tuple[Limit, ...]:
-    """The limits in force: those of the last pack that has any, and every locked one below it."""
+@dataclass(frozen=True)
+class House:
+    """The rules in force, each target's limits looked up once."""
+
+    rules: RulePack
+    found: dict[tuple, tuple[Limit, ...]] = field(default_factory=dict)
+
+    def limits_on(self, target: Target) -> tuple[Limit, ...]:
+        """The limits in force: those of the last pack that has any, and every locked one below it."""
+        key = (target.kind, target.stress, target.mode, target.part.ref if target.part else None, target.nets, target.event)
+        if key not in self.found:
+            self.found[key] = _limits_on(self.rules, target)
+        return self.found[key]
+
+
+def _limits_on(rules: RulePack, target: Target) -> tuple[Limit, ...]:
     fitting = [limit for limit in rules.limits.values() if applies(limit, target)]
     if not fitting:
         return ()
@@ -73,6 +87,8 @@ def allowed(limits: Iterable[Limit], rated: np.ndarray, conditions: Conditions) 
     found = [(_value(limit, rated, conditions), limit) for limit in limits]
     if not found:
         return rated, None
+    if len(found) == 1:
+        return found[0]
     lowest = np.minimum.reduce([value for value, _ in found])
     return lowest, min(found, key=lambda row: np.nan_to_num(row[0], nan=-np.inf).min(initial=np.inf))[1]
 

@@ -24,7 +24,7 @@ TIE_BREAK = 1e-7
 def objective_of(judgement: Judgement) -> np.ndarray:
     """What the search for the worst corner makes as small as it can, shape (sample,)."""
     if judgement.lacking:
-        value = np.nan_to_num(judgement.value, nan=0.0, posinf=0.0, neginf=0.0)
+        value = finite_or_zero(judgement.value)
         return value if judgement.sense == "at_least" else -value
     margins = judgement.margins()
     known = np.where(np.isnan(margins), UNKNOWN_MARGIN, np.maximum(margins, -1e6))
@@ -37,7 +37,12 @@ def _room(judgement: Judgement) -> np.ndarray:
     size = np.abs(judgement.allowed) + np.abs(judgement.value)
     with np.errstate(divide="ignore", invalid="ignore"):
         room = sign * (judgement.allowed - judgement.value) / size
-    return np.nan_to_num(room, nan=0.0, posinf=0.0, neginf=0.0)
+    return finite_or_zero(room)
+
+
+def finite_or_zero(values: np.ndarray) -> np.ndarray:
+    """The values, 0 where they are not finite."""
+    return np.where(np.isfinite(values), values, 0.0)
 
 
 def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, gaps: Sequence[str],
@@ -51,7 +56,7 @@ def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, g
     value, rated, allowed = (_number(a[sample]) for a in (judgement.value, judgement.rated, judgement.allowed))
     part = board.netlist.parts.get(judgement.ref or "")
     limits = sorted({str(judgement.limit.name)}) if judgement.limit is not None else []
-    inputs = [InputUsed(*row) for row in judgement.inputs]
+    inputs = [InputUsed(*row) for row in judgement.inputs()]
     if judgement.limit is not None:
         source = f"{judgement.limit.mark}" + (f" ({judgement.limit.source})" if judgement.limit.source else "")
         inputs.append(InputUsed(f"house rule {limits[0]}", describe(judgement.limit), source))
@@ -64,7 +69,7 @@ def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, g
         text=_sentence(judgement, verdict, value, allowed, rated, gaps),
         remedy=_remedy(judgement, verdict, gaps), inputs_used=tuple(inputs),
         sensitivity=tuple(sensitivity) if verdict not in ("met",) else (),
-        workings=judgement.steps(sample), file=judgement.mark.file, line=judgement.mark.line)
+        workings=judgement.steps(sample), file=board.shown(judgement.mark.file), line=judgement.mark.line)
 
 
 def _number(value: float) -> float | None:

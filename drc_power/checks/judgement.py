@@ -46,7 +46,7 @@ class Judgement:
     remedy: str = ""
     only_if_exceeded: bool = False
     steps: Callable[[int], tuple[Step, ...]] = field(default=lambda sample: ())
-    inputs: tuple[tuple[str, str, str], ...] = ()
+    inputs: Callable[[], tuple[tuple[str, str, str], ...]] = tuple
 
     def margins(self) -> np.ndarray:
         """The margin at every sample; NaN where it is unproven there."""

@@ -8,7 +8,7 @@ import numpy as np
 
 from ..findings.identity import named_subject
 from ..findings.model import Step
-from .house import Conditions, Target, allowed, limits_on
+from .house import Conditions, Target, allowed
 from .judgement import Judgement
 from .view import ElementView, View
 
@@ -32,7 +32,7 @@ def _headroom(element: ElementView) -> Judgement:
         element.view.board.where(element.part), "headroom", element.ref, mode=element.view.mode.name, sense="at_least",
         limit=limit, proven=element.view.solved, lacking=() if given is not None else ("conduction.dropout",),
         remedy="raise the input voltage, lower the load, or use a regulator with less dropout",
-        inputs=element.sources("conduction.dropout"))
+        inputs=lambda: element.sources("conduction.dropout"))
 
 
 def load_voltage(view: View) -> Iterator[Judgement]:
@@ -49,7 +49,7 @@ def load_voltage(view: View) -> Iterator[Judgement]:
             view.unknown(), high if sense == "between" else low, load.mark, "voltage", net=load.a,
             mode=view.mode.name, sense=sense, low=low, proven=view.solved,
             remedy="lower the drop between source and load, or change the rail",
-            inputs=((f"loads.{load.name}.needs", view.mode.loads[load.name].needs.text, str(load.mark)),))
+            inputs=lambda load=load: ((f"loads.{load.name}.needs", view.mode.loads[load.name].needs.text, str(load.mark)),))
 
 
 def source_limit(view: View) -> Iterator[Judgement]:
@@ -60,13 +60,13 @@ def source_limit(view: View) -> Iterator[Judgement]:
             continue
         rated = solution.value(source.limit_a)
         conditions = Conditions(solution.ambient_c, view.unknown(), view.unknown())
-        limits = limits_on(view.board.rules, Target("rail", "limit", view.mode.name, nets=(source.net,)))
+        limits = view.house.limits_on(Target("rail", "limit", view.mode.name, nets=(source.net,)))
         may, limit = allowed(limits, rated, conditions)
         yield Judgement(
             "network.limit", named_subject("rail", source.rail), f"current from the source of {source.rail}", "A",
             solution.current_a(source.key), rated, may, source.mark, "limit", net=source.net, mode=view.mode.name,
             limit=limit, proven=view.solved, remedy="take load off the rail, or give it a stronger source",
-            inputs=((f"rails.{source.rail}.limit", view.mode.rails[source.rail].limit.text, str(source.mark)),))
+            inputs=lambda source=source: ((f"rails.{source.rail}.limit", view.mode.rails[source.rail].limit.text, str(source.mark)),))
 
 
 def runaway(view: View) -> Iterator[Judgement]:

@@ -12,7 +12,7 @@ from ..board import Board, BoardPart, Limit, Mode, Quantity
 from ..findings.identity import Subject, part_subject
 from ..solve.circuit import Probe
 from ..solve.solution import PartPoint, Solution
-from .house import Conditions, Target, allowed, limits_on, required
+from .house import Conditions, House, Target, allowed, required
 
 
 @dataclass(frozen=True)
@@ -20,6 +20,7 @@ class View:
     """One mode's solution as the rules see it."""
 
     solution: Solution
+    house: House
 
     @property
     def mode(self) -> Mode:
@@ -104,7 +105,7 @@ class ElementView:
         return required(self._limits(stress), rated, self.conditions)
 
     def _limits(self, stress: str) -> tuple[Limit, ...]:
-        return limits_on(self.view.board.rules, Target(self.kind, stress, self.view.mode.name, self.part))
+        return self.view.house.limits_on(Target(self.kind, stress, self.view.mode.name, self.part))
 
     def sources(self, *paths: str) -> tuple[tuple[str, str, str], ...]:
         """Inputs of a finding: (name, value, where) for entries of the device data that exist."""

@@ -7,18 +7,30 @@ Voltages are against the reference ground; a current is positive along conductio
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
+from ..physics.tables import StraightLines
 from .variables import ONE, ZERO, Param
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Curve:
     """A table of straight lines: xs rising, ys the values, each of shape (point,)."""
 
     xs: np.ndarray
     ys: np.ndarray
+
+    @cached_property
+    def extended(self) -> StraightLines:
+        """Past its last point on along the last slope, as a device's curves over temperature and current."""
+        return StraightLines(self.xs, self.ys, above="extend")
+
+    @cached_property
+    def held(self) -> StraightLines:
+        """Past its last point the last value, as an efficiency over load."""
+        return StraightLines(self.xs, self.ys, above="hold")
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,7 +47,7 @@ class Resistive:
     load: str | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Drop:
     """The forward law of a one-way branch: knee + slope·i, or measured lines of (temperature, volts over amperes)."""
 
@@ -43,6 +55,10 @@ class Drop:
     slope_ohm: Param = ZERO
     knee_v_per_k: float = 0.0
     lines: tuple[tuple[float, Curve], ...] = ()
+
+    @cached_property
+    def extended(self) -> tuple[tuple[float, StraightLines], ...]:
+        return tuple((t_c, curve.extended) for t_c, curve in self.lines)
 
 
 @dataclass(frozen=True, slots=True)
@@ -82,13 +98,17 @@ class Linear:
     part: str | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Efficiency:
     """Efficiency over output current: one curve per input voltage; one entry holds at every input voltage."""
 
     input_v: tuple[float, ...]
     curves: tuple[Curve, ...]
     factor: Param = ONE
+
+    @cached_property
+    def lines(self) -> tuple[tuple[float, StraightLines], ...]:
+        return tuple((v_in, curve.held) for v_in, curve in zip(self.input_v, self.curves, strict=True))
 
 
 @dataclass(frozen=True, slots=True)

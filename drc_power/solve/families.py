@@ -14,10 +14,9 @@ from collections.abc import Iterator, Mapping, Sequence
 
 import numpy as np
 
-from ..physics.tables import interpolate_linear_slope
 from .branches import Buck, CurrentLoad, Curve, Drop, Leg, Linear, OneWay, PowerLoad, Pulsed, Resistive, Source, Switching
 from .layout import Layout
-from .variables import ZERO, values_of
+from .variables import ZERO, Param, values_of
 
 COLLAPSE_V = 0.5
 """Below this voltage a constant-current load or a quiescent current fades in proportion, so that an unpowered net rests at zero."""
@@ -25,15 +24,12 @@ COLLAPSE_V = 0.5
 LINK_OHM = 1e-9
 """The resistance of an ideal link, so that parallel links share and a loop of links has a solution."""
 
+INFINITE = Param(np.inf)
+
 Values = Mapping[str, np.ndarray]
 Residuals = list[tuple[np.ndarray, np.ndarray]]
 Entries = list[tuple[np.ndarray, np.ndarray, np.ndarray]]
 Heats = list[tuple[tuple[str | None, ...], np.ndarray, list[tuple[np.ndarray, np.ndarray]]]]
-
-
-def along(curve: Curve, x: np.ndarray, above: str = "extend") -> tuple[np.ndarray, np.ndarray]:
-    """A curve's value and slope: held below its first point, past its last as `above` says."""
-    return interpolate_linear_slope(x, curve.xs, curve.ys, above=above)
 
 
 def scale_at(scales: Sequence[Curve | None], temperature_c: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
@@ -41,7 +37,7 @@ def scale_at(scales: Sequence[Curve | None], temperature_c: np.ndarray) -> tuple
     factor, slope = np.ones_like(temperature_c), np.zeros_like(temperature_c)
     for row, scale in enumerate(scales):
         if scale is not None:
-            factor[row], slope[row] = along(scale, temperature_c[row])
+            factor[row], slope[row] = scale.extended.read(temperature_c[row])
     return factor, slope
 
 
@@ -52,20 +48,20 @@ def drop_at(drops: Sequence[Drop], p: Values, i_a: np.ndarray, t_c: np.ndarray) 
     per_amp, per_k = p["slope"].copy(), np.broadcast_to(tempco, volts.shape).copy()
     for row, drop in enumerate(drops):
         if drop.lines:
-            volts[row], per_amp[row], per_k[row] = _between_lines(drop.lines, i_a[row], t_c[row], "extend")
+            volts[row], per_amp[row], per_k[row] = _between_lines(drop.extended, i_a[row], t_c[row])
     return volts, per_amp, per_k
 
 
-def _between_lines(lines, x: np.ndarray, y: np.ndarray, above: str) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+def _between_lines(lines, x: np.ndarray, y: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """A family of curves over x, straight between the y of neighbours; outside them the nearest curve holds.
 
     Returns the value and its slopes over x and over y, each of shape (sample,).
     """
-    at = [along(curve, x, above) for _, curve in lines]
+    if len(lines) == 1:
+        return *lines[0][1].read(x), np.zeros_like(x)
+    at = [curve.read(x) for _, curve in lines]
     ys = np.array([y for y, _ in lines])
     values, slopes = np.array([v for v, _ in at]), np.array([s for _, s in at])
-    if len(lines) == 1:
-        return values[0], slopes[0], np.zeros_like(x)
     upper = np.clip(np.searchsorted(ys, y), 1, len(lines) - 1)
     lower, sample = upper - 1, np.arange(len(x))
     width = ys[upper] - ys[lower]
@@ -254,6 +250,8 @@ class Switchings(Regulators):
         outside = [b.buck or Buck() for b in self.branches]
         legs = {f"free {name}": value for name, value in _leg_numbers([b.free or Leg("") for b in outside], points).items()}
         return {**legs, "winding": values_of([b.winding_ohm for b in outside], points),
+                "henry": values_of([b.inductance_h or INFINITE for b in outside], points),
+                "hertz": values_of([b.frequency_hz or INFINITE for b in outside], points),
                 "set": values_of([b.setpoint_v for b in self.branches], points),
                 "quiescent": values_of([b.quiescent_a for b in self.branches], points),
                 "factor": values_of([b.efficiency.factor for b in self.branches], points)}
@@ -263,8 +261,7 @@ class Switchings(Regulators):
         i, v_in = np.maximum(x[self.i], 0.0), x[self.a] - x[self.g]
         eta, per_amp, per_volt = np.empty_like(i), np.empty_like(i), np.zeros_like(i)
         for row, branch in enumerate(self.branches):
-            lines = tuple(zip(branch.efficiency.input_v, branch.efficiency.curves, strict=True))
-            eta[row], per_amp[row], per_volt[row] = _between_lines(lines, i[row], v_in[row], "hold")
+            eta[row], per_amp[row], per_volt[row] = _between_lines(branch.efficiency.lines, i[row], v_in[row])
         return eta * p["factor"], per_amp * p["factor"], per_volt * p["factor"]
 
     def _loss(self, x: np.ndarray, p: Values):
@@ -318,6 +315,10 @@ class Switchings(Regulators):
             duty = np.nan_to_num((v_out + drop) / (v_in + drop), nan=1.0, posinf=1.0, neginf=0.0)
         return np.clip(duty, 0.0, 1.0), drop, per_i, per_t
 
+    def ripple(self, x: np.ndarray, p: Values, duty: np.ndarray) -> np.ndarray:
+        """Peak-to-peak current of the inductor [A], 0 where inductance or frequency is not known."""
+        return (x[self.a] - x[self.b]) * duty / (p["henry"] * p["hertz"])
+
     def heats(self, x: np.ndarray, p: Values) -> Heats:
         """The converter's loss, of which the parts outside the chip take their own; the duty's slopes are left out."""
         (parts, total, slopes), = super().heats(x, p)
@@ -326,7 +327,8 @@ class Switchings(Regulators):
         duty, drop, per_i, per_t = self.buck(x, p)
         i = np.maximum(x[self.i], 0.0)
         free, free_i, free_t = (1 - duty) * drop * i, (1 - duty) * (drop + per_i * i), (1 - duty) * per_t * i
-        coil, coil_i = p["winding"] * i * i, 2 * p["winding"] * i
+        ripple = self.ripple(x, p, duty)
+        coil, coil_i = p["winding"] * (i * i + ripple * ripple / 12.0), 2 * p["winding"] * i
         chip = [*slopes, (self.i, -free_i - coil_i), (self.t_free, -free_t)]
         return [(parts, total - free - coil, chip), (self.free_parts, free, [(self.i, free_i), (self.t_free, free_t)]),
                 (self.inductors, coil, [(self.i, coil_i)])]

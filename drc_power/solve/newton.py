@@ -37,11 +37,10 @@ class Solver:
         converged = np.zeros(prepared.n_samples, dtype=bool)
         x = x.copy()
         bound_v = VOLTAGE_ROOM * np.abs(x[self.system.nodes]).max(initial=1.0)
-        active = np.arange(prepared.n_samples)
+        active, part = np.arange(prepared.n_samples), prepared
+        before = self.system.regime(x, part)
         for iteration in range(MAX_ITERATIONS):
-            part = take(prepared, active)
             residual, entries = self.system.evaluate(x[:, active], part)
-            before = self.system.regime(x[:, active], part)
             step = self._step(before, residual, entries)
             damping = next(share for limit, share in DAMPING if iteration < limit)
             x[:-1, active] -= damping * step
@@ -50,9 +49,12 @@ class Solver:
             size = np.abs(step) / np.maximum(np.abs(x[:-1, active]), 1.0)
             done = (size.max(axis=0, initial=0.0) <= STEP_TOLERANCE) & (before == after).all(axis=0)
             converged[active[done]] = True
-            active = active[~done]
-            if not len(active):
+            before = after
+            if done.all():
                 break
+            if done.any():
+                active, before = active[~done], after[:, ~done]
+                part = take(prepared, active)
         return x, converged
 
     def _keep_in_bounds(self, x: np.ndarray, bound_v: float) -> None:

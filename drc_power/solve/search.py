@@ -1,8 +1,8 @@
 """Find the worst corner of the box for many quantities at once.
 
-By the sign of each quantity's change along each side a first corner is guessed; then sides are flipped one at a
-time, for every quantity from its own worst point, until no flip makes anything worse. Random corners and interior
-points check the result; where one is worse the flipping goes on from there. A box of few sides is searched whole.
+By the sign of each quantity's change along each side a first corner is guessed, and random corners and interior
+points are tried beside it; then sides are flipped one at a time, for every quantity from its own worst point so far,
+until no flip makes anything worse. A box of few sides is searched at every corner.
 """
 
 from __future__ import annotations
@@ -14,8 +14,9 @@ import numpy as np
 
 from .variables import Box
 
-Objectives = Callable[[np.ndarray], np.ndarray]
-"""From points of shape (sample, variable) to objectives of shape (objective, sample): the lower, the worse."""
+Objectives = Callable[[np.ndarray], tuple[np.ndarray, np.ndarray]]
+"""From points of shape (sample, variable) to two arrays of shape (objective, sample), the lower, the worse: those
+that are followed by flipping sides, and those that take the worst of what is found on the way."""
 
 WHOLE_BOX_SIDES = 7
 """A box of so many sides or fewer is searched at every corner."""
@@ -40,16 +41,13 @@ class Worst:
     influence: np.ndarray
 
 
-def worst_corners(box: Box, objectives: Objectives, flip: np.ndarray | slice = slice(None)) -> Worst:
-    """Search the box. `flip` selects the objectives that are followed by flipping sides; the rest take what is found."""
+def worst_corners(box: Box, objectives: Objectives) -> Worst:
+    """Search the box. The followed objectives come first in the result, then the others."""
     search = _Search(box, objectives)
     search.start()
     for _ in range(MAX_ROUNDS):
-        if not search.flip_sides(flip):
+        if not search.flip_sides():
             break
-    if search.n_free > WHOLE_BOX_SIDES and search.try_random():
-        while search.flip_sides(flip):
-            pass
     return search.result()
 
 
@@ -62,6 +60,7 @@ class _Search:
         self.n_free = len(self.free)
         self.points = np.empty((0, len(self.typical)))
         self.values = None
+        self.n_followed = 0
         self.seen: dict[bytes, int] = {}
 
     def evaluate(self, points: np.ndarray) -> bool:
@@ -74,13 +73,14 @@ class _Search:
                 new.append(point)
         if not new:
             return False
-        values = self.objectives(np.array(new))
+        followed, others = self.objectives(np.array(new))
+        self.n_followed, values = len(followed), np.vstack([followed, others])
         self.points = np.vstack([self.points, new])
         self.values = values if self.values is None else np.hstack([self.values, values])
         return True
 
     def start(self) -> None:
-        """The typical point, each side's ends, then the corner that each objective's signs point to."""
+        """The typical point, each side's ends, then the corner that each objective's signs point to, and random points."""
         ends = [self.typical]
         for side in self.free:
             for end in (self.low, self.high):
@@ -95,7 +95,7 @@ class _Search:
         at_low, at_high = self.values[:, index[1::2]], self.values[:, index[2::2]]
         corners = np.tile(self.typical, (self.values.shape[0], 1))
         corners[:, self.free] = np.where(at_low < at_high, self.low[self.free], self.high[self.free])
-        self.evaluate(corners)
+        self.evaluate(np.vstack([corners, self._random()]))
 
     def _all_corners(self) -> np.ndarray:
         bits = (np.arange(2**self.n_free)[:, None] >> np.arange(self.n_free)) & 1
@@ -103,13 +103,14 @@ class _Search:
         points[:, self.free] = np.where(bits == 1, self.high[self.free], self.low[self.free])
         return points
 
-    def flip_sides(self, flip) -> bool:
+    def flip_sides(self) -> bool:
         """Flip every side at every worst point; whether that made any followed objective worse."""
-        before = self.values[flip].min(axis=1)
-        worst = np.unique(self.values[flip].argmin(axis=1))
+        followed = slice(0, self.n_followed)
+        before = self.values[followed].min(axis=1)
+        worst = np.unique(self.values[followed].argmin(axis=1))
         if self.n_free:
             self.evaluate(self._neighbours(self.points[worst]))
-        after = self.values[flip].min(axis=1)
+        after = self.values[followed].min(axis=1)
         return bool((after < before - SAME * np.maximum(1.0, np.abs(before))).any())
 
     def _neighbours(self, points: np.ndarray) -> np.ndarray:
@@ -120,16 +121,13 @@ class _Search:
         out[row, side] = np.where(out[row, side] > middle, self.low[side], self.high[side])
         return out
 
-    def try_random(self) -> bool:
-        """Random corners and interior points; whether any is worse than all found so far."""
-        before = self.values.min(axis=1)
-        rng = np.random.default_rng(SEED)
-        share = rng.random((2 * N_RANDOM, self.n_free))
+    def _random(self) -> np.ndarray:
+        """Random corners and random interior points."""
+        share = np.random.default_rng(SEED).random((2 * N_RANDOM, self.n_free))
         share[:N_RANDOM] = np.round(share[:N_RANDOM])
         points = np.tile(self.typical, (len(share), 1))
         points[:, self.free] = self.low[self.free] + share * (self.high - self.low)[self.free]
-        self.evaluate(points)
-        return bool((self.values.min(axis=1) < before - SAME * np.maximum(1.0, np.abs(before))).any())
+        return points
 
     def result(self) -> Worst:
         """The worst points only, and each objective's answer to every side there as far as it was tried."""

@@ -135,11 +135,10 @@ class Solution:
         family, row = next((f, k) for f in self.system.families if isinstance(f, Switchings)
                            for k, b in enumerate(f.branches) if b.key == key)
         p = self.prepared.families[self.system.families.index(family)]
-        branch, duty = family.branches[row], family.buck(self.x, p)[0][row]
-        ripple = np.full(self.n_samples, np.nan)
-        if branch.buck.inductance_h is not None and branch.buck.frequency_hz is not None:
-            v_in, v_out = self.node_v(branch.a), self.node_v(branch.b)
-            ripple = (v_in - v_out) * duty / (self.value(branch.buck.inductance_h) * self.value(branch.buck.frequency_hz))
+        buck, duty = family.branches[row].buck, family.buck(self.x, p)[0]
+        known = buck.inductance_h is not None and buck.frequency_hz is not None
+        ripple = family.ripple(self.x, p, duty)[row] if known else np.full(self.n_samples, np.nan)
+        duty = duty[row]
         rms, peak = np.sqrt(i_out**2 + ripple**2 / 12.0), i_out + ripple / 2.0
         share = 1.0 - duty if probe.buck == "free" else np.ones(self.n_samples)
         return share * i_out, np.sqrt(share) * rms, peak

@@ -29,7 +29,7 @@ def add_stages(builder: Builder) -> None:
 
 def _is_running(builder: Builder, stage: StageNote) -> bool:
     """A stage with a blocked switch does not switch: its parts stand on their own."""
-    refs = [str(ref) for key in ("high", "low", "switch") for ref in getattr(stage, key)]
+    refs = [str(ref) for key in ("high", "low", "switch", "pair") for ref in getattr(stage, key)]
     return not any(str(builder.parts[ref].note.state) == "blocked" for ref in refs if builder.parts[ref].note.state)
 
 

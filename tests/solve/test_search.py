@@ -26,7 +26,7 @@ def box_of(n: int) -> Box:
 @given(st.integers(1, 12), st.integers(0, 2**31))
 def test_linear_functions_have_their_worst_corner_by_sign(n, seed):
     weights = np.random.default_rng(seed).normal(size=(3, n))
-    worst = worst_corners(box_of(n), lambda points: weights @ points.T)
+    worst = worst_corners(box_of(n), lambda points: (weights @ points.T, weights[:0] @ points.T))
     values = (weights @ worst.points.T)[np.arange(3), worst.at]
     assert values == pytest.approx(-np.abs(weights).sum(axis=1))
 
@@ -37,17 +37,17 @@ def test_products_change_sign_and_need_flips(n):
     def objective(points):
         return (points[:, 0::3] * points[:, 1::3]).sum(axis=1)[None] - 0.1 * points.sum(axis=1)[None]
 
-    worst = worst_corners(box_of(n), objective)
+    worst = worst_corners(box_of(n), lambda points: (objective(points), np.zeros((0, len(points)))))
     found = objective(worst.points)[0, worst.at[0]]
     corners = np.array(list(itertools.product((-1.0, 1.0), repeat=n)))
     assert found == pytest.approx(objective(corners).min())
 
 
 def test_influence_names_the_sides_that_matter():
-    worst = worst_corners(box_of(8), lambda points: points[:, [2]].T * 3.0)
+    worst = worst_corners(box_of(8), lambda points: (points[:, [2]].T * 3.0, np.zeros((0, len(points)))))
     assert np.flatnonzero(np.abs(worst.influence[0]) > 1e-9).tolist() == [2]
 
 
 def test_a_box_without_sides_is_one_point():
-    worst = worst_corners(Box(), lambda points: np.zeros((2, len(points))))
+    worst = worst_corners(Box(), lambda points: (np.zeros((1, len(points))), np.zeros((1, len(points)))))
     assert worst.points.shape == (1, 0)
