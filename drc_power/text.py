@@ -86,6 +86,16 @@ def fit(text: str, width: int) -> str:
     return shortened
 
 
+def cut(text: str, width: int) -> str:
+    """The text cut at its end to at most `width` (3 or more) columns, for text whose start matters most."""
+    if display_width(text) <= width:
+        return text
+    text = text[: 2 * width]
+    while display_width(text) > width - 1:
+        text = text[:-1]
+    return f"{text}…"
+
+
 def pad(text: str, width: int, *, right: bool = False) -> str:
     """The text filled with spaces to `width` columns; `right` aligns it to the right."""
     fill = " " * max(0, width - display_width(text))

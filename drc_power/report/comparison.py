@@ -20,7 +20,7 @@ from drc_power.report.phrases import (
     place_parts,
     subject_text,
 )
-from drc_power.text import NOT_KNOWN, display_width, fit, natural_key, pad, printable
+from drc_power.text import NOT_KNOWN, cut, display_width, fit, natural_key, pad, printable
 
 MOST_ROWS = 12
 _MOST_NAMES = 24
@@ -61,7 +61,7 @@ def comparison_table(comparison: Comparison, width: int = 100, colour: bool = Fa
         lines += ["", f"{bold[0]}{section.title}{bold[1]}", *_text_table(section, width)]
         lines += [fit(section.more, width)] if section.more else []
     changes = _board_changes(comparison).items()
-    board = [_cut(printable(f"{title}: {_listed(names)}"), width) for title, names in changes]
+    board = [cut(printable(f"{title}: {_listed(names)}"), width) for title, names in changes]
     return "\n".join([*lines, *([""] if board else []), *board]) + "\n"
 
 
@@ -216,14 +216,4 @@ def _text_table(section: Section, width: int) -> list[str]:
     rows = [[fit(printable(cell), _CELL_WIDTH) for cell in row] for row in section.rows]
     widths = [max(map(display_width, column)) for column in zip(*rows)]
     lines = ["  ".join(pad(cell, w) for cell, w in zip(row, widths)).rstrip() for row in rows]
-    return [_cut(line, width) for line in lines]
-
-
-def _cut(line: str, width: int) -> str:
-    """The line cut at its end, where the least important column stands."""
-    if display_width(line) <= width:
-        return line
-    line = line[: 2 * width]
-    while display_width(line) > width - 1:
-        line = line[:-1]
-    return f"{line}…"
+    return [cut(line, width) for line in lines]

@@ -16,9 +16,11 @@ from drc_power.report.phrases import (
     coverage_text,
     fails_run,
     found_and_allowed,
+    grouped,
     headline,
     margin_text,
     needs_action,
+    other_modes,
     place_parts,
     remarks,
     subject_text,
@@ -27,6 +29,7 @@ from drc_power.report.phrases import (
 from drc_power.text import NOT_KNOWN, natural_key, si
 
 T = TypeVar("T")
+Group = tuple[Finding, ...]
 
 LIMIT_CHARS = 60_000
 """Comments may be no longer than this on the platforms that people use."""
@@ -37,6 +40,8 @@ _TABLE_SHARE, _REASONS_SHARE, _WAIVED_SHARE = 0.4, 0.7, 0.5
 _LIST_CHARS = 4_000
 _REMARKS_CHARS = 8_000
 _FOLD_CHARS, _MORE_CHARS = 200, 80
+_CORNER_CHARS = 80
+_MOST_MODES = 8
 _MOST_STEPS = 12
 _MOST_SENSITIVITIES = 3
 
@@ -50,10 +55,10 @@ def to_markdown(result: Result, limit_chars: int = LIMIT_CHARS) -> str:
     top = [_verdict_line(result), ""]
     bottom = [*_coverage_lines(result), "", *_remark_lines(result), f"<sub>{READING_HELP}</sub>", ""]
     room = limit_chars - _size(top) - _size(bottom) - 1
-    ranked = gravest_first(needs_action(result))
-    table = _action_table(ranked, int(_TABLE_SHARE * room))
+    groups = grouped(needs_action(result))
+    table = _action_table(groups, int(_TABLE_SHARE * room))
     room -= _size(table)
-    reasons = _reasons(ranked, result, int(_REASONS_SHARE * room))
+    reasons = _reasons(groups, result, int(_REASONS_SHARE * room))
     room -= _size(reasons)
     waived = _waived(result, int(_WAIVED_SHARE * room))
     room -= _size(waived)
@@ -65,20 +70,27 @@ def _verdict_line(result: Result) -> str:
     return f"**Power check: {headline(result)}** - {tally_text(result)} - {board}"
 
 
-def _action_table(findings: Sequence[Finding], room: int) -> list[str]:
-    if not findings:
+def _action_table(groups: Sequence[Group], room: int) -> list[str]:
+    if not groups:
         return ["Nothing needs action.", ""]
     head = table_head(**{"Part": "left", "What": "left", "Found": "right", "Allowed": "right", "Margin": "right",
                          "Worst corner": "left"})
-    return [*head, *_kept(findings, _action_row, room - _size(head), "finding", "\n"), ""]
+    return [*head, *_kept(groups, _action_row, room - _size(head), "finding", "\n", weight=len), ""]
 
 
-def _action_row(finding: Finding) -> str:
+def _action_row(group: Group) -> str:
+    finding = group[0]
     found, allowed = found_and_allowed(finding)
     verdict = f"**{finding.verdict}**" if finding.verdict == "exceeded" else finding.verdict
     what = f"{verdict}: {prose(finding.quantity, 120)}"
     return table_row([code(subject_text(finding)), what, _number(found), _number(allowed),
-                      margin_text(finding.margin), _place(finding)])
+                      margin_text(finding.margin), _place(finding, _CORNER_CHARS) + _also(group)])
+
+
+def _also(group: Group) -> str:
+    modes = ", ".join(prose(mode, _CORNER_CHARS) for mode in other_modes(group)[:_MOST_MODES])
+    more = f" and {len(group) - 1 - _MOST_MODES} more modes" if len(group) - 1 > _MOST_MODES else ""
+    return f"; also in {modes}{more}" if modes else ""
 
 
 def _number(text: str) -> str:
@@ -86,19 +98,19 @@ def _number(text: str) -> str:
     return text if text == NOT_KNOWN else prose(text)
 
 
-def _place(finding: Finding) -> str:
-    return ", ".join(prose(part, 160) for part in place_parts(finding)) or NOT_KNOWN
+def _place(finding: Finding, limit: int = 160) -> str:
+    return ", ".join(prose(part, limit) for part in place_parts(finding)) or NOT_KNOWN
 
 
-def _reasons(findings: Sequence[Finding], result: Result, room: int) -> list[str]:
+def _reasons(groups: Sequence[Group], result: Result, room: int) -> list[str]:
     """Why each finding is as it is and what would help, folded."""
-    if not findings:
+    if not groups:
         return []
 
-    def entry(finding: Finding) -> str:
-        return "\n".join(_reason(finding, fails_run(finding, result)))
+    def entry(group: Group) -> str:
+        return "\n".join(_reason(group, fails_run(group[0], result)))
 
-    return folded("Why, and what would help", _kept(findings, entry, room - _FOLD_CHARS, "finding"))
+    return folded("Why, and what would help", _kept(groups, entry, room - _FOLD_CHARS, "finding", weight=len))
 
 
 def _waived(result: Result, room: int) -> list[str]:
@@ -115,9 +127,10 @@ def _waived_line(finding: Finding) -> str:
     return f"- {what}, found {found}, allowed {allowed} ({_place(finding)}): {prose(finding.text)}"
 
 
-def _reason(finding: Finding, fails: bool) -> list[str]:
+def _reason(group: Group, fails: bool) -> list[str]:
+    finding, others = group[0], group[1 : 1 + _MOST_MODES]
     title = f"- **{code(subject_text(finding))} {prose(finding.quantity, 120)}: {finding.verdict}**"
-    waiver = waiver_line(finding) if fails else ""
+    waivers = [(each, waiver_line(each)) for each in (finding, *others)] if fails else []
     lines = [
         f"{title} ({code(finding.rule)}, {_place(finding)})",
         f"  - {prose(finding.text)}" if finding.text else "",
@@ -125,9 +138,15 @@ def _reason(finding: Finding, fails: bool) -> list[str]:
         f"  - What drives it: {_drivers(finding.sensitivity)}" if finding.sensitivity else "",
         *[f"  - {_step(step)}" for step in finding.workings[:_MOST_STEPS]],
         f"  - Written in {_written_in(finding)}" if finding.file else "",
-        f"  - To waive it: {code(waiver, 200)}" if waiver else "",
+        *[f"  - Also {_place(other)}: found {_number(si(other.value, other.unit))}, margin {margin_text(other.margin)}"
+          for other in others],
+        *[f"  - To waive it{_in_mode(each)}: {code(waiver, 200)}" for each, waiver in waivers if waiver],
     ]
     return [line for line in lines if line]
+
+
+def _in_mode(finding: Finding) -> str:
+    return f" in {prose(finding.mode, _CORNER_CHARS)}" if finding.mode else ""
 
 
 def _written_in(finding: Finding) -> str:
@@ -197,10 +216,11 @@ def _remark_lines(result: Result) -> list[str]:
     return ["**Notes**", "", *_kept(notes, lambda note: f"- {prose(note)}", _REMARKS_CHARS, "note"), ""]
 
 
-def _kept(items: Sequence[T], shown: Callable[[T], str], room: int, noun: str, gap: str = "") -> list[str]:
+def _kept(items: Sequence[T], shown: Callable[[T], str], room: int, noun: str, gap: str = "",
+          weight: Callable[[T], int] = lambda item: 1) -> list[str]:
     """As many items as fit in `room` characters, then how many more there are; `gap` ends a table first."""
     entries = _fitting(items, shown, room - _MORE_CHARS, separator=1)
-    left = len(items) - len(entries)
+    left = sum(map(weight, items[len(entries) :]))
     return [*entries, f"{gap}and {left} more {noun}{'s' if left > 1 else ''}, see the JSON"] if left else entries
 
 

@@ -3,7 +3,10 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Iterable, Sequence
+
 from drc_power.findings.model import VERDICTS, Coverage, Finding, Result
+from drc_power.findings.order import gravest_first
 from drc_power.findings.verdict import overall_verdict, tally
 from drc_power.text import NOT_KNOWN, si_apart
 
@@ -43,6 +46,27 @@ def board_text(result: Result) -> str:
 def needs_action(result: Result) -> list[Finding]:
     """The findings that ask something of the reader, in the order they were found."""
     return [finding for finding in result.findings if finding.verdict in NEEDS_ACTION]
+
+
+def grouped(findings: Iterable[Finding]) -> list[tuple[Finding, ...]]:
+    """Findings that differ only in their mode together, the worst of each group first; groups the gravest first."""
+    groups: dict[object, list[Finding]] = {}
+    for finding in gravest_first(findings):
+        groups.setdefault(_matter(finding), []).append(finding)
+    return [tuple(group) for group in groups.values()]
+
+
+def _matter(finding: Finding) -> object:
+    """What a finding says apart from its mode; a finding without mode or subject stays by itself."""
+    if not finding.mode or not (finding.ref or finding.net):
+        return finding.id
+    return (finding.verdict, finding.ref, finding.uuid, finding.net, finding.rule, finding.stress, finding.event,
+            finding.quantity)
+
+
+def other_modes(group: Sequence[Finding]) -> list[str]:
+    """The modes of a group besides that of its worst finding."""
+    return [finding.mode for finding in group[1:] if finding.mode]
 
 
 def fails_run(finding: Finding, result: Result) -> bool:
@@ -85,16 +109,17 @@ def _direction(finding: Finding) -> int:
 
 
 def margin_text(margin: float | None) -> str:
-    """The margin in percent with one decimal, more where it would read as zero and is not.
+    """The margin in percent with one decimal; more where it would read as zero and is not, none past 1000 %.
 
-    >>> margin_text(-0.1389), margin_text(-0.00002), margin_text(None)
-    ('-13.9 %', '-0.002 %', '-')
+    >>> margin_text(-0.1389), margin_text(-0.00002), margin_text(-569.322), margin_text(None)
+    ('-13.9 %', '-0.002 %', '-56932 %', '-')
     """
     if margin is None or not math.isfinite(margin):
         return NOT_KNOWN
     percent = 100.0 * margin
-    rounds_to_zero = abs(percent) < 0.05 and percent
-    return f"{percent:.1g} %" if rounds_to_zero else f"{percent + 0.0:.1f} %"
+    if percent and abs(percent) < 0.05:
+        return f"{percent:.1g} %"
+    return f"{percent + 0.0:.{0 if abs(percent) >= 1000.0 else 1}f} %"
 
 
 def coverage_text(coverage: Coverage) -> str:

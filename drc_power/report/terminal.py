@@ -6,7 +6,6 @@ import textwrap
 from collections.abc import Sequence
 
 from drc_power.findings.model import Finding, Result
-from drc_power.findings.order import gravest_first
 from drc_power.findings.verdict import tally
 from drc_power.findings.waiving import waiver_line
 from drc_power.report.phrases import (
@@ -14,16 +13,18 @@ from drc_power.report.phrases import (
     coverage_text,
     fails_run,
     found_and_allowed,
+    grouped,
     headline,
     margin_text,
     needs_action,
+    other_modes,
     place_parts,
     remarks,
     subject_text,
 )
-from drc_power.text import display_width, fit, natural_key, pad, printable
+from drc_power.text import cut, display_width, fit, natural_key, pad, printable
 
-MOST_FINDINGS = 40
+MOST_ROWS = 40
 MOST_WAIVER_LINES = 3
 _MOST_NAMES = 12
 _MOST_REASON_LINES = 2
@@ -38,18 +39,19 @@ _COLOURS = {"exceeded": "1;31", "unproven": "35", "close": "33", "waived": "36",
 def to_table(result: Result, width: int = 100, colour: bool = False) -> str:
     """The result as text of at most `width` columns (60 at least; a line to paste stays whole), a newline at the end.
 
-    What needs action comes first, the gravest on top, each with its reason on a second line; then how many findings
-    have each verdict, the coverage and the notes. Colour is only added where asked for, and no meaning rests on it.
+    What needs action comes first, the gravest on top, one row for all modes of the same matter, and below it the worst
+    corner or, where nothing could be judged, the reason; then how many findings have each verdict, the coverage and
+    the notes. Colour is only added where asked for, and no meaning rests on it.
     """
     width = max(width, _NARROWEST)
     paint = _Paint(colour)
-    ranked = gravest_first(needs_action(result))
+    groups = grouped(needs_action(result))
     blocks = [
         _title(result, width, paint),
-        _table(ranked[:MOST_FINDINGS], width, paint),
-        _more(len(ranked) - MOST_FINDINGS),
+        _table(groups[:MOST_ROWS], width, paint),
+        _more(sum(map(len, groups[MOST_ROWS:]))),
         _summary(result, width, paint),
-        _waiver_lines([finding for finding in ranked if fails_run(finding, result)], paint),
+        _waiver_lines([finding for group in groups for finding in group if fails_run(finding, result)], paint),
     ]
     return "\n\n".join("\n".join(block) for block in blocks if block) + "\n"
 
@@ -72,16 +74,17 @@ def _title(result: Result, width: int, paint: _Paint) -> list[str]:
     return [board + gap + paint(gravest, verdict), paint("dim", "─" * width)]
 
 
-def _table(findings: Sequence[Finding], width: int, paint: _Paint) -> list[str]:
-    rows = [_cells(finding) for finding in findings]
+def _table(groups: Sequence[Sequence[Finding]], width: int, paint: _Paint) -> list[str]:
+    rows = [_cells(group[0]) for group in groups]
     widths = _column_widths(rows, width)
     lines = []
-    for finding, cells in zip(findings, rows):
+    for group, cells in zip(groups, rows):
         part, what, *numbers = (fit(cell, limit) for cell, limit in zip(cells, widths))
         texts = [pad(part, widths[0]), pad(what, widths[1])]
         texts += [pad(number, limit, right=True) for number, limit in zip(numbers, widths[2:])]
-        lines.append(paint(finding.verdict, pad(finding.verdict, 8)) + _GAP + _GAP.join(texts).rstrip())
-        lines += [paint("dim", _INDENT + line) for line in _reason_lines(finding, width - len(_INDENT))]
+        verdict = group[0].verdict
+        lines.append(paint(verdict, pad(verdict, 8)) + _GAP + _GAP.join(texts).rstrip())
+        lines += [paint("dim", _INDENT + line) for line in _lines_below(group, width - len(_INDENT))]
     return lines
 
 
@@ -101,11 +104,15 @@ def _column_widths(rows: Sequence[Sequence[str]], width: int) -> list[int]:
     return widths
 
 
-def _reason_lines(finding: Finding, width: int) -> list[str]:
-    """Where it happens and why, on two lines at most."""
-    place = ", ".join(place_parts(finding))
-    reason = f"{place}: {finding.text}" if place and finding.text else place or finding.text
-    return _wrapped(reason, width, _MOST_REASON_LINES)
+def _lines_below(group: Sequence[Finding], width: int) -> list[str]:
+    """Where it is worst; for what could not be judged, why, on two lines at most."""
+    worst = group[0]
+    if worst.text and (worst.verdict == "unproven" or worst.value is None):
+        return _wrapped(worst.text, width, _MOST_REASON_LINES)
+    also = f"; also in {', '.join(other_modes(group))}" if len(group) > 1 else ""
+    also = fit(printable(also), width // 2)
+    place = cut(printable(", ".join(place_parts(worst))), width - display_width(also))
+    return [place + also] if place + also else []
 
 
 def _more(n_left: int) -> list[str]:

@@ -75,6 +75,24 @@ def test_the_verdict_comes_first_and_the_gravest_finding_on_top(example):
     assert [re.match(r"\| `(\w+)`", line)[1] for line in lines[4:7]] == ["Q3", "Q2", "R12"]
 
 
+def test_modes_of_one_matter_share_a_row_and_each_has_its_line_to_waive_it(make_result, make_finding):
+    hot = [make_finding(mode=mode, verdict="exceeded", value=value, margin=(150.0 - value) / 95.0)
+           for mode, value in (("run", 160.0), ("gale", 170.0), ("idle", 155.0))]
+    apart = [make_finding(mode="off", verdict="close", margin=0.05),
+             make_finding(ref="Q4", uuid="/q4", verdict="close")]
+    text = to_markdown(make_result(*hot, *apart))
+    row = re.compile(r"^\| `(Q\d)` \| (?:\*\*)?(\w+)\S* .* \| (\w+), .*?((?:; also in .*)?) \|$", re.MULTILINE)
+    assert row.findall(text) == [
+        ("Q3", "exceeded", "gale", "; also in run, idle"), ("Q3", "close", "off", ""), ("Q4", "close", "run", "")]
+    assert all(f"{{finding: {finding.id}, " in text for finding in hot)
+    assert text.startswith("**Power check: limits exceeded** - 3 exceeded")
+
+
+def test_findings_about_no_part_or_net_are_never_taken_for_one(make_result, make_finding):
+    fins = [make_finding(id=name, ref=None, uuid="", rule="sink.steady", verdict="exceeded", margin=-0.1) for name in "ab"]
+    assert to_markdown(make_result(*fins)).count("| `board` | **exceeded**") == 2
+
+
 def test_a_board_without_findings_is_not_called_safe(make_result):
     text = to_markdown(make_result(coverage=Coverage(0, 0, (), (), ())))
     assert text.startswith("**Power check: nothing was judged**")

@@ -56,6 +56,18 @@ def test_a_hundred_findings_are_cut_with_a_count(make_result, make_finding):
     assert text.count("- {finding: ") == 3
 
 
+def test_modes_of_one_matter_share_a_row(make_result, make_finding):
+    modes = [make_finding(mode=f"m{i}", verdict="exceeded", margin=-0.1 - 0.01 * i) for i in range(4)]
+    text = to_table(make_result(*modes))
+    assert text.count("exceeded  Q3") == 1
+    assert "m3, ambient 55 °C, +24V 29 V; also in m2, m1, m0" in text
+    assert "4 exceeded" in text
+
+
+def test_what_could_not_be_judged_says_why(example):
+    assert "Nothing says how Q2 gets rid of its heat" in to_table(example)
+
+
 def test_close_findings_get_a_line_to_paste_only_where_they_fail_the_run(make_result, make_finding):
     close = make_finding(verdict="close", margin=0.02)
     assert "- {finding: " not in to_table(make_result(close))
