@@ -11,7 +11,7 @@ from drc_power.netlist.clauses import contradiction, is_set, only_value, plain, 
 from drc_power.netlist.model import Part
 from drc_power.netlist.natural import natural_key
 from drc_power.netlist.sexpr import Clause
-from drc_power.netlist.source import Source, shown
+from drc_power.netlist.source import Source, printable, shown
 from drc_power.netlist.symbols import Jumpers, Symbol, Symbols, read_jumpers
 
 _ANNOTATE = "annotate the schematic and export the netlist again"
@@ -126,7 +126,7 @@ def _fields(source: Source, ref: str, comp: Clause, properties: Mapping[str, str
 
 def _put(source: Source, ref: str, known: dict[str, str], clause: Clause, name: str, value: str) -> None:
     if known.setdefault(name, value) != value:
-        raise contradiction(source, clause, f"{ref}'s field {shown(name)}", known[name], value)
+        raise contradiction(source, clause, f"{printable(ref)}'s field {shown(name)}", known[name], value)
 
 
 def _uuids(comp: Clause) -> tuple[str, ...]:

@@ -18,7 +18,7 @@ from drc_power.netlist.clauses import plain
 from drc_power.netlist.model import Netlist, Part
 from drc_power.netlist.natural import natural_key
 from drc_power.netlist.sexpr import unescape
-from drc_power.netlist.source import Source, read_source, shown
+from drc_power.netlist.source import Source, printable, read_source, shown
 
 _REPORT = "one of the two readers is wrong: please report it with the netlist"
 _UNREAD = "it reads what KiCad 4 to 9 write: check without the second reader, or export with one of these"
@@ -48,7 +48,7 @@ def _read_again(source: Source, tool: str) -> Any:
         try:
             return kinparse.parse_netlist(io.StringIO(source.text))
         except Exception as error:  # whatever it raises, it has not read the file
-            written_by = f", which {tool} wrote" if tool else ""
+            written_by = f", which {printable(tool)} wrote" if tool else ""
             found = f"the second reader cannot read this netlist{written_by} ({type(error).__name__})"
             raise InputError(Fault(Mark(source.path), found, _UNREAD)) from None
 
@@ -63,7 +63,7 @@ def _part_differences(netlist: Netlist, second: Any) -> Iterator[Difference]:
             continue
         for what, here, there in _values(part, theirs[ref]):
             if _blanks(here) not in there:
-                yield part.line, f"{what} of {ref} is {shown(here)} here and {_listed(there)} there"
+                yield part.line, f"{what} of {printable(ref)} is {shown(here)} here and {_listed(there)} there"
 
 
 def _values(part: Part, theirs: Any) -> Iterator[tuple[str, str, list[str]]]:
@@ -94,7 +94,7 @@ def _net_differences(netlist: Netlist, second: Any) -> Iterator[Difference]:
         here = {(node.ref, node.pin) for node in net.nodes}
         for ref, pin in sorted(here ^ joined[name]):
             where = "here only" if (ref, pin) in here else "there only"
-            yield net.line, f"pin {pin} of {ref} is on net {shown(name)} {where}"
+            yield net.line, f"pin {printable(pin)} of {printable(ref)} is on net {shown(name)} {where}"
 
 
 def _listed(texts: list[str]) -> str:

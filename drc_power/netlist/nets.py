@@ -14,7 +14,7 @@ from drc_power.netlist.joins import JoinedNames
 from drc_power.netlist.model import Net, Node
 from drc_power.netlist.natural import natural_key
 from drc_power.netlist.sexpr import Clause
-from drc_power.netlist.source import Source, shown
+from drc_power.netlist.source import Source, printable, shown
 
 MAX_FAULTS = 20
 """As many faults as a reader of them can use; a damaged file may hold thousands."""
@@ -101,7 +101,8 @@ def connections_of_parts(
 def _unknown_part(source: Source, connection: Connection, components: Mapping[str, Component]) -> Fault:
     found = f"net {shown(connection.net)} names part {shown(connection.ref)}, which is not in the netlist"
     near = get_close_matches(connection.ref, components, n=1)
-    return source.fault(connection.at, found, f"did you mean {near[0]}?" if near else "export the netlist again")
+    instead = f"did you mean {printable(near[0])}?" if near else "export the netlist again"
+    return source.fault(connection.at, found, instead)
 
 
 def joined_names(source: Source, connections: Connections, components: Mapping[str, Component]) -> JoinedNames:
@@ -123,7 +124,8 @@ def _torn_pins(source: Source, connections: Connections, names: JoinedNames) -> 
         for pin, (first, *others) in pins.items():
             for other in others:
                 if names.spokesman(other.net) != names.spokesman(first.net):
-                    found = f"pin {pin} of {ref} is on two nets, {shown(first.net)} and {shown(other.net)}"
+                    where = f"two nets, {shown(first.net)} and {shown(other.net)}"
+                    found = f"pin {printable(pin)} of {printable(ref)} is on {where}"
                     yield source.fault(other.at, found, "connect it to one of them and export again")
 
 

@@ -14,7 +14,7 @@ from contextlib import contextmanager
 from itertools import islice
 
 from drc_power.faults import InputError
-from drc_power.netlist.source import Source, shown
+from drc_power.netlist.source import Source, printable, shown
 
 MAX_DEPTH = 200
 """A netlist nests to depth 8; a file nested deeper than this is damaged or hostile."""
@@ -145,7 +145,7 @@ def _check_end(source: Source, root: Clause, current: Clause, end: int) -> None:
         raise _damaged(source, rest.start(), f"more than {MAX_TOKENS} words and parentheses")
     if current is not root:
         line = source.line(current.at)
-        found = f"the file ends inside the clause ({current.name} that opens at line {line}"
+        found = f"the file ends inside the clause ({printable(current.name)} ...) of line {line}"
         raise InputError(source.fault(len(source.text), found, "it is cut short: export it again"))
     if len(root.clauses) > 1:
         raise _damaged(source, root.clauses[1].at, "a second clause after the end of the first")

@@ -46,15 +46,19 @@ class Source:
         return Fault(self.mark(offset), found, instead)
 
 
+def printable(text: str) -> str:
+    """Text of a file as a message may hold it: on one line, without control characters, not too long."""
+    cut = text if len(text) <= _SHOWN_CHARS else text[: _SHOWN_CHARS - 1] + "…"
+    return "".join(c if c.isprintable() else c.encode("unicode_escape").decode("ascii") for c in cut)
+
+
 def shown(text: str) -> str:
-    """Text of a file as a message may quote it: on one line, printable, not too long.
+    """Text of a file as a message quotes it.
 
     >>> print(shown('10k\\n5 %'))
     "10k\\n5 %"
     """
-    cut = text if len(text) <= _SHOWN_CHARS else text[: _SHOWN_CHARS - 1] + "…"
-    safe = (c if c.isprintable() else c.encode("unicode_escape").decode("ascii") for c in cut)
-    return f'"{"".join(safe)}"'
+    return f'"{printable(text)}"'
 
 
 def read_source(path: str | os.PathLike[str]) -> Source:

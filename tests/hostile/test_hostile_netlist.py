@@ -125,7 +125,7 @@ MB = 2**20
     ids=lambda text: text[:6].replace("\n", " "),
 )
 def test_megabytes_of_one_thing_end_soon(path, text):
-    """Each of these would take hours if any step were quadratic in the length of the text."""
+    """Each of these would take very long if any step were quadratic in the length of the text."""
     assert not isinstance(outcome(path, inside(text)), Netlist)
 
 

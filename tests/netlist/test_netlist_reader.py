@@ -220,7 +220,8 @@ class TestJumpers:
         assert list(netlist.nets) == ["A"] and netlist.nets["A"].aliases == ("B",)
 
     def test_groups_in_the_symbol(self):
-        netlist = netlist_of(PART.format(jumpers=""), net("A", "U1.1") + net("B", "U1.3"), SYMBOL.format(jumpers=GROUPS))
+        nets = net("A", "U1.1") + net("B", "U1.3")
+        netlist = netlist_of(PART.format(jumpers=""), nets, SYMBOL.format(jumpers=GROUPS))
         assert list(netlist.nets) == ["A"]
 
     def test_joins_go_on_from_part_to_part(self):
@@ -290,11 +291,23 @@ class TestFaults:
                 net("GND", "R1.1") + "\n" + net("GND", "R1.2"),
                 'board.net:5:1: net "GND" is written twice with different pins, first at line 4; export',
             ),
-            ('(comp (ref "R1"))', '(net (name "A") (node (ref "R1")))', 'board.net:4:23: net "A" lists a node without a pin'),
-            ('(comp (ref "R1"))', '(net (name "A") (node (pin "1")))', 'board.net:4:23: net "A" lists a node without a part'),
-            ('(comp (ref "R1"))', '(net (node (ref "R1") (pin "1")))', "board.net:4:7: a net without a name; export"),
+            (
+                '(comp (ref "R1"))',
+                '(net (name "A") (node (ref "R1")))',
+                'board.net:4:23: net "A" lists a node without a pin',
+            ),
+            (
+                '(comp (ref "R1"))',
+                '(net (name "A") (node (pin "1")))',
+                'board.net:4:23: net "A" lists a node without a part',
+            ),
+            (
+                '(comp (ref "R1"))',
+                '(net (node (ref "R1") (pin "1")))',
+                "board.net:4:7: a net without a name; export",
+            ),
         ],
-    )  # fmt: skip
+    )
     def test_what_is_wrong_and_where(self, components, nets, fault):
         (found,) = faults_of(components, nets)
         assert found.startswith(fault)
@@ -306,8 +319,11 @@ class TestFaults:
         assert 'names part "X19"' in faults[-1]
 
     def test_text_of_the_file_is_quoted_on_one_line(self):
-        (fault,) = faults_of(r'(comp (ref "R1") (value "a\n\x1b[31m")) (comp (ref "R1") (value "' + "b" * 99 + '") (value "c"))')
-        assert "\n" not in fault and "\x1b" not in fault and "bbb…" in fault
+        long = "b" * 99
+        (fault,) = faults_of(rf'(comp (ref "R\n1") (value "a\x1b[31m{long}") (fields (field (name "V") "1"))'
+                             rf' (fields (field (name "V") "a\x1b[31m{long}")))')
+        assert "\n" not in fault and "\x1b" not in fault
+        assert r'field "V" is written twice, as "1" and as "a\x1b[31mbbb' in fault and "bbb…" in fault
 
     @pytest.mark.parametrize("section", ["components", "nets"])
     def test_a_section_that_is_missing(self, section):
@@ -327,7 +343,7 @@ class TestNotANetlist:
             ('(footprint "R"', "a KiCad footprint"),
             ('<?xml version="1.0"?>\n<export version="E">', "an XML file"),
             ("EESchema Schematic File Version 4", "a schematic of KiCad 5 or older"),
-            ("# EESchema Netlist Version 1.1 created  Mon\n(\n ( /4B", "a netlist in the format of KiCad before version 4"),
+            ("# EESchema Netlist Version 1.1\n(\n ( /4B", "a netlist in the format of KiCad before version 4"),
             ("( { EESchema Netlist Version 1.1 }", "a netlist in the format of KiCad before version 4"),
             (".title KiCad schematic", "a SPICE netlist"),
             ('{"board": 1}', "a JSON file"),

@@ -102,8 +102,8 @@ def test_what_is_written_is_read_back(tree):
 @pytest.mark.parametrize(
     "text, where, found",
     [
-        ("(x (a 1)", "a.net:1:9", "the file ends inside the clause (x that opens at line 1"),
-        ("(x\n (y (a 1)", "a.net:2:10", "the file ends inside the clause (y that opens at line 2"),
+        ("(x (a 1)", "a.net:1:9", "the file ends inside the clause (x ...) of line 1"),
+        ("(x\n (y (a 1)", "a.net:2:10", "the file ends inside the clause (y ...) of line 2"),
         ("(x (a 1)))", "a.net:1:10", "a closing parenthesis too many"),
         ("(x (a 1))\n(y (b 2))", "a.net:2:1", "a second clause after the end of the first"),
         ("(x (a 1)) y", "a.net:1:1", "text around the one clause"),

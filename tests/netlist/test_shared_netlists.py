@@ -5,7 +5,7 @@ from pathlib import Path
 
 import pytest
 
-from drc_power.netlist import read_netlist
+from drc_power.netlist import natural_key, read_netlist
 from drc_power.netlist.confirm import confirm_netlist
 
 FOLDER = Path(__file__).parents[3] / "shared" / "netlists"
@@ -22,7 +22,7 @@ def path(request):
 def test_as_many_parts_nets_and_nodes_as_the_text_has(path):
     text = path.read_text(encoding="utf-8")
     netlist = read_netlist(path)
-    assert list(netlist.parts) == sorted(netlist.parts, key=list(netlist.parts).index)
+    assert list(netlist.parts) == sorted(netlist.parts, key=natural_key)
     assert set(netlist.parts) == set(re.findall(r'\(comp \(ref "([^"]+)"\)', text))
     assert set(netlist.nets) == set(re.findall(r'\(net \(code "\d+"\) \(name "([^"]+)"\)', text))
     nodes = re.findall(r'\(node \(ref "([^"]+)"\) \(pin "([^"]+)"\)', text)
