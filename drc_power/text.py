@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import math
 import re
+import textwrap
 from decimal import Decimal
 
 _C0 = r"\x00-\x1f"
@@ -94,6 +95,12 @@ def cut(text: str, width: int) -> str:
     while display_width(text) > width - 1:
         text = text[:-1]
     return f"{text}…"
+
+
+def wrapped(text: str, width: int, most_lines: int) -> list[str]:
+    """The text made printable, on at most `most_lines` lines of at most `width` (5 or more) columns."""
+    shown = printable(text)[: 2 * most_lines * width]
+    return [fit(line, width) for line in textwrap.wrap(shown, width, max_lines=most_lines, placeholder=" …")]
 
 
 def pad(text: str, width: int, *, right: bool = False) -> str:

@@ -10,23 +10,25 @@ from dataclasses import dataclass
 
 from drc_power.findings.compare import Comparison, Pair, Row, RowChanges, Standing
 from drc_power.findings.model import Finding
-from drc_power.findings.order import gravest_first, gravity_key
 from drc_power.report.markdown_text import code, folded, prose, table_head, table_row
 from drc_power.report.phrases import (
     HEADLINES,
     NEEDS_ACTION,
     found_and_allowed,
+    grouped,
     margin_text,
+    other_modes,
     place_parts,
     subject_text,
 )
-from drc_power.text import NOT_KNOWN, cut, display_width, fit, natural_key, pad, printable
+from drc_power.text import NOT_KNOWN, cut, display_width, fit, natural_key, pad, printable, wrapped
 
 MOST_ROWS = 12
 _MOST_NAMES = 24
 _NARROWEST = 60
 _CELL_WIDTH = 44
-_NAME_CHARS = 80
+_NAME_CHARS, _CORNER_CHARS = 80, 80
+_MOST_CHANGE_LINES = 4
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,8 +63,10 @@ def comparison_table(comparison: Comparison, width: int = 100, colour: bool = Fa
         lines += ["", f"{bold[0]}{section.title}{bold[1]}", *_text_table(section, width)]
         lines += [fit(section.more, width)] if section.more else []
     changes = _board_changes(comparison).items()
-    board = [cut(printable(f"{title}: {_listed(names)}"), width) for title, names in changes]
-    return "\n".join([*lines, *([""] if board else []), *board]) + "\n"
+    lines += [""] if changes else []
+    for title, names in changes:
+        lines += wrapped(f"{title}: {_listed(names)}", width, _MOST_CHANGE_LINES)
+    return "\n".join(lines) + "\n"
 
 
 def _direction(comparison: Comparison) -> str:
@@ -102,18 +106,20 @@ def _sections(comparison: Comparison) -> list[Section]:
 
 def _pairs_section(title: str, pairs: Iterable[Pair], side: str, open: bool = True) -> Section:
     """Findings on both sides; those that need no action on the given side are only counted."""
-    pairs = tuple(pairs)
-    shown = [pair for pair in pairs if getattr(pair, side)["verdict"] in NEEDS_ACTION]
-    shown.sort(key=lambda pair: gravity_key(as_finding(getattr(pair, side))))
-    rows = [_pair_row(as_finding(pair.base), as_finding(pair.head)) for pair in shown]
-    return _section(title, _FINDING_COLUMNS, rows, len(pairs) - len(shown), open)
+    both = [(as_finding(pair.base), as_finding(pair.head)) for pair in pairs]
+    deciding = 0 if side == "base" else 1
+    partners = {id(pair[deciding]): pair for pair in both}
+    shown = [pair[deciding] for pair in both if pair[deciding].verdict in NEEDS_ACTION]
+    rows = [_pair_row(*partners[id(group[0])], other_modes(group)) for group in grouped(shown)]
+    return _section(title, _FINDING_COLUMNS, rows, len(both) - len(shown), open)
 
 
 def _rows_section(title: str, findings: Iterable[Row], open: bool = True) -> Section:
     """Findings on one side; those that need no action are only counted."""
     findings = [as_finding(row) for row in findings]
-    shown = gravest_first(finding for finding in findings if finding.verdict in NEEDS_ACTION)
-    return _section(title, _FINDING_COLUMNS, [_row(f) for f in shown], len(findings) - len(shown), open)
+    shown = [finding for finding in findings if finding.verdict in NEEDS_ACTION]
+    rows = [_row(group[0], other_modes(group)) for group in grouped(shown)]
+    return _section(title, _FINDING_COLUMNS, rows, len(findings) - len(shown), open)
 
 
 def _standings_section(title: str, standings: Iterable[Standing], open: bool = True) -> Section:
@@ -127,7 +133,8 @@ def _section(title: str, columns: Sequence[str], rows: Sequence[tuple[str, ...]]
     n_cut = max(0, len(rows) - MOST_ROWS)
     more = [f"{n_cut} more in the JSON"] if n_cut else []
     more += [f"{n_quiet} that need{'s' if n_quiet == 1 else ''} no action"] if n_quiet else []
-    return Section(title, tuple(columns), tuple(rows[:MOST_ROWS]), f"and {' and '.join(more)}" if more else "", open)
+    listed = tuple(rows[:MOST_ROWS])
+    return Section(title, tuple(columns), listed, f"and {' and '.join(more)}" if more else "", open and bool(rows))
 
 
 def as_finding(row: Row) -> Finding:
@@ -137,14 +144,15 @@ def as_finding(row: Row) -> Finding:
     return Finding(sheet=None, rated=None, remedy="", **{name: row[name] for name in names})
 
 
-def _row(finding: Finding) -> tuple[str, ...]:
+def _row(finding: Finding, also: Sequence[str] = ()) -> tuple[str, ...]:
+    place = cut(", ".join(place_parts(finding)), _CORNER_CHARS) + (f"; also in {', '.join(also)}" if also else "")
     return (subject_text(finding), finding.quantity, finding.verdict, *found_and_allowed(finding),
-            margin_text(finding.margin), ", ".join(place_parts(finding)))
+            margin_text(finding.margin), place)
 
 
-def _pair_row(base: Finding, head: Finding) -> tuple[str, ...]:
+def _pair_row(base: Finding, head: Finding, also: Sequence[str] = ()) -> tuple[str, ...]:
     """The row of head, with what it was before where that differs. The limit shown is head's."""
-    before, now = _row(base), _row(head)
+    before, now = _row(base), _row(head, also)
     part, what, _, _, allowed, _, place = now
     verdict, found, margin = (_arrow(before[i], now[i]) for i in (2, 3, 5))
     return part, what, verdict, found, allowed, margin, place

@@ -56,15 +56,20 @@ def prose(text: str, limit: int = SENTENCE_LIMIT) -> str:
         if length > limit + 1:
             words.append("…")
             break
-        words.append(_word(printable(word)))
+        words.append(_word(printable(word)) if words else _first_word(printable(word)))
     return " ".join(words)
+
+
+def _first_word(word: str) -> str:
+    """A word where a line may start, and a dash or a number with a point would open a list."""
+    if _LOOKS_LIKE_BLOCK.fullmatch(word):
+        return "".join(f"\\{c}" if c in string.punctuation else c for c in word)
+    return _word(word)
 
 
 def _word(word: str) -> str:
     if word in _LONE:
         return _LONE[word]
-    if _LOOKS_LIKE_BLOCK.fullmatch(word):
-        return "".join(f"\\{c}" if c in string.punctuation else c for c in word)
     if not _RISKY.search(word):
         return word
     core, stop = _CORE_AND_STOP.fullmatch(word).groups()

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import textwrap
 from collections.abc import Sequence
 
 from drc_power.findings.model import Finding, Result
@@ -22,12 +21,12 @@ from drc_power.report.phrases import (
     remarks,
     subject_text,
 )
-from drc_power.text import cut, display_width, fit, natural_key, pad, printable
+from drc_power.text import cut, display_width, fit, natural_key, pad, printable, wrapped
 
 MOST_ROWS = 40
 MOST_WAIVER_LINES = 3
 _MOST_NAMES = 12
-_MOST_REASON_LINES = 2
+_MOST_REASON_LINES, _MOST_NOTE_LINES = 2, 4
 _NARROWEST = 60
 _INDENT = " " * 10
 _GAP = "  "
@@ -108,7 +107,7 @@ def _lines_below(group: Sequence[Finding], width: int) -> list[str]:
     """Where it is worst; for what could not be judged, why, on two lines at most."""
     worst = group[0]
     if worst.text and (worst.verdict == "unproven" or worst.value is None):
-        return _wrapped(worst.text, width, _MOST_REASON_LINES)
+        return wrapped(worst.text, width, _MOST_REASON_LINES)
     also = f"; also in {', '.join(other_modes(group))}" if len(group) > 1 else ""
     also = fit(printable(also), width // 2)
     place = cut(printable(", ".join(place_parts(worst))), width - display_width(also))
@@ -123,7 +122,7 @@ def _summary(result: Result, width: int, paint: _Paint) -> list[str]:
     counts = tally(result.findings).items()
     verdicts = "   ".join(paint(name if count else "dim", f"{count} {name}") for name, count in counts)
     sentences = [_coverage(result), *remarks(result)]
-    return [verdicts, *[line for sentence in sentences for line in _wrapped(sentence, width)]]
+    return [verdicts, *[line for sentence in sentences for line in wrapped(sentence, width, _MOST_NOTE_LINES)]]
 
 
 def _coverage(result: Result) -> str:
@@ -141,11 +140,6 @@ def _listed(refs: Sequence[str]) -> str:
     shown = [fit(printable(ref), _PART_WIDTH) for ref in sorted(refs, key=natural_key)[:_MOST_NAMES]]
     more = [f"and {len(refs) - len(shown)} more"] if len(refs) > len(shown) else []
     return ", ".join([*shown, *more])
-
-
-def _wrapped(text: str, width: int, most_lines: int = 4) -> list[str]:
-    lines = textwrap.wrap(printable(text)[: 2 * most_lines * width], width, max_lines=most_lines, placeholder=" …")
-    return [fit(line, width) for line in lines]
 
 
 def _waiver_lines(findings: Sequence[Finding], paint: _Paint) -> list[str]:

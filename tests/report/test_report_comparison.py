@@ -106,6 +106,15 @@ def test_a_revision_as_text_says_the_same(example, revised):
     assert all(display_width(line) <= 60 for line in comparison_table(found, 60).splitlines())
 
 
+def test_modes_of_one_matter_share_a_row(make_result, make_finding):
+    base = make_result(*[make_finding(mode=m) for m in ("run", "gale", "idle")])
+    head = make_result(*[make_finding(mode=m, verdict="exceeded", margin=-x) for m, x in (("run", 0.1), ("gale", 0.3))],
+                       make_finding(mode="idle", verdict="close", margin=0.01))
+    rows = [line for line in comparison_markdown(_compare(base, head)).splitlines() if line.startswith("| `Q3`")]
+    assert [re.search(r"met → \w+", row)[0] for row in rows] == ["met → exceeded", "met → close"]
+    assert rows[0].endswith("| gale, ambient 55 °C, +24V 29 V; also in run |")
+
+
 def test_the_way_back_is_better_where_nothing_new_needs_action(example, make_finding, make_result):
     bad = make_result(make_finding(verdict="exceeded", margin=-0.1))
     good = make_result(make_finding(verdict="met", margin=0.4))
