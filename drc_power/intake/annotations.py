@@ -16,6 +16,8 @@ from .record import shorten
 from .suggest import nearest
 from .values import SourceFile, Text
 
+MOST_MODES = 200
+
 __all__ = ["Annotations", "ModeView", "lay_file_over_fields", "part_note_from_fields", "read_annotations"]
 
 
@@ -84,6 +86,9 @@ def annotations_from(data: bytes, name: str, file: SourceFile) -> Annotations:
 
 
 def _faults_between(notes: Annotations) -> Iterator[Fault]:
+    if len(notes.modes) > MOST_MODES:
+        yield Fault(notes.source_of("modes"), f"{len(notes.modes)} modes", f"{MOST_MODES} are the most that are read")
+        return
     yield from _unknown_names(notes)
     yield from _faults_of_modes(notes)
 

@@ -19,7 +19,6 @@ from .fields import (
 )
 from .files import inside, read_file
 from .record import Record, complaint, shorten, together, unknown_keys
-from .suggest import nearest
 from .tree import Branch, Row
 from .values import Quantity, SourceFile, Table, Text
 
@@ -304,7 +303,7 @@ def _foreign_keys(branch: Branch, kind: Kind) -> Iterator[PydanticCustomError]:
         if section in top and isinstance(branch.get(section), Branch):
             yield from _known_but_foreign(branch[section], (*allowed, "source"), all_keys, f"the {section} of {what}")
     if "channel" in branch and branch["channel"] not in kind.channels:
-        advice = nearest(str(branch["channel"]), kind.channels) or "leave it out"
+        advice = f"write {' or '.join(kind.channels)}" if kind.channels else "leave it out"
         yield complaint(branch["channel"].mark, f"the channel {shorten(str(branch['channel']))!r} for {what}", advice)
 
 

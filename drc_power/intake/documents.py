@@ -17,7 +17,7 @@ def refuse(*groups: Iterable[Fault]) -> None:
     """Raise `InputError` with every fault once, in the order of the file; nothing happens if there is none."""
     faults = sorted({fault for group in groups for fault in group})
     if len(faults) > MOST_FAULTS:
-        rest = Fault(Mark(faults[-1].mark.file), f"{len(faults) - MOST_FAULTS} more faults", "put these right first")
+        rest = Fault(Mark(faults[-1].mark.file), f"at least {len(faults) - MOST_FAULTS} more faults", "put these right first")
         faults = [*faults[:MOST_FAULTS], rest]
     if faults:
         raise InputError(*faults)

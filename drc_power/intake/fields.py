@@ -13,7 +13,7 @@ from typing import Annotated, Any, TypeVar
 from pydantic import BeforeValidator, PlainValidator, ValidationError
 from pydantic_core import PydanticCustomError
 
-from ..quantity import QuantityError, Span, a_dimension, parse_any, span_from_ends, such_as
+from ..quantity import QuantityError, Span, a_dimension, due_words, parse_any, span_from_ends, such_as
 from .record import complaint, complaints_of, describe, shorten, together
 from .suggest import nearest
 from .tree import Blank, Branch, Row
@@ -116,8 +116,7 @@ def quantity_from(node: Any, *dimensions: str) -> Quantity:
     if isinstance(node, Branch):
         return _from_ends(node, dimensions)
     if not isinstance(node, Text) or isinstance(node, Blank):
-        what = " or ".join(a_dimension(dimension) for dimension in dimensions)
-        raise due(node, what, such_as(dimensions))
+        raise due(node, due_words(dimensions), such_as(dimensions))
     try:
         dimension, span = parse_any(node, dimensions)
     except QuantityError as error:

@@ -7,6 +7,7 @@ import os
 import stat
 
 from ..faults import Fault, InputError, Mark
+from .record import shorten
 from .tree import MOST_BYTES
 from .values import SourceFile, Text
 
@@ -17,10 +18,10 @@ def read_file(path: str, role: str, folder: str, named_at: Mark | None = None) -
     try:
         with open(path, "rb", opener=_opened_without_waiting) as file:
             if not stat.S_ISREG(os.fstat(file.fileno()).st_mode):
-                raise InputError(Fault(place, f"{path!r} is not a plain file", "name a file"))
+                raise InputError(Fault(place, f"{shorten(path, 120)!r} is not a plain file", "name a file"))
             data = file.read(MOST_BYTES + 1)
     except (OSError, ValueError) as error:
-        raise InputError(Fault(place, f"{path!r} cannot be read: {_reason(error)}", "check the path")) from None
+        raise InputError(Fault(place, f"{shorten(path, 120)!r} cannot be read: {_reason(error)}", "check the path")) from None
     return data, SourceFile(role, relative(path, folder), hashlib.sha256(data).hexdigest())
 
 
@@ -41,9 +42,14 @@ def relative(path: str, folder: str) -> str:
 
 def inside(named: Text | str, beside: str, folder: str) -> str:
     """The path that a file in the folder `beside` names, if it stays inside the project folder, links followed."""
+    mark = getattr(named, "mark", Mark(str(named)))
     path = os.path.normpath(os.path.join(beside, named))
-    root, real = os.path.realpath(folder or "."), os.path.realpath(path)
-    if os.path.commonpath([root, real]) != root:
-        mark = getattr(named, "mark", Mark(str(named)))
-        raise InputError(Fault(mark, f"{str(named)!r} leaves the project folder", "keep packs and device data inside the project"))
+    try:
+        root, real = os.path.realpath(folder or "."), os.path.realpath(path)
+        stays = os.path.commonpath([root, real]) == root
+    except (OSError, ValueError):
+        raise InputError(Fault(mark, f"{shorten(named)!r} is not a valid path", "check the path")) from None
+    if not stays:
+        found = f"{shorten(named)!r} leaves the project folder"
+        raise InputError(Fault(mark, found, "keep packs and device data inside the project"))
     return path

@@ -37,9 +37,9 @@ class _Claim:
 
 def expand(patterns: Iterable[Text], refs: Iterable[str]) -> tuple[dict[str, tuple[str, ...]], list[Fault]]:
     """The references that each name or glob stands for, and a fault for each that stands for none."""
-    known = list(refs)
+    known = dict.fromkeys(refs)
     found: dict[str, tuple[str, ...]] = {}
-    faults = []
+    faults: list[Fault] = []
     for pattern in patterns:
         named = _named(pattern, known)
         found[pattern] = named
@@ -49,7 +49,7 @@ def expand(patterns: Iterable[Text], refs: Iterable[str]) -> tuple[dict[str, tup
     return found, faults
 
 
-def _named(pattern: str, known: list[str]) -> tuple[str, ...]:
+def _named(pattern: str, known: Mapping[str, None]) -> tuple[str, ...]:
     if not is_glob(pattern):
         return (pattern,) if pattern in known else ()
     match = re.compile(fnmatch.translate(pattern)).match

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import functools
+import itertools
 from collections.abc import Iterable, Mapping
 from typing import Any, ClassVar, Self
 
@@ -11,8 +12,11 @@ from pydantic_core import InitErrorDetails, PydanticCustomError
 
 from ..faults import Fault, InputError, Mark
 from .suggest import MOST_ADVISED, nearest
-from .tree import Blank, Branch
+from .tree import MOST_FAULTS, Blank, Branch
 from .values import NOWHERE, Text
+
+MOST_COMPLAINTS = 1_000
+"""Complaints that are carried along; far more than is shown, so that a hostile file costs little."""
 
 
 def complaint(mark: Mark, found: str, instead: str = "") -> PydanticCustomError:
@@ -22,14 +26,14 @@ def complaint(mark: Mark, found: str, instead: str = "") -> PydanticCustomError:
 
 def together(complaints: Iterable[PydanticCustomError]) -> ValidationError:
     """Several complaints as one error, for a reader that does not stop at the first."""
-    rows = [InitErrorDetails(type=each, loc=(), input=None) for each in complaints]
+    rows = [InitErrorDetails(type=each, loc=(), input=None) for each in itertools.islice(complaints, MOST_COMPLAINTS)]
     return ValidationError.from_exception_data("input", rows)
 
 
 def complaints_of(error: ValidationError) -> list[PydanticCustomError]:
     """The complaints inside an error that a nested reader raised."""
     rows = error.errors(include_url=False, include_input=False)
-    return [complaint(**row["ctx"]) for row in rows]
+    return [complaint(**row["ctx"]) for row in rows[:MOST_COMPLAINTS]]
 
 
 def faults_of(error: ValidationError) -> list[Fault]:
@@ -162,7 +166,7 @@ def as_mapping(node: Any, what: str) -> Branch:
 def unknown_keys(branch: Branch, allowed: Iterable[str], what: str) -> list[PydanticCustomError]:
     """A complaint for each key that is not allowed, with the nearest that is."""
     names = list(allowed)
-    wrong = [key for key in branch if key not in names]
+    wrong = itertools.islice((key for key in branch if key not in names), MOST_FAULTS + 1)
     return [
         complaint(key.mark, f"{shorten(key)!r} is not a key of {what}", nearest(key, names) if n < MOST_ADVISED else "")
         for n, key in enumerate(wrong)

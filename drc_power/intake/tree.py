@@ -17,7 +17,7 @@ from ..faults import Fault, InputError, Mark
 from .values import Text
 
 MOST_BYTES = 8_000_000
-MOST_NODES = 400_000
+MOST_NODES = 200_000
 MOST_DEPTH = 40
 MOST_FAULTS = 100
 

@@ -45,6 +45,9 @@ LONGEST = 100
 EXACT = decimal.Context(prec=40, traps=[])
 """Decimal arithmetic of our own, whatever the caller has set."""
 
+MOST_NAMED = 3
+"""Dimensions that a message names one by one."""
+
 _LARGEST, _SMALLEST = Decimal("1e30"), Decimal("1e-30")
 _SAME = str.maketrans({"\u2212": "-", "\u00a0": " ", "\u202f": " ", "\u2009": " "})  # minus, and narrow or fixed spaces
 _ITEM = re.compile(r"([+-]?(?:[0-9]+(?:\.[0-9]+)?|\.[0-9]+)(?:[eE][+-]?[0-9]{1,4})?)\s*(.*)")
@@ -129,7 +132,16 @@ def such_as(dimensions: Sequence[str]) -> str:
     >>> such_as(("voltage", "current"))
     'write for example 24 V or 350 mA'
     """
-    return "write for example " + " or ".join(example_of(each) for each in dimensions)
+    return "write for example " + " or ".join(example_of(each) for each in dimensions[:MOST_NAMED])
+
+
+def due_words(dimensions: Sequence[str]) -> str:
+    """What is due where any of the dimensions may stand.
+
+    >>> due_words(("voltage", "current"))
+    'a voltage or a current'
+    """
+    return " or ".join(a_dimension(each) for each in dimensions) if len(dimensions) <= MOST_NAMED else "a quantity"
 
 
 def _checked(text: str) -> str:
@@ -230,7 +242,7 @@ def _dimension_of(item: _Item, dimensions: tuple[str, ...]) -> str:
         if item.fits(dimension):
             _possible(item.value, item, dimension)
             return dimension
-    due = " or ".join(a_dimension(each) for each in dimensions)
+    due = due_words(dimensions)
     if item.bare:
         raise QuantityError(f"{_cut(item.text)!r} has no unit, {due} is due", such_as(dimensions))
     what = next((row.words for name, row in DIMENSIONS.items() if item.fits(name)), "something else")
