@@ -244,6 +244,10 @@ class Board:
         """A file as a report names it: from the project folder, so that a checkout elsewhere gives the same bytes."""
         return os.path.relpath(path, self.annotations.folder or ".").replace(os.sep, "/") if path else ""
 
+    def place(self, mark: Mark) -> str:
+        """A place as a report names it: file and line, seen from the project folder."""
+        return str(Mark(self.shown(mark.file), mark.line))
+
     def check_names(self) -> None:
         """Raise InputError with every net, part or sink that the annotations name and that is not there."""
         faults = list(dict.fromkeys(fault for mode in self.modes for fault in self._wrong_names(mode)))

@@ -25,6 +25,10 @@ class Arguments(argparse.ArgumentParser):
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command. Returns the exit status; no traceback ever reaches the user."""
     options = build_parser().parse_args(arguments)
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):
+            # A terminal without the signs of a table shows others instead of ending the run.
+            stream.reconfigure(errors="replace")
     try:
         return options.run(options)
     except InputError as error:
@@ -192,6 +196,8 @@ def _deliver(texts: dict[str, str], order: Sequence[str | None]) -> bool:
         raise InputError(Fault(Mark("-"), "two outputs go to standard output", "give one of them a file"))
     write_files({path: text for path, text in texts.items() if path != "-"})
     if "-" in texts:
+        if hasattr(sys.stdout, "reconfigure"):
+            sys.stdout.reconfigure(encoding="utf-8", newline="\n")
         sys.stdout.write(texts["-"])
     return "-" in texts
 

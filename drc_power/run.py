@@ -10,6 +10,7 @@ import numpy as np
 
 from .board import Board, Mode
 from .checks import House, Judgement, judge
+from .checks.house import describe
 from .checks.judge import finite_or_zero, make_finding, objective_of
 from .findings.model import Coverage, Finding, InputFile, NetPoint, OperatingPoint, Outside, PartRow, Result, Sensitivity
 from .findings.order import finding_key
@@ -20,7 +21,7 @@ from .intake.rules import read_rules
 from .intake.waivers import read_waivers
 from .netlist.model import Netlist
 from .netlist.reader import read_netlist
-from .quantity import format_quantity
+from .quantity import DIMENSIONS, format_quantity
 from .solve.build import build_circuit
 from .solve.search import Worst, worst_corners
 from .solve.solution import Engine, Solution
@@ -92,8 +93,8 @@ def _read_netlist(annotations: Annotations) -> Netlist:
 def _waivers(found) -> tuple[Waiver, ...]:
     if found is None:
         return ()
-    return tuple(Waiver(str(w.finding), str(w.because), str(w.by), w.until.isoformat(), w.value.typ, w.mark.file, w.mark.line)
-                 for w in found.waivers)
+    return tuple(Waiver(str(w.finding), str(w.because), str(w.by), w.until.isoformat(), w.value.typ, w.mark.file, w.mark.line,
+                        DIMENSIONS[w.value.dimension].unit) for w in found.waivers)
 
 
 def _in_mode(board: Board, mode: Mode, house: House) -> Iterator[tuple[list[Finding], list[OperatingPoint], list[NetPoint]]]:
@@ -114,10 +115,10 @@ def _in_mode(board: Board, mode: Mode, house: House) -> Iterator[tuple[list[Find
     findings = []
     for k, judgement in enumerate(judgements):
         sample = int(worst.at[k])
-        finding = make_finding(board, judgement, sample, _corner(circuit, worst, k, sample), gaps[k],
-                               _sensitivity(circuit, worst, k, judgement))
+        finding = make_finding(board, judgement, sample, _corner(circuit, worst, k, sample), gaps[k])
         if finding is not None:
-            findings.append(finding)
+            findings.append((k, finding))
+    findings = _with_sensitivity(engine, house, worst, findings)
     yield findings, _points(final, worst, n_judged), _nets(final, worst, n_judged)
 
 
@@ -162,16 +163,32 @@ def _corner(circuit, worst: Worst, objective: int, sample: int) -> str:
     return ", ".join(named) if named else "any corner"
 
 
-def _sensitivity(circuit, worst: Worst, objective: int, judgement: Judgement) -> list[Sensitivity]:
-    """The three inputs that move the margin most across their own span."""
-    moves = worst.influence[objective]
-    strongest = [k for k in np.argsort(-np.abs(moves), kind="stable")[:3] if abs(moves[k]) > MOVES]
-    rows = []
-    for k in strongest:
-        variable = circuit.box.variables[k]
-        span = f"{format_quantity(variable.span.min, variable.dimension)} .. {format_quantity(variable.span.max, variable.dimension)}"
-        rows.append(Sensitivity(variable.name, span, float(moves[k]), "of margin"))
-    return rows
+N_SENSITIVITIES = 3
+
+
+def _with_sensitivity(engine: Engine, house: House, worst: Worst, findings: list[tuple[int, Finding]]) -> list[Finding]:
+    """Each finding that is not met with the inputs that move its value most, in its own unit, each alone across its span."""
+    box = engine.circuit.box
+    low, high = box.bounds()
+    asked = []
+    for k, finding in findings:
+        moves = np.abs(worst.influence[k])
+        strongest = [v for v in np.argsort(-moves, kind="stable")[:N_SENSITIVITIES] if moves[v] > MOVES]
+        if finding.verdict != "met" and finding.value is not None:
+            asked += [(k, int(v), end) for v in strongest for end in (low[v], high[v])]
+    if not asked:
+        return [finding for _, finding in findings]
+    points = worst.points[worst.at[[k for k, _, _ in asked]]].copy()
+    points[np.arange(len(asked)), [v for _, v, _ in asked]] = [end for _, _, end in asked]
+    judged = judge(engine.solve(points), house)
+    rows: dict[int, list[Sensitivity]] = {}
+    for row in range(0, len(asked), 2):
+        k, v, _ = asked[row]
+        moved, variable = judged[k].value[row + 1] - judged[k].value[row], box.variables[v]
+        if np.isfinite(moved):
+            ends = " .. ".join(format_quantity(end, variable.dimension) for end in (low[v], high[v]))
+            rows.setdefault(k, []).append(Sensitivity(variable.name.removesuffix(" at"), ends, float(moved), judged[k].unit))
+    return [replace(finding, sensitivity=tuple(rows.get(k, ()))) for k, finding in findings]
 
 
 def _points(solution: Solution, worst: Worst, first: int) -> list[OperatingPoint]:
@@ -204,7 +221,7 @@ def _finite(value: float) -> float | None:
 
 def _once(findings: list[Finding]) -> list[Finding]:
     """Findings about what no mode changes are made once."""
-    return list({finding.id: finding for finding in reversed(findings)}.values())[::-1]
+    return list({(finding.id, finding.ref): finding for finding in reversed(findings)}.values())[::-1]
 
 
 def _result(board: Board, inputs, findings: list[Finding], points, nets, run: Run) -> Result:
@@ -214,7 +231,7 @@ def _result(board: Board, inputs, findings: list[Finding], points, nets, run: Ru
                         tuple(Outside(ref, why) for ref, why in board.outside.items()), tuple(sorted(board.not_fitted)))
     rows = tuple(PartRow(ref, part.part.uuid, part.part.sheet, part.part.value,
                          part.device.name if part.device else None, part.kind)
-                 for ref in board.elements for part in (board.parts[ref],))
+                 for ref, part in board.parts.items())
     annotations = board.annotations
     result = Result(
         annotations.board_name, annotations.board_revision, str(annotations.netlist), len(board.netlist.parts),
@@ -238,13 +255,14 @@ def _loads(board: Board) -> tuple[dict, ...]:
 
 
 def _rules(board: Board) -> tuple[dict, ...]:
-    return tuple({"name": limit.name, "pack": limit.pack, "stress": str(limit.stress), "locked": limit.locked,
-                  "source": str(limit.source) if limit.source else None} for limit in board.rules.limits.values())
+    return tuple({"name": limit.name, "pack": limit.pack, "stress": str(limit.stress), "says": describe(limit),
+                  "locked": limit.locked, "source": str(limit.source) if limit.source else None}
+                 for limit in board.rules.limits.values())
 
 
 def rules_in_force(path: str | os.PathLike[str]) -> tuple[dict, ...]:
     """Every limit in force for a board: what it says, where from, and how many parts it applies to."""
-    from .checks.house import Target, applies, describe
+    from .checks.house import Target, applies
 
     board, _, _ = read_board(path, Run())
     targets = [Target(part.kind, "", mode.name, part) for mode in board.modes for ref, part in mode.parts.items()
@@ -255,6 +273,6 @@ def rules_in_force(path: str | os.PathLike[str]) -> tuple[dict, ...]:
         overrode = [f"{other.pack}" for other in board.rules.overridden if other.name == limit.name]
         says = describe(limit) + (", locked" if limit.locked else "")
         rows.append({"limit": limit.name, "stress": str(limit.stress), "says": says, "parts": len(fitting),
-                     "written": f"{limit.pack}, {limit.mark}" + (f", over {', '.join(overrode)}" if overrode else ""),
+                     "written": f"{limit.pack}, {board.place(limit.mark)}" + (f", over {', '.join(overrode)}" if overrode else ""),
                      "source": str(limit.source or "-")})
     return tuple(rows)

@@ -16,7 +16,7 @@ def rails(view: View) -> Iterator[Judgement]:
         pins = [(parts[node.ref].uuid, node.pin) for node in view.board.netlist.nets[unfed.net].nodes if node.ref in parts]
         yield Judgement(
             "coverage.rail", net_subject(pins, unfed.net), "supply", "V", view.solution.node_v(unfed.net), view.unknown(),
-            view.unknown(), unfed.mark, "voltage", net=unfed.net, mode=view.mode.name, lacking=("supply",),
+            view.unknown(), unfed.mark, "voltage", net=unfed.net, lacking=("supply",),
             why=unfed.text, remedy=unfed.remedy)
 
 
@@ -40,7 +40,7 @@ def _unjudged(view: View, ref: str) -> Judgement:
         remedy = f"give {', '.join(lacking)}"
     return Judgement(
         "coverage.data", part_subject(part.part.uuid, ref), "device data", "", view.unknown(), view.unknown(),
-        view.unknown(), view.board.where(part), None, ref, mode=view.mode.name, lacking=lacking, remedy=remedy)
+        view.unknown(), view.board.where(part), None, ref, lacking=lacking, remedy=remedy)
 
 
 def without_supply(view: View, element: ElementView) -> bool:

@@ -8,7 +8,7 @@ import numpy as np
 
 from ..board import Board
 from ..findings.identity import finding_id
-from ..findings.model import Finding, InputUsed, Sensitivity
+from ..findings.model import Finding, InputUsed
 from ..findings.verdict import verdict_of
 from ..text import si, si_apart
 from .house import describe
@@ -45,8 +45,7 @@ def finite_or_zero(values: np.ndarray) -> np.ndarray:
     return np.where(np.isfinite(values), values, 0.0)
 
 
-def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, gaps: Sequence[str],
-                 sensitivity: Sequence[Sensitivity]) -> Finding | None:
+def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, gaps: Sequence[str]) -> Finding | None:
     """The finding at the sample that the search found worst; None for a check that has nothing to say."""
     margin = float(judgement.margins()[sample])
     known = np.isfinite(margin)
@@ -58,7 +57,7 @@ def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, g
     limits = sorted({str(judgement.limit.name)}) if judgement.limit is not None else []
     inputs = [InputUsed(*row) for row in judgement.inputs()]
     if judgement.limit is not None:
-        source = f"{judgement.limit.mark}" + (f" ({judgement.limit.source})" if judgement.limit.source else "")
+        source = board.place(judgement.limit.mark) + (f" ({judgement.limit.source})" if judgement.limit.source else "")
         inputs.append(InputUsed(f"house rule {limits[0]}", describe(judgement.limit), source))
     return Finding(
         id=finding_id(judgement.subject, rule=judgement.rule, stress=judgement.stress, mode=judgement.mode),
@@ -68,7 +67,6 @@ def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, g
         unit=judgement.unit, margin=margin if known and not judgement.lacking else None,
         text=_sentence(judgement, verdict, value, allowed, rated, gaps),
         remedy=_remedy(judgement, verdict, gaps), inputs_used=tuple(inputs),
-        sensitivity=tuple(sensitivity) if verdict not in ("met",) else (),
         workings=judgement.steps(sample), file=board.shown(judgement.mark.file), line=judgement.mark.line)
 
 

@@ -49,7 +49,7 @@ def load_voltage(view: View) -> Iterator[Judgement]:
             view.unknown(), high if sense == "between" else low, load.mark, "voltage", net=load.a,
             mode=view.mode.name, sense=sense, low=low, proven=view.solved,
             remedy="lower the drop between source and load, or change the rail",
-            inputs=lambda load=load: ((f"loads.{load.name}.needs", view.mode.loads[load.name].needs.text, str(load.mark)),))
+            inputs=lambda load=load: ((f"loads.{load.name}.needs", view.mode.loads[load.name].needs.text, view.board.place(load.mark)),))
 
 
 def source_limit(view: View) -> Iterator[Judgement]:
@@ -66,7 +66,7 @@ def source_limit(view: View) -> Iterator[Judgement]:
             "network.limit", named_subject("rail", source.rail), f"current from the source of {source.rail}", "A",
             solution.current_a(source.key), rated, may, source.mark, "limit", net=source.net, mode=view.mode.name,
             limit=limit, proven=view.solved, remedy="take load off the rail, or give it a stronger source",
-            inputs=lambda source=source: ((f"rails.{source.rail}.limit", view.mode.rails[source.rail].limit.text, str(source.mark)),))
+            inputs=lambda source=source: ((f"rails.{source.rail}.limit", view.mode.rails[source.rail].limit.text, view.board.place(source.mark)),))
 
 
 def runaway(view: View) -> Iterator[Judgement]:

@@ -113,10 +113,13 @@ class ElementView:
         for path in paths:
             section, _, key = path.partition(".")
             value = self.part.limit(key) if section == "limits" else self._entry(section, key)
-            if value is not None and self.part.device is not None:
+            device = self.part.device
+            if value is not None and device is not None and (section != "limits" or key in device.limits):
                 said = self.part.device.source_text(path)
-                where = f"{self.part.device.entry(path)}" + (f" ({said})" if said else "")
+                where = self.view.board.place(self.part.device.entry(path)) + (f" ({said})" if said else "")
                 found.append((f"{self.part.device.name} {path}", getattr(value, "text", "table"), where))
+            elif value is not None:
+                found.append((f"{self.ref} {path}", value.text, self.view.board.place(value.mark)))
         return tuple(found)
 
     def _entry(self, section: str, key: str):
