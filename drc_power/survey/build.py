@@ -8,7 +8,7 @@ from drc_power.netlist.model import Netlist
 from drc_power.survey import elements, inlets, outlets
 from drc_power.survey.elements import Found, judge_all
 from drc_power.survey.fitted import why_not_fitted
-from drc_power.survey.graph import directed, distances
+from drc_power.survey.graph import directed
 from drc_power.survey.identify import identify
 from drc_power.survey.inlets import End
 from drc_power.survey.model import Element, Identity, Rail, Signal, Survey
@@ -29,7 +29,7 @@ def build_survey(netlist: Netlist) -> Survey:
     nets.power |= {end.back for end in drivers}
     founds = judge_all(wiring, nets)
     ways_in = inlets.find_sources(nets, founds)
-    steps = distances(founds, nets, inlets.start_nets(nets, founds, ways_in))
+    steps = inlets.steps_from(nets, founds, ways_in)
     found_elements = _elements(netlist, identities, founds, nets, steps)
     found_elements += [_end_element(identities, end) for end in (*ways_in, *drivers, *outlets.find_loads(nets, ways_in))]
     order = {ref: i for i, ref in enumerate(netlist.parts)}

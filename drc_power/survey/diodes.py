@@ -54,7 +54,7 @@ def _reversed_across_supply(nets: Standing, c: Conduit) -> Verdict | None:
 def _bridge_leg(nets: Standing, c: Conduit) -> Verdict | None:
     """One of two diodes that meet at an alternating input, as in a bridge of single diodes."""
     for node, mine in ((c.a, "cathode"), (c.b, "anode")):
-        if is_small(nets, c.ref) or node in nets.supplies or node in nets.low:
+        if is_small(nets, c.ref) or node in nets.supplies or node in nets.low or nets.holds_charge(node):
             continue
         partner = any(t.ref != c.ref and t.terminal == mine for t in nets.wiring.tied(node, "diode"))
         rest = _kinds(nets, node, c.ref) - {"diode", "capacitor", "tvs", "resistor", "test-point", "fuse"}

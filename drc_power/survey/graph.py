@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections import deque
-from collections.abc import Iterable, Sequence
-from typing import TYPE_CHECKING, NamedTuple
+from collections.abc import Iterable, Mapping, Sequence
+from typing import TYPE_CHECKING
 
+from drc_power.survey.conduits import Conduit
 from drc_power.survey.elements import Found
 from drc_power.survey.standing import Standing
 
@@ -15,16 +16,11 @@ if TYPE_CHECKING:
     from drc_power.survey.model import Survey
 
 
-class Edge(NamedTuple):
-    """An element's run from one net to another; `index` is its place in the list of finds."""
+def distances(founds: Sequence[Found], nets: Standing, sources: Iterable[str], known: Mapping[str, int] | None = None) -> dict[str, int]:
+    """Steps from the nearest source to each power net, along elements, never against a one-way element.
 
-    index: int
-    from_net: str
-    to_net: str
-
-
-def distances(founds: Sequence[Found], nets: Standing, sources: Iterable[str]) -> dict[str, int]:
-    """Steps from the nearest source to each power net, along elements, never against a one-way element."""
+    With `known` steps, only nets that have none yet are given one, beyond all that are known.
+    """
     ways: dict[str, list[str]] = {}
     for found in founds:
         c = found.conduit
@@ -33,8 +29,10 @@ def distances(founds: Sequence[Found], nets: Standing, sources: Iterable[str]) -
         ways.setdefault(c.a, []).append(c.b)
         if not c.one_way:
             ways.setdefault(c.b, []).append(c.a)
-    steps = {net: 0 for net in sources}
-    queue = deque(steps)
+    steps = dict(known or {})
+    base = max(steps.values(), default=-1) + 1
+    queue = deque(net for net in sources if net not in steps)
+    steps |= dict.fromkeys(queue, base)
     while queue:
         net = queue.popleft()
         for other in ways.get(net, ()):
@@ -44,7 +42,7 @@ def distances(founds: Sequence[Found], nets: Standing, sources: Iterable[str]) -
     return steps
 
 
-def directed(found: Found, nets: Standing, steps: dict[str, int]) -> tuple[str, str]:
+def directed(found: Found, nets: Standing, steps: Mapping[str, int]) -> tuple[str, str]:
     """(from, to) of an element: along conduction, away from the source, from a supply down to a return."""
     c = found.conduit
     if c.one_way:
@@ -54,11 +52,22 @@ def directed(found: Found, nets: Standing, steps: dict[str, int]) -> tuple[str, 
         return (c.b, c.a) if low_a else (c.a, c.b)
     if low_a and low_b:
         return (c.b, c.a) if c.a in nets.grounds and c.b not in nets.grounds else (c.a, c.b)
+    coil = _at_converter(c, nets) if c.kind in ("inductor", "ferrite") else None
+    if coil:
+        return coil
     far = max(steps.values(), default=0) + 1
-    near_a, near_b = steps.get(c.a, far), steps.get(c.b, far)
-    if near_a != near_b:
-        return (c.a, c.b) if near_a < near_b else (c.b, c.a)
-    return (c.a, c.b)
+    return (c.b, c.a) if steps.get(c.b, far) < steps.get(c.a, far) else (c.a, c.b)
+
+
+def _at_converter(c: Conduit, nets: Standing) -> tuple[str, str] | None:
+    """An inductor at a chip's switch node runs to the output of a buck and from the input of a boost converter."""
+    for node, other in ((c.a, c.b), (c.b, c.a)):
+        for tap in nets.wiring.tied(node, "switching-regulator"):
+            if tap.terminal == "switch_node" and "switch_node" not in nets.wiring.terminals_on(other):
+                inputs = nets.wiring.nets_of(tap.ref, "input")[:1]
+                onward = any(d.terminal == "anode" and nets.wiring.across(d) not in inputs for d in nets.wiring.tied(node, "diode"))
+                return (other, node) if other in inputs or onward else (node, other)
+    return None
 
 
 def power_graph(survey: Survey) -> nx.MultiDiGraph:

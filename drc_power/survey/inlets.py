@@ -76,10 +76,8 @@ ROWS: tuple[Row, ...] = (
 
 def _contacts(nets: Standing, founds: Sequence[Found]) -> list[tuple[float, End]]:
     passing = [f for f in founds if f.verdict.group == "pass"]
-    fed = frozenset(f.conduit.b for f in founds if f.conduit.one_way and f.verdict.group in ("pass", "switch"))
-    fed |= frozenset(net for net in nets.supplies if any(t.pin.type == "power_out" for t in nets.wiring.tied(net, "ic")))
+    fed, behind = fed_nets(nets, founds)
     feeds = frozenset(f.conduit.a for f in passing) | frozenset(f.conduit.b for f in passing if not f.conduit.one_way)
-    behind = frozenset(distances([f for f in founds if not f.conduit.one_way], nets, sorted(fed))) - fed
     driven = frozenset(net for f in founds if f.verdict.group == "switch" and not f.conduit.one_way for net in (f.conduit.a, f.conduit.b) if net not in nets.supplies)
     found = []
     for part in nets.wiring.parts():
@@ -147,14 +145,20 @@ def _proper_sources(nets: Standing) -> list[End]:
     return found
 
 
-def start_nets(nets: Standing, founds: Sequence[Found], ends: Iterable[End]) -> list[str]:
-    """Nets from which power spreads: the sources', and for islands without a source their busiest net."""
-    starts = list(dict.fromkeys(end.net for end in ends))
-    reached = set(distances(founds, nets, starts))
-    fed = {f.conduit.b for f in founds if f.conduit.one_way and f.verdict.group in ("pass", "switch")}
+def steps_from(nets: Standing, founds: Sequence[Found], ends: Iterable[End]) -> dict[str, int]:
+    """Steps of every power net from its source; an island without one starts at its busiest net that nothing feeds."""
+    steps = distances(founds, nets, dict.fromkeys(end.net for end in ends))
+    fed, behind = fed_nets(nets, founds)
     rest = [net for net in nets.wiring.nets if nets.is_power(net)]
-    for net in sorted(rest, key=lambda n: (n in fed, n not in nets.supplies, -len(nets.wiring.taps(n)))):
-        if net not in reached:
-            starts.append(net)
-            reached |= set(distances(founds, nets, [net]))
-    return starts
+    for net in sorted(rest, key=lambda n: (n in fed, n in behind, n not in nets.supplies, -len(nets.wiring.taps(n)))):
+        if net not in steps:
+            steps = distances(founds, nets, [net], steps)
+    return steps
+
+
+def fed_nets(nets: Standing, founds: Sequence[Found]) -> tuple[frozenset[str], frozenset[str]]:
+    """Nets that a one-way element or a chip's power output feeds, and nets that two-way elements join to those."""
+    fed = {f.conduit.b for f in founds if f.conduit.one_way and f.verdict.group in ("pass", "switch")}
+    fed |= {net for net in nets.supplies if any(t.pin.type == "power_out" for t in nets.wiring.tied(net, "ic"))}
+    behind = distances([f for f in founds if not f.conduit.one_way], nets, sorted(fed))
+    return frozenset(fed), frozenset(behind) - fed

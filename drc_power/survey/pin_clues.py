@@ -103,6 +103,9 @@ PIN_CLUES: tuple[PinClue, ...] = (
     PinClue(lambda p: p.shows("switching-regulator", "input", "switch_node") and p.count >= 5
             and (p.shows("switching-regulator", "feedback") or p.shows("switching-regulator", "output") or p.boosts),
             "switching-regulator", 5.0, "pins named input, switch node, feedback"),
+    PinClue(lambda p: p.boosts and p.any_of("SW", "SW1", "SW2", "LX", "LX1", "PH") and not p.drives, "switching-regulator", 3.0, "switch node and bootstrap pin"),
+    PinClue(lambda p: 3 < p.count <= 12 and len(p.names) >= 3 and not p.shows("mosfet", "drain", "source") and not p.power_block and not p.has("G1", "G2"), "mosfet", -4.0, "pins not a mosfet's"),
+    PinClue(lambda p: 3 < p.count <= 12 and len(p.names) >= 3 and not p.shows("bjt", "collector", "emitter") and not p.any_of("C1", "E1", "C2"), "bjt", -4.0, "pins not a bipolar transistor's"),
     PinClue(lambda p: p.number_of("switching-regulator", "switch_node") >= 3 and p.shows("switching-regulator", "input"), "switching-regulator", 4.0, "several pins for the switch node"),
     PinClue(lambda p: p.drives >= 1 and p.boosts, "gate-driver", 2.5, "pins that drive gates outside"),
     PinClue(lambda p: p.drives >= 2, "gate-driver", 2.5, "pins that drive gates outside"),

@@ -17,7 +17,7 @@ Terminals = Mapping[str, tuple[str, ...]]
 _GROUND = r"(A|P|D|S|Q)?GND\w*|(A|P|D)?VSS\w*|EP(AD)?|E?PAD|TH(ERMAL)?_?(PAD|VIA)?|PWPD|COM(MON)?|0V|VEE|G(R(OU)?ND)|GBD|G"
 _ENABLE = r"N?EN\w*|ENABLE\w*|ON(/OFF)?|OFF|N?SHDN?\w*|SHUTDOWN|SD|CE|RUN\d?|STBY|INH(IBIT)?|CTRL|S/S|ON_OFF|CONTROL"
 _FEEDBACK = r"V?FB\w*[+]?|ADJ(UST)?|V?SENSE\w*|VOS(NS)?|V?SNS\w*|COMP|VADJ|TRIM"
-_IN_MANY = r"V_?IN\w*|P?VIN\w*|VI|IN\d?|INPUT|PVIN|VLDOIN|LINE|IN[-_ ]?\w?|\+?VIN[+]?|UIN"
+_IN_MANY = r"V_?IN\w*|P?VIN\w*|VI|IN\d?|INPUT|PVIN|VLDOIN|LINE|IN_?[A-D\d]|\+?VIN[+]?|UIN"
 _OUT_MANY = r"V_?OUT\w*|VO\d?|OUT\d?|OUTPUT|(?!REF)\w+_?V?OUT\d?|OUT_\w+|\+VOUT|VOUT[+]|UOUT|Q"
 
 PATTERNS: Mapping[str, tuple[tuple[str, str], ...]] = {
@@ -34,7 +34,7 @@ PATTERNS: Mapping[str, tuple[tuple[str, str], ...]] = {
     "switching-regulator": (
         ("ground", _GROUND), ("enable", _ENABLE), ("feedback", _FEEDBACK),
         ("switch_node", r"SW\d?|LX\d?|PH(ASE)?|PH(ASE)?_?\w|VSW|L\d?|SW_?\w|SWN|SWITCH|SW_?NODE|SW[CE]|LX_?\w|VSWH|OUT_?SW|LBUCK|LBOOST|IND"),
-        ("output", _OUT_MANY), ("input", _IN_MANY),
+        ("output", _OUT_MANY + r"|V?(SYS|BAT)\d?"), ("input", _IN_MANY + r"|VBUS\w?"),
     ),
     "load-switch": (
         ("ground", _GROUND), ("output", r"V?OUT\w*|VO\d?|OUTPUT\d?|VOUT\w*|S\d?"),

@@ -46,7 +46,8 @@ def _voltage(nets: Standing, net: str, feeders: Iterable[str]) -> tuple[float | 
             divided = _by_divider(nets, net, ref)
             if divided:
                 return divided, f"{ref}: feedback divider and the usual reference"
-    return None, (nets.supply_words[net] or ("evidence adds up",))[0]
+    words = [word for word in nets.supply_words[net] if "voltage" not in word]
+    return None, (words or ["net name is a supply's"])[0]
 
 
 def _is_bus_name(net: str) -> bool:

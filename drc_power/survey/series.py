@@ -68,7 +68,7 @@ def _signal_pins(nets: Standing, net: str) -> bool:
 
 def judge_ferrite(nets: Standing, c: Conduit) -> Verdict:
     """A bead counts in a supply or in a return; on a data line it is a filter."""
-    if nets.is_power(c.a) or nets.is_power(c.b):
+    if nets.is_power(c.a) or nets.is_power(c.b) or any("switch_node" in nets.wiring.terminals_on(net) for net in (c.a, c.b)):
         return Verdict("pass", ("bead in series with a supply",), 0.9)
     if is_return(nets, c.a, c.ref) and is_return(nets, c.b, c.ref):
         return Verdict("pass", ("bead between two grounds",), 0.85)
@@ -171,7 +171,7 @@ def _why_signal(nets: Standing, c: Conduit, value: float | None) -> str:
     wiring = nets.wiring
     if any(wiring.tied(net, "led") for net in (c.a, c.b)):
         return "series resistor of a light-emitting diode"
-    if any("feedback" in wiring.terminals_on(net) for net in (c.a, c.b)):
+    if any("feedback" in wiring.terminals_on(net) and not nets.is_power(net) for net in (c.a, c.b)):
         return "feedback divider"
     if any(wiring.kinds_on(net, c.ref) == {"capacitor"} for net in (c.a, c.b)):
         return "in series with a capacitor: snubber or filter"
