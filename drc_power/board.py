@@ -242,7 +242,9 @@ class Board:
 
     def shown(self, path: str) -> str:
         """A file as a report names it: from the project folder, so that a checkout elsewhere gives the same bytes."""
-        return os.path.relpath(path, self.annotations.folder or ".").replace(os.sep, "/") if path else ""
+        if not path or path.startswith("shipped/"):
+            return path
+        return os.path.relpath(path, self.annotations.folder or ".").replace(os.sep, "/")
 
     def place(self, mark: Mark) -> str:
         """A place as a report names it: file and line, seen from the project folder."""

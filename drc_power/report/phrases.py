@@ -109,17 +109,17 @@ def _direction(finding: Finding) -> int:
 
 
 def margin_text(margin: float | None) -> str:
-    """The margin in percent with one decimal; more where it would read as zero and is not, none past 1000 %.
+    """The margin in percent with one decimal; more where it would read as zero and is not; past ten times only that.
 
     >>> margin_text(-0.1389), margin_text(-0.00002), margin_text(-569.322), margin_text(None)
-    ('-13.9 %', '-0.002 %', '-56932 %', '-')
+    ('-13.9 %', '-0.002 %', '< -999 %', '-')
     """
     if margin is None or not math.isfinite(margin):
         return NOT_KNOWN
     percent = 100.0 * margin
     if percent and abs(percent) < 0.05:
         return f"{percent:.1g} %"
-    return f"{percent + 0.0:.{0 if abs(percent) >= 1000.0 else 1}f} %"
+    return "< -999 %" if percent < -999.0 else f"{percent + 0.0:.1f} %"
 
 
 def coverage_text(coverage: Coverage) -> str:
