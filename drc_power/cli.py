@@ -141,8 +141,10 @@ def check(options) -> int:
     from .report.terminal import to_table
     from .run import Run, check as run_check
 
-    result = run_check(options.file, Run(options.today, _progress, options.confirm_netlist, options.self_check, options.fails_from))
+    run = Run(options.today, _progress, options.confirm_netlist, options.self_check, options.fails_from)
+    result = run_check(options.file, run)
     _progress("")
+    sys.stderr.write("".join(f"{remark}\n" for remark in run.remarks))
     wanted = [(options.json, to_json), (options.markdown, to_markdown)]
     to_stdout = _deliver({path: writer(result) for path, writer in wanted if path}, [path for path, _ in wanted])
     if not to_stdout:

@@ -8,7 +8,7 @@ from dataclasses import dataclass, field, replace
 
 import numpy as np
 
-from .board import Board, Mode
+from .board import Board, Mode, stage_parts
 from .checks import House, Judgement, judge
 from .checks.house import describe
 from .checks.judge import finite_or_zero, make_finding, objective_of
@@ -45,7 +45,7 @@ class Run:
     confirm_netlist: bool = False
     self_check: bool = False
     fails_from: str | None = None
-    faults: list[str] = field(default_factory=list)
+    remarks: list[str] = field(default_factory=list)
 
 
 def check(path: str | os.PathLike[str], run: Run | None = None) -> Result:
@@ -59,7 +59,7 @@ def check(path: str | os.PathLike[str], run: Run | None = None) -> Result:
     nets: list[NetPoint] = []
     for mode in board.modes:
         run.progress(f"solving mode {mode.name}")
-        for found in _in_mode(board, mode, house):
+        for found in _in_mode(board, mode, house, run):
             findings += found[0]
             points += found[1]
             nets += found[2]
@@ -97,7 +97,7 @@ def _waivers(found) -> tuple[Waiver, ...]:
                         DIMENSIONS[w.value.dimension].unit) for w in found.waivers)
 
 
-def _in_mode(board: Board, mode: Mode, house: House) -> Iterator[tuple[list[Finding], list[OperatingPoint], list[NetPoint]]]:
+def _in_mode(board: Board, mode: Mode, house: House, run: Run) -> Iterator[tuple[list[Finding], list[OperatingPoint], list[NetPoint]]]:
     """Search one mode's box and read findings and points off its worst corners."""
     circuit = build_circuit(mode)
     engine = Engine(circuit)
@@ -108,7 +108,9 @@ def _in_mode(board: Board, mode: Mode, house: House) -> Iterator[tuple[list[Find
             [*_extremes(solution)] or [np.zeros((0, len(points)))])
 
     worst = worst_corners(circuit.box, objectives)
-    final = engine.solve(worst.points)
+    final = engine.solve(worst.points, polish=True)
+    if run.self_check:
+        _self_check(final, run)
     judgements = judge(final, house)
     n_judged = len(judgements)
     gaps = _gaps(engine, house, worst, judgements)
@@ -120,6 +122,23 @@ def _in_mode(board: Board, mode: Mode, house: House) -> Iterator[tuple[list[Find
             findings.append((k, finding))
     findings = _with_sensitivity(engine, house, worst, findings)
     yield findings, _points(final, worst, n_judged), _nets(final, worst, n_judged)
+
+
+BALANCED = 1e-9
+"""Relative imbalance of current or power past which a solution is a fault of the tool."""
+
+
+def _self_check(solution: Solution, run: Run) -> None:
+    """Hold current and power balance of every solved point against `BALANCED`."""
+    from .solve.balance import current_imbalance, power_imbalance
+
+    solved = ~solution.unsolved()
+    worst_i, worst_p = (float(f(solution)[solved].max(initial=0.0)) for f in (current_imbalance, power_imbalance))
+    mode = solution.circuit.mode.name
+    run.remarks.append(f"Self-check, mode {mode}: current in and out differ by {worst_i:.1e} of themselves, power by {worst_p:.1e}, "
+                       f"at {int(solved.sum())} corners.")
+    if max(worst_i, worst_p) > BALANCED:
+        raise ArithmeticError(f"mode {mode} does not balance: current {worst_i:.1e}, power {worst_p:.1e}")
 
 
 def _extremes(solution: Solution) -> Iterator[np.ndarray]:
@@ -236,8 +255,21 @@ def _result(board: Board, inputs, findings: list[Finding], points, nets, run: Ru
     result = Result(
         annotations.board_name, annotations.board_revision, str(annotations.netlist), len(board.netlist.parts),
         len(board.netlist.nets), inputs, tuple(sorted(findings, key=finding_key)), coverage, run.today, rows, _rails(board),
-        _loads(board), _rules(board), tuple(points), tuple(nets), tuple(board.notes), board.rules.fails_from)
+        _loads(board), _rules(board), tuple(points), tuple(nets), (*board.notes, *_never_blocked(board)), board.rules.fails_from)
     return replace(result, fails_from=run.fails_from) if run.fails_from else result
+
+
+def _never_blocked(board: Board) -> tuple[str, ...]:
+    """Switches whose off-state no mode describes: what they hold off then is judged nowhere, and that must be said."""
+    switches = [ref for ref in board.elements if board.parts[ref].kind in ("mosfet", "bjt", "igbt")]
+    staged = {str(ref) for mode in board.modes for stage in mode.view.stages.values()
+              if str(stage.kind) in ("half-bridge", "push-pull") or stage.frequency is not None for ref in stage_parts(stage)}
+    blocked = {ref for mode in board.modes for ref in switches if str(mode.parts[ref].note.state) in ("blocked", "linear")}
+    never = [ref for ref in switches if ref not in blocked | staged]
+    if not never:
+        return ()
+    return (f"Blocked in no mode, so what they hold off when they are off is not judged: {', '.join(never)}. "
+            "A mode with parts: {REF: {state: blocked}} does that.",)
 
 
 def _rails(board: Board) -> tuple[dict, ...]:

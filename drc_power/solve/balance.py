@@ -17,8 +17,8 @@ def current_imbalance(solution: Solution) -> np.ndarray:
             np.add.at(total, nodes, weight * solution.x[currents])
             np.add.at(through, nodes, np.abs(weight * solution.x[currents]))
     nodes = solution.system.nodes
-    # What flows by rounding alone, far below the network's own currents, is no imbalance.
-    scale = np.maximum(through[nodes], 1e-9 * through[nodes].max(axis=0, initial=0.0) + 1e-300)
+    # The leak that anchors a floating net, some 1e-17 A, is no imbalance: nothing below a millionth counts alone.
+    scale = np.maximum(through[nodes], 1e-6 * through[nodes].max(axis=0, initial=0.0) + 1e-300)
     return (np.abs(total[nodes]) / scale).max(axis=0, initial=0.0)
 
 

@@ -13,6 +13,9 @@ MAX_ITERATIONS = 60
 STEP_TOLERANCE = 1e-12
 """Converged when no unknown moves by more than this share of itself (of 1 below 1) and no branch changes its line."""
 
+SMALL_STEP = 1e-9
+"""Polishing moves nothing by more than this: a larger step would be no rounding."""
+
 DAMPING = ((10, 1.0), (25, 0.5), (MAX_ITERATIONS, 0.2))
 """Up to which iteration the step is taken at which length: a cycle between lines is broken by shorter steps."""
 
@@ -56,6 +59,14 @@ class Solver:
                 active, before = active[~done], after[:, ~done]
                 part = take(prepared, active)
         return x, converged
+
+    def polish(self, x: np.ndarray, prepared: Prepared) -> np.ndarray:
+        """One step more from a solution: it takes the rounding of large currents out of small ones."""
+        residual, entries = self.system.evaluate(x, prepared)
+        step = self._step(self.system.regime(x, prepared), residual, entries)
+        x = x.copy()
+        x[:-1] -= np.where(np.abs(step) <= SMALL_STEP * np.maximum(np.abs(x[:-1]), 1.0), step, 0.0)
+        return x
 
     def _keep_in_bounds(self, x: np.ndarray, bound_v: float) -> None:
         nodes, at = self.system.nodes, self.system.temperature_at

@@ -183,13 +183,15 @@ class Engine:
         self.system = System(circuit.branches, circuit.heat, circuit.reference)
         self.solver = Solver(self.system)
 
-    def solve(self, points: np.ndarray) -> Solution:
-        """The circuit at the points, shape (sample, variable)."""
+    def solve(self, points: np.ndarray, polish: bool = False) -> Solution:
+        """The circuit at the points, shape (sample, variable); polished where the last digits matter."""
         prepared = self.system.prepare(points)
         x, converged = self.solver.solve(starting_point(self.system, points), prepared)
         gain, runaway = np.zeros(points.shape[0]), {}
         if self.system.followed:
             x, converged, gain, runaway = self._settle(points, x, converged, prepared)
+        if polish and not runaway:
+            x = self.solver.polish(x, prepared)
         return Solution(self.circuit, self.system, points, x, prepared, converged, gain, runaway)
 
     def _settle(self, points: np.ndarray, x: np.ndarray, converged: np.ndarray, prepared: Prepared):
