@@ -11,7 +11,7 @@ import numpy as np
 from .board import Board, Mode, stage_parts
 from .checks import House, Judgement, judge
 from .checks.house import describe
-from .checks.judge import finite_or_zero, make_finding, objective_of
+from .checks.decide import finite_or_zero, make_finding, objective_of
 from .findings.model import Coverage, Finding, InputFile, NetPoint, OperatingPoint, Outside, PartRow, Result, Sensitivity
 from .findings.order import finding_key
 from .findings.waiving import Waiver, apply_waivers

@@ -46,7 +46,7 @@ def test_junction_case_and_ambient_are_in_order():
 def test_no_random_point_beats_a_worst_corner():
     """10,000 random points of the demo's box, interior and corners: none is worse than what the search reports."""
     from drc_power.checks import House, judge
-    from drc_power.checks.judge import objective_of
+    from drc_power.checks.decide import objective_of
     from drc_power.solve.search import worst_corners
 
     board, _, _ = read_board(DEMO / "rev-c.power.yaml", Run())
