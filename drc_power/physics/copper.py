@@ -51,7 +51,9 @@ class ChartFit(NamedTuple):
 
 CHART_FITS = {
     "ipc-2152-vacuum": ChartFit(0.0756, 0.4375, 0.5000, 0.0301, 30.0, 100.0, "ECSS-Q-ST-70-12C (2014), annex D.2"),
-    "cnes": ChartFit(0.0594, 0.4800, 0.5420, 0.0034, 8.0, 100.0, "ECSS-Q-ST-70-12C (2014), annex D.3, CNES/QFT/IN.0113"),
+    "cnes": ChartFit(
+        0.0594, 0.4800, 0.5420, 0.0034, 8.0, 100.0, "ECSS-Q-ST-70-12C (2014), annex D.3, CNES/QFT/IN.0113"
+    ),
     "ipc-2221a-inner": ChartFit(0.0240, 0.4393, 0.7252, 0.0002, 17.5, 100.0, "ECSS-Q-ST-70-12C (2014), annex D.4"),
 }
 """Fits of measured charts of track heating, seen in a transcription of the standard: verify against the document."""

@@ -2,7 +2,8 @@
 
 | symbol | name here | unit | meaning |
 |---|---|---|---|
-| H, L, t, S | height_m, length_m, thickness_m, spacing_m | m | height over the base, length along the flow, thickness, gap |
+| H, L | height_m, length_m | m | height over the base, length along the flow |
+| t, S | thickness_m, spacing_m | m | thickness of a fin, gap between two |
 | k | k_w_per_m_k | W/(m·K) | conductivity of the fins |
 | η | the efficiencies | - | heat of a fin over that of one at base temperature throughout |
 
@@ -59,8 +60,8 @@ def straight_fin_efficiency(height_m, thickness_m, k_w_per_m_k, h_w_per_m2_k):
 def annular_fin_efficiency(inner_radius_m, outer_radius_m, thickness_m, k_w_per_m_k, h_w_per_m2_k):
     """Efficiency of a round fin of even thickness, exact with an insulated rim, by Bessel functions.
 
-    η = 2 · r_1/(m · (r_2² − r_1²)) · [K_1(mr_1) · I_1(mr_2) − I_1(mr_1) · K_1(mr_2)]/[I_0(mr_1) · K_1(mr_2) + K_0(mr_1) · I_1(mr_2)],
-    m = √(2h/(k · t)).
+    η = 2 · r_1/(m · (r_2² − r_1²)) · [K_1(a) · I_1(b) − I_1(a) · K_1(b)]/[I_0(a) · K_1(b) + K_0(a) · I_1(b)],
+    m = √(2h/(k · t)), a = m · r_1, b = m · r_2.
 
     inner_radius_m: radius r_1 of the tube [m].
     outer_radius_m: radius r_2 of the rim; r_2 + t/2 takes a convecting rim in [m].
@@ -268,7 +269,8 @@ def _finned_w_per_k(fins, gaps_w_per_m2_k, outer_w_per_m2_k):
 def _flat_w_per_k(fins, t_base_c, t_air_c, facing, speed_m_per_s, altitude_m):
     width_m = fins.n_fins * fins.thickness_m + (fins.n_fins - 1) * fins.spacing_m
     base_m2 = fins.length_m * width_m
-    still_w_per_m2_k = natural_h_w_per_m2_k(base_m2 / (2 * (fins.length_m + width_m)), t_base_c, t_air_c, facing, altitude_m)
+    over_perimeter_m = base_m2 / (2.0 * (fins.length_m + width_m))
+    still_w_per_m2_k = natural_h_w_per_m2_k(over_perimeter_m, t_base_c, t_air_c, facing, altitude_m)
     gaps_w_per_m2_k = channel_h_w_per_m2_k(fins, t_air_c, t_air_c, speed_m_per_s, altitude_m)
     side_w_per_m2_k = natural_h_w_per_m2_k(fins.height_m, t_base_c, t_air_c, "vertical", altitude_m)
     sides = side_w_per_m2_k * 2.0 * fins.height_m * fins.length_m if facing == "up" else 0.0

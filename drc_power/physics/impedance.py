@@ -13,6 +13,7 @@ is a chain of bodies to which a sink can be added.
 from __future__ import annotations
 
 from fractions import Fraction
+from itertools import zip_longest
 from typing import NamedTuple
 
 import numpy as np
@@ -185,7 +186,8 @@ def cauer_to_foster(r_k_per_w, c_j_per_k):
 
 def _checked_terms(r_k_per_w, tau_s):
     r_k_per_w, tau_s = np.atleast_1d(np.asarray(r_k_per_w, dtype=float)), np.atleast_1d(np.asarray(tau_s, dtype=float))
-    refuse_unless(r_k_per_w.shape == tau_s.shape and tau_s.ndim == 1, "a Foster network has a time constant per resistance")
+    paired = r_k_per_w.shape == tau_s.shape and tau_s.ndim == 1
+    refuse_unless(paired, "a Foster network has a time constant per resistance")
     refuse_unless((r_k_per_w >= 0.0) & (tau_s > 0.0) & np.isfinite(tau_s), "Foster terms must be positive")
     return r_k_per_w, tau_s
 
@@ -230,14 +232,20 @@ def _per_decade(start_s, end_s):
 
 def _rational_impedance(terms):
     """Numerator and denominator of Σ R/(1 + s · τ), coefficients by rising power of s."""
-    numerator, denominator = [Fraction(0)], [Fraction(1)]
+    numerator, denominator = [], [Fraction(1)]
     for r, tau in terms:
-        widened = [a + b for a, b in zip([*numerator, Fraction(0)], [Fraction(0), *(tau * n for n in numerator)], strict=True)]
-        numerator = [w + r * d for w, d in zip(widened, [*denominator, *[Fraction(0)] * (len(widened) - len(denominator))], strict=True)]
-        denominator = [a + b for a, b in zip([*denominator, Fraction(0)], [Fraction(0), *(tau * d for d in denominator)], strict=True)]
-    while numerator[-1] == 0:
-        numerator.pop()
+        numerator = _plus(_times_pole(numerator, tau), [r * d for d in denominator])
+        denominator = _times_pole(denominator, tau)
     return numerator, denominator
+
+
+def _times_pole(polynomial, tau):
+    """The polynomial times (1 + s · τ)."""
+    return _plus(polynomial, [Fraction(0), *(tau * c for c in polynomial)])
+
+
+def _plus(one, other):
+    return [a + b for a, b in zip_longest(one, other, fillvalue=Fraction(0))]
 
 
 def _minus(minuend, subtrahend):

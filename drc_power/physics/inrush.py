@@ -136,8 +136,9 @@ def power_limited_path(c_f, v_step_v, p_limit_w, i_limit_a=np.inf, i_load_a=0.0)
     above_v = np.maximum(v_v, knee_v)
     limited_s = _power_limited_from_v_to_v(c_f, v_step_v, above_v, p_limit_w, i_load_a)
     last_a = np.where(np.isinf(i_limit_a), 1.0, i_limit_a - i_load_a)
-    last_s = charge_time_s(c_f, above_v - v_v, last_a)
-    return limited_s + np.where(above_v > v_v, last_s, 0.0), v_v, np.minimum(p_limit_w / np.maximum(v_v, 1e-300), i_limit_a)
+    last_s = np.where(above_v > v_v, charge_time_s(c_f, above_v - v_v, last_a), 0.0)
+    i_a = np.minimum(p_limit_w / np.maximum(v_v, 1e-300), i_limit_a)
+    return limited_s + last_s, v_v, i_a
 
 
 def resistor_path(c_f, v_step_v, r_ohm, i_load_a=0.0, n_time_constants=5.0):

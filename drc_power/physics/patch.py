@@ -33,6 +33,10 @@ class Laminate(NamedTuple):
     through_w_per_m_k: float = LAMINATE_THROUGH_W_PER_M_K
 
 
+FR4 = Laminate()
+"""The common board of 1.6 mm."""
+
+
 class PatchField(NamedTuple):
     """A quarter of a board around its patch: rises per watt of the whole pad, by layer and cell."""
 
@@ -64,7 +68,7 @@ def ring_conductance_w_per_k(inner_radius_m, outer_radius_m, sheet_w_per_k, h_w_
     """
     from scipy.special import i0e, i1e, k0e, k1e
 
-    refuse_unless(np.greater(outer_radius_m, inner_radius_m), "the outer edge of a ring must lie outside its inner edge")
+    refuse_unless(np.greater(outer_radius_m, inner_radius_m), "a ring's outer edge must lie outside its inner edge")
     m_per_m = np.sqrt(np.divide(h_w_per_m2_k, sheet_w_per_k))
     a, b = m_per_m * inner_radius_m, m_per_m * outer_radius_m
     edge_w_per_k = 2.0 * np.pi * sheet_w_per_k * b
@@ -75,7 +79,7 @@ def ring_conductance_w_per_k(inner_radius_m, outer_radius_m, sheet_w_per_k, h_w_
 
 
 def round_patch_rth_k_per_w(
-    pad_radius_m, copper_radius_m, board_radius_m, copper_thickness_m, h_w_per_m2_k, laminate=Laminate()
+    pad_radius_m, copper_radius_m, board_radius_m, copper_thickness_m, h_w_per_m2_k, laminate=FR4
 ):
     """Resistance of a round pad in round copper on a round board: the copper's ring with the bare board as its load.
 
@@ -108,7 +112,7 @@ def rectangular_patch(
     h_faces_w_per_m2_k,
     copper_below_m=(0.0, 0.0),
     vias_w_per_k=0.0,
-    laminate=Laminate(),
+    laminate=FR4,
     n_cells=14,
 ):
     """Pad, copper and board as rectangles about one centre, two layers of cells, solved by finite differences.
@@ -130,20 +134,25 @@ def rectangular_patch(
     >>> round(field.rth_k_per_w, 1)
     62.9
     """
-    nested = all(p <= c <= b and low <= b for p, c, b, low in zip(pad_m, copper_m, board_m, copper_below_m, strict=True))
-    refuse_unless(nested and min(pad_m) > 0.0, "the pad must lie within its copper and the copper within its board")
-    edges = [_edges(np.array([pad_m[axis], copper_m[axis], copper_below_m[axis], board_m[axis]]) / 2, n_cells) for axis in (0, 1)]
+    nested = all(
+        0.0 < p <= c <= b >= low for p, c, b, low in zip(pad_m, copper_m, board_m, copper_below_m, strict=True)
+    )
+    refuse_unless(nested, "the pad must lie within its copper and the copper within its board")
+    corners_m = np.array([pad_m, copper_m, copper_below_m, board_m]) / 2
+    edges = [_edges(corners_m[:, axis], n_cells) for axis in (0, 1)]
+    on_copper, on_copper_below, on_pad = (_covered(edges, size_m) for size_m in (copper_m, copper_below_m, pad_m))
+    bare_w_per_k = laminate.along_w_per_m_k * laminate.thickness_m / 2
+    covered_w_per_k = CONDUCTIVITY_W_PER_M_K * copper_thickness_m
+    sheets_w_per_k = bare_w_per_k + covered_w_per_k * np.array([on_copper, on_copper_below])
+    sheets_w_per_k[0] += PAD_SHEET_W_PER_K * on_pad
     widths_m, heights_m = (np.diff(axis) for axis in edges)
-    covers = [_covered(edges, size_m) for size_m in (copper_m, copper_below_m, pad_m)]
-    sheets = laminate.along_w_per_m_k * laminate.thickness_m / 2 + CONDUCTIVITY_W_PER_M_K * copper_thickness_m * np.array(covers[:2])
-    sheets[0] += PAD_SHEET_W_PER_K * covers[2]
     cell_m2 = np.outer(heights_m, widths_m)
-    through = laminate.through_w_per_m_k / laminate.thickness_m + vias_w_per_k / (pad_m[0] * pad_m[1]) * covers[2]
-    heat_w = np.zeros(sheets.shape)
-    heat_w[0] = covers[2] * cell_m2 / (pad_m[0] * pad_m[1])
-    faces = np.reshape(h_faces_w_per_m2_k, (2, 1, 1)) * cell_m2
-    rise_k = _solve(sheets, widths_m, heights_m, through * cell_m2, faces, heat_w)
-    pad_rise_k = np.sum(rise_k[0] * covers[2] * cell_m2) / np.sum(covers[2] * cell_m2)
+    on_pad_share = on_pad * cell_m2 / (pad_m[0] * pad_m[1])
+    through_w_per_k = laminate.through_w_per_m_k / laminate.thickness_m * cell_m2 + vias_w_per_k * on_pad_share
+    faces_w_per_k = np.reshape(h_faces_w_per_m2_k, (2, 1, 1)) * cell_m2
+    heat_w = np.array([on_pad_share, np.zeros_like(on_pad_share)])
+    rise_k = _solve(sheets_w_per_k, widths_m, heights_m, through_w_per_k, faces_w_per_k, heat_w)
+    pad_rise_k = np.sum(rise_k[0] * on_pad_share) / np.sum(on_pad_share)
     return PatchField(float(pad_rise_k), rise_k, cell_m2)
 
 

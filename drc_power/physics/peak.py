@@ -66,7 +66,9 @@ def _peak_of_row(t_s, p_w, r_k_per_w, tau_s, start_k):
 
 def _turning_points(t_s, p_w, terms, steps):
     """Rise and time where the slope passes through zero within each of some steps."""
-    states_k = np.array([foster_response_k(t_s[: steps[-1] + 1], p_w[: steps[-1] + 1], [r], [tau], [s])[steps] for r, tau, s in terms])
+    until = slice(steps[-1] + 1)
+    rises_k = [foster_response_k(t_s[until], p_w[until], [r], [tau], [start]) for r, tau, start in terms]
+    states_k = np.array(rises_k)[:, steps]
     length_s, low, high = np.diff(t_s)[steps], np.zeros(steps.size), np.ones(steps.size)
     r_k_per_w, tau_s, _ = (np.array(column)[:, np.newaxis] for column in zip(*terms, strict=True))
 

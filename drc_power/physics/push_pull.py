@@ -65,8 +65,8 @@ def class_b_device_loss_w(v_supply_v, v_peak_v, z_ohm, phase_rad=0.0):
     >>> round(float(class_b_device_loss_w(30.0, 60.0 / np.pi, 16.0)), 2)
     5.7
     """
-    half_wave_w = np.divide(v_peak_v, z_ohm) * (np.divide(v_supply_v, np.pi) - np.multiply(v_peak_v, np.cos(phase_rad)) / 4.0)
-    return nan_where(_outside(v_supply_v, v_peak_v, phase_rad), half_wave_w)
+    mean_v = np.divide(v_supply_v, np.pi) - np.multiply(v_peak_v, np.cos(phase_rad)) / 4.0
+    return nan_where(_outside(v_supply_v, v_peak_v, phase_rad), np.divide(v_peak_v, z_ohm) * mean_v)
 
 
 def class_b_worst_amplitude_v(v_supply_v, phase_rad=0.0, v_peak_max_v=np.inf):

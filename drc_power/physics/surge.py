@@ -83,7 +83,9 @@ def pulse_power_w(t_s, lengths_s, powers_w, exponent=0.5):
     """
     lengths_s, powers_w = np.asarray(lengths_s, dtype=float), np.asarray(powers_w, dtype=float)
     refuse_unless(lengths_s.size and np.all((lengths_s > 0.0) & (powers_w > 0.0)), "pulse ratings must be above 0")
-    refuse_unless((np.diff(lengths_s) > 0.0) & (np.diff(powers_w) <= 0.0), "longer pulses must be rated for no more power")
+    refuse_unless(
+        (np.diff(lengths_s) > 0.0) & (np.diff(powers_w) <= 0.0), "longer pulses must be rated for no more power"
+    )
     t_s = np.asarray(t_s, dtype=float)
     within_s = np.clip(t_s, lengths_s[0], lengths_s[-1])
     rated_w = np.exp(np.interp(np.log(within_s), np.log(lengths_s), np.log(powers_w)))

@@ -80,7 +80,9 @@ def resistive_edge_peak_w(v_off_v, v_on_v, i_on_a):
     >>> round(resistive_edge_peak_w(250.0, 2.0, 100.0), 1)
     6300.4
     """
-    refuse_unless(np.less_equal(v_on_v, np.divide(v_off_v, 2.0)), "the closed voltage must be at most half the open one")
+    refuse_unless(
+        np.less_equal(v_on_v, np.divide(v_off_v, 2.0)), "the closed voltage must be at most half the open one"
+    )
     return v_off_v**2 * i_on_a / (4.0 * (v_off_v - v_on_v))
 
 

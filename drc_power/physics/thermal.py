@@ -170,7 +170,9 @@ def linear_equilibrium_w(p_25_w, tempco_per_k, rth_k_per_w, t_ambient_c):
     """
     gain = np.asarray(linear_loop_gain(p_25_w, tempco_per_k, rth_k_per_w), dtype=float)
     runaway = ~(gain < 1.0)
-    return nan_where(runaway, p_25_w * (1.0 + tempco_per_k * np.subtract(t_ambient_c, 25.0)) / np.where(runaway, 1.0, 1.0 - gain))
+    return nan_where(
+        runaway, p_25_w * (1.0 + tempco_per_k * np.subtract(t_ambient_c, 25.0)) / np.where(runaway, 1.0, 1.0 - gain)
+    )
 
 
 def equilibrium_c(t_ambient_c, rth_k_per_w, p_fixed_w, p_25_w, scale_temperatures_c, scales):

@@ -197,7 +197,9 @@ def superposed_rise_k(at_s, t_s, p_w, zth, zth_integral):
     jumps_w = np.concatenate([p_w[..., :1], -p_w[..., -1:]], axis=-1)
     jumps_w = np.concatenate([jumps_w, np.where(h_s > 0.0, 0.0, lift_w)], axis=-1)
     jump_times_s = np.concatenate([t_s[[0, -1]], t_s[1:]])
-    since_jump_s, since_bend_s = (np.subtract.outer(np.asarray(at_s, dtype=float), start) for start in (jump_times_s, t_s))
+    since_jump_s, since_bend_s = (
+        np.subtract.outer(np.asarray(at_s, dtype=float), start) for start in (jump_times_s, t_s)
+    )
     steps = np.where(since_jump_s >= 0.0, zth(np.maximum(since_jump_s, 0.0)), 0.0)
     ramps = np.where(since_bend_s >= 0.0, zth_integral(np.maximum(since_bend_s, 0.0)), 0.0)
     return jumps_w @ steps.T + slope_changes @ ramps.T
@@ -268,5 +270,8 @@ def _pulse_train_share(t_on_s, period_s, after_s, r_k_per_w, tau_s):
     outside = ~(np.greater_equal(t_on_s, 0.0) & np.less_equal(t_on_s, period_s) & np.greater(period_s, 0.0))
     t_on_s, period_s = np.where(outside, 0.0, t_on_s), np.where(outside, 1.0, period_s)
     terms = zip(np.atleast_1d(r_k_per_w), np.atleast_1d(tau_s), strict=True)
-    share = sum(r * np.expm1(-t_on_s / tau) / np.expm1(-period_s / tau) * np.exp(-np.maximum(after_s, 0.0) / tau) for r, tau in terms)
+    share = sum(
+        r * np.expm1(-t_on_s / tau) / np.expm1(-period_s / tau) * np.exp(-np.maximum(after_s, 0.0) / tau)
+        for r, tau in terms
+    )
     return nan_where(outside, share)

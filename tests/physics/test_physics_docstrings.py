@@ -12,7 +12,8 @@ import drc_power.physics
 from drc_power.physics.units import UNIT_OF_SUFFIX, unit_of
 
 MODULES = [
-    importlib.import_module(f"drc_power.physics.{found.name}") for found in pkgutil.iter_modules(drc_power.physics.__path__)
+    importlib.import_module(f"drc_power.physics.{found.name}")
+    for found in pkgutil.iter_modules(drc_power.physics.__path__)
 ]
 FUNCTIONS = [
     function
@@ -21,21 +22,25 @@ FUNCTIONS = [
     if function.__module__ == module.__name__ and not name.startswith("_")
 ]
 NOT_NUMBERS = {"text", "word", "flag", "record", "any"}
-"""In place of a unit: words, switches, records of this room, and numbers whose unit the caller chooses (tables alone)."""
+"""In place of a unit: words, switches, records of this room, numbers whose unit the caller chooses (tables alone)."""
 
 
 def name_of(function):
     return f"{function.__module__.removeprefix('drc_power.physics.')}.{function.__name__}"
 
 
-def units_by_parameter(docstring):
-    """{parameter: set of bracketed units} from lines such as `v_in_v, v_out_v: voltages [V], shape (corner,)`."""
-    found = {}
-    entry = re.compile(r"^    ([a-z]\w*(?:, [a-z]\w*)*): ((?:.|\n(?!    [a-z]\w*(?:, [a-z]\w*)*: |    [A-Z]|\n))*)", re.MULTILINE)
-    for names, text in entry.findall(docstring):
-        for name in names.split(", "):
-            found[name] = set(re.findall(r"\[([^\]\s]+)\]", text))
-    return found
+ENTRY = re.compile(r"^(?P<names>[a-z]\w*(?:, [a-z]\w*)*): (?P<text>.*(?:\n    .*)*)", re.MULTILINE)
+"""`v_in_v, v_out_v: voltages [V], shape (corner,)`, carried on by indented lines."""
+
+
+def units_by_parameter(function):
+    """{parameter: the bracketed units of its entry}."""
+    entries = ENTRY.finditer(inspect.getdoc(function) or "")
+    return {
+        name: set(re.findall(r"\[([^\]\s]+)\]", entry["text"]))
+        for entry in entries
+        for name in entry["names"].split(", ")
+    }
 
 
 @pytest.mark.parametrize("module", MODULES, ids=lambda module: module.__name__)
@@ -56,14 +61,16 @@ def test_has_source_example_and_result(function):
 
 @pytest.mark.parametrize("function", FUNCTIONS, ids=name_of)
 def test_every_parameter_carries_its_unit(function):
-    documented = units_by_parameter(function.__doc__ or "")
+    documented = units_by_parameter(function)
     for name in inspect.signature(function).parameters:
         assert name in documented, f"{name} is not documented"
         units, unit = documented[name], unit_of(name)
         if unit:
             assert units == {unit}, f"{name} is said in {units}, its name says {unit}"
         else:
-            assert units and units <= {"-"} | NOT_NUMBERS | set(UNIT_OF_SUFFIX.values()), f"{name}: no unit, not even [-]"
+            assert units and units <= {"-"} | NOT_NUMBERS | set(UNIT_OF_SUFFIX.values()), (
+                f"{name}: no unit, not even [-]"
+            )
             assert units & ({"-"} | NOT_NUMBERS) or len(units) > 1, f"{name} has a unit but not in its name"
 
 

@@ -59,13 +59,16 @@ def test_a_point_of_the_curve_is_exact_and_has_no_step_but_the_last(v_v, i_a):
 
 def test_a_vertical_line_gives_its_later_point():
     curve = [1.0, 10.0, 10.0, 40.0], [20.0, 20.0, 5.0, 1.0]
-    np.testing.assert_allclose(curve_current_a([np.nextafter(10.0, 0), 10.0, 40.0], *curve), [20.0, 5.0, 1.0], rtol=1e-12)
+    np.testing.assert_allclose(
+        curve_current_a([np.nextafter(10.0, 0), 10.0, 40.0], *curve), [20.0, 5.0, 1.0], rtol=1e-12
+    )
     breakdown = [1.0, 60.0, 60.0], [10.0, 2.0, 0.1]
     np.testing.assert_allclose(curve_current_a([60.0, 60.001], *breakdown), [0.1, 0.0])
 
 
 @pytest.mark.parametrize(
-    "curve", [([1.0, 0.5], [1.0, 1.0]), ([0.0, 1.0], [1.0, 1.0]), ([1.0, 2.0], [1.0, 0.0]), ([1.0], [1.0, 2.0]), ([], [])]
+    "curve",
+    [([1.0, 0.5], [1.0, 1.0]), ([0.0, 1.0], [1.0, 1.0]), ([1.0, 2.0], [1.0, 0.0]), ([1.0], [1.0, 2.0]), ([], [])],
 )
 def test_a_curve_that_cannot_be_drawn_is_refused(curve):
     with pytest.raises(OutsideRange):
@@ -110,7 +113,9 @@ def test_where_one_of_two_curves_has_ended_only_its_neighbour_itself_allows_anyt
 
 
 def test_questions_that_are_no_numbers_get_none():
-    np.testing.assert_array_equal(np.isnan(pulse_current_a([np.nan, 10.0, 10.0], [1e-3, np.nan, -1.0], PULSES, DC)), True)
+    np.testing.assert_array_equal(
+        np.isnan(pulse_current_a([np.nan, 10.0, 10.0], [1e-3, np.nan, -1.0], PULSES, DC)), True
+    )
     assert np.isnan(safe_current_a(10.0, 1e-3, np.nan, 175.0, PULSES, DC))
     assert np.isnan(safe_current_a(10.0, 1e-3, np.nan, 175.0, PULSES, DC, scaling="power"))
 
@@ -135,7 +140,8 @@ def test_arrays_broadcast_like_numpy():
 
 
 @pytest.mark.parametrize(
-    ("t_case_c", "expected"), [(25.0, 1.0), (100.0, 0.5), (175.0, 0.0), (np.nextafter(175.0, UP), 0.0), (300.0, 0.0), (-5.0, 1.2)]
+    ("t_case_c", "expected"),
+    [(25.0, 1.0), (100.0, 0.5), (175.0, 0.0), (np.nextafter(175.0, UP), 0.0), (300.0, 0.0), (-5.0, 1.2)],
 )
 def test_case_factor(t_case_c, expected):
     assert case_factor(t_case_c, 175.0) == pytest.approx(expected, abs=1e-12)
@@ -201,7 +207,9 @@ def test_instability_is_past_one_and_never_at_a_negative_tempco():
     assert instability_gain(60.0, 1.0, -0.01) < 0
 
 
-@pytest.mark.parametrize(("t_case_c", "expected"), [(-40.0, 1.0), (25.0, 1.0), (200.0, 0.4), (np.nextafter(200.0, UP), 0.0)])
+@pytest.mark.parametrize(
+    ("t_case_c", "expected"), [(-40.0, 1.0), (25.0, 1.0), (200.0, 0.4), (np.nextafter(200.0, UP), 0.0)]
+)
 def test_second_breakdown_by_the_case(t_case_c, expected):
     assert second_breakdown_factor(t_case_c, 200.0, 0.4) == pytest.approx(expected, abs=1e-12)
 

@@ -73,7 +73,9 @@ def test_a_power_limit_alone_ends_in_time():
 def test_a_precharge_resistor_is_its_circuit(i_load_a):
     c_f, v_step_v, r_ohm = 1e-3, 24.0, 10.0
     t_s, v_v, i_a = inrush.resistor_path(c_f, v_step_v, r_ohm, i_load_a)
-    solved = solve_ivp(lambda _, v: -(v / r_ohm - i_load_a) / c_f, [0, t_s[-1]], [v_step_v], t_eval=t_s, rtol=1e-9, atol=1e-9)
+    solved = solve_ivp(
+        lambda _, v: -(v / r_ohm - i_load_a) / c_f, [0, t_s[-1]], [v_step_v], t_eval=t_s, rtol=1e-9, atol=1e-9
+    )
     np.testing.assert_allclose(v_v, solved.y[0], rtol=1e-6)
     np.testing.assert_allclose(i_a, v_v / r_ohm)
 

@@ -20,7 +20,12 @@ def fin_by_ode(r_1, r_2, thickness, k, h):
     grid = np.linspace(r_1, r_2, 200)
     start = np.array([np.ones(200), np.zeros(200)])
     solved = solve_bvp(
-        lambda r, y: [y[1], m2 * y[0] - y[1] / r], lambda a, b: [a[0] - 1, b[1]], grid, start, tol=1e-8, max_nodes=50_000
+        lambda r, y: [y[1], m2 * y[0] - y[1] / r],
+        lambda a, b: [a[0] - 1, b[1]],
+        grid,
+        start,
+        tol=1e-8,
+        max_nodes=50_000,
     )
     return -k * thickness * 2 * np.pi * r_1 * solved.sol(r_1)[1] / (2 * h * np.pi * (r_2**2 - r_1**2))
 
@@ -77,7 +82,11 @@ def test_a_sink_that_would_glow_is_not_answered():
 
 @settings(max_examples=40)
 @given(
-    st.floats(0, 5), st.floats(0, 5), st.sampled_from(["vertical", "up", "down"]), st.floats(30, 120), st.floats(0, 4000)
+    st.floats(0, 5),
+    st.floats(0, 5),
+    st.sampled_from(["vertical", "up", "down"]),
+    st.floats(30, 120),
+    st.floats(0, 4000),
 )
 def test_more_air_more_emissivity_less_altitude_give_off_more(one, other, faces, t_base_c, altitude_m):
     slow, fast = sorted((one, other))

@@ -69,7 +69,14 @@ def test_integral_is_scipys(t_s, rth):
 
 @pytest.mark.parametrize(
     ("times", "values"),
-    [([1.0, 1.0], [1.0, 2.0]), ([1.0, 2.0], [2.0, 1.0]), ([0.0, 1.0], [0.1, 1.0]), ([1.0], [0.0]), ([], []), ([1.0], [1.0, 2.0])],
+    [
+        ([1.0, 1.0], [1.0, 2.0]),
+        ([1.0, 2.0], [2.0, 1.0]),
+        ([0.0, 1.0], [0.1, 1.0]),
+        ([1.0], [0.0]),
+        ([], []),
+        ([1.0], [1.0, 2.0]),
+    ],
 )
 def test_a_curve_that_is_none_is_refused(times, values):
     for ask in (table_zth_k_per_w, table_zth_integral_k_s_per_w):
@@ -142,4 +149,6 @@ def test_a_fit_of_a_foster_network_is_that_network_to_a_percent():
     times_s = np.geomspace(1e-5, 10, 25)
     fit = fit_foster(times_s, foster_zth_k_per_w(times_s, r, tau))
     at_s = np.geomspace(1e-5, 10, 200)
-    np.testing.assert_allclose(foster_zth_k_per_w(at_s, fit.r_k_per_w, fit.tau_s), foster_zth_k_per_w(at_s, r, tau), rtol=0.015)
+    np.testing.assert_allclose(
+        foster_zth_k_per_w(at_s, fit.r_k_per_w, fit.tau_s), foster_zth_k_per_w(at_s, r, tau), rtol=0.015
+    )

@@ -79,9 +79,11 @@ def test_cells_and_bessel_agree_where_both_apply(pad_mm, copper_mm, board_mm):
 @settings(max_examples=15, deadline=None)
 @given(st.floats(6e-3, 30e-3), st.floats(1.05, 1.9), st.floats(18e-6, 105e-6), st.floats(4, 20))
 def test_more_area_copper_or_air_is_never_hotter(side_m, growth, copper_m, h):
-    ask = lambda side, thick, coefficient: rectangular_patch(  # noqa: E731
-        PAD, (side, side), BOARD, thick, (coefficient, coefficient)
-    ).rth_k_per_w
+    ask = lambda side, thick, coefficient: (
+        rectangular_patch(  # noqa: E731
+            PAD, (side, side), BOARD, thick, (coefficient, coefficient)
+        ).rth_k_per_w
+    )
     base = ask(side_m, copper_m, h)
     assert ask(side_m * growth, copper_m, h) <= base * 1.002, "to the error of the cells"
     assert ask(side_m, copper_m * growth, h) <= base
@@ -99,7 +101,8 @@ def test_copper_below_and_vias_help():
 
 
 @pytest.mark.parametrize(
-    ("pad", "copper", "board"), [(PAD, (4e-3, 18e-3), BOARD), (PAD, (70e-3, 18e-3), BOARD), ((0.0, 5e-3), COPPER, BOARD)]
+    ("pad", "copper", "board"),
+    [(PAD, (4e-3, 18e-3), BOARD), (PAD, (70e-3, 18e-3), BOARD), ((0.0, 5e-3), COPPER, BOARD)],
 )
 def test_rectangles_that_do_not_nest_are_refused(pad, copper, board):
     with pytest.raises(OutsideRange):

@@ -25,7 +25,9 @@ def test_heat_in_is_heat_out_at_every_node(seed):
     rng = np.random.default_rng(seed)
     links, to_ambient = random_network(rng, 40)
     p_w, t_ambient_c = rng.uniform(0, 20, 40), 40.0
-    temps_c = thermal.network_temperatures_c(thermal.conductance_matrix_w_per_k(40, links, to_ambient), p_w, t_ambient_c)
+    temps_c = thermal.network_temperatures_c(
+        thermal.conductance_matrix_w_per_k(40, links, to_ambient), p_w, t_ambient_c
+    )
     out_w = to_ambient * (temps_c - t_ambient_c)
     for i, j, g in links:
         flow_w = g * (temps_c[i] - temps_c[j])
@@ -39,7 +41,9 @@ def test_network_by_corners_and_its_resistance_matrix_agree():
     matrix = thermal.conductance_matrix_w_per_k(12, *random_network(rng, 12))
     p_w, ambient_c = rng.uniform(0, 5, (7, 12)), rng.uniform(-40, 60, 7)
     whole = thermal.network_temperatures_c(matrix, p_w, ambient_c)
-    by_resistance = thermal.steady_temperatures_c(thermal.resistance_matrix_k_per_w(matrix, np.arange(12)), p_w, ambient_c)
+    by_resistance = thermal.steady_temperatures_c(
+        thermal.resistance_matrix_k_per_w(matrix, np.arange(12)), p_w, ambient_c
+    )
     np.testing.assert_allclose(by_resistance, whole, rtol=1e-10)
     stacked = thermal.network_temperatures_c(np.broadcast_to(matrix, (7, 12, 12)), p_w, ambient_c)
     np.testing.assert_allclose(stacked, whole, rtol=1e-10)
@@ -59,7 +63,8 @@ def test_a_diagonal_is_every_part_by_itself():
 
 
 @pytest.mark.parametrize(
-    ("links", "to_ambient"), [([(0, 1, 1.0)], [0.0, 0.0, 1.0]), ([(0, 1, 0.1), (0, 2, 0.3)], [0.0, 0.0, 0.0]), ([], [1.0, 1.0, 0.0])]
+    ("links", "to_ambient"),
+    [([(0, 1, 1.0)], [0.0, 0.0, 1.0]), ([(0, 1, 0.1), (0, 2, 0.3)], [0.0, 0.0, 0.0]), ([], [1.0, 1.0, 0.0])],
 )
 def test_a_node_without_a_path_to_ambient_is_refused(links, to_ambient):
     matrix = thermal.conductance_matrix_w_per_k(3, links, to_ambient)
@@ -69,7 +74,10 @@ def test_a_node_without_a_path_to_ambient_is_refused(links, to_ambient):
         thermal.resistance_matrix_k_per_w(matrix, [0])
 
 
-@pytest.mark.parametrize(("links", "to_ambient"), [([(0, 1, 0.0)], [1, 1]), ([(0, 1, -1.0)], [1, 1]), ([], [-1, 1]), ([(0, 1, np.inf)], [1, 1])])
+@pytest.mark.parametrize(
+    ("links", "to_ambient"),
+    [([(0, 1, 0.0)], [1, 1]), ([(0, 1, -1.0)], [1, 1]), ([], [-1, 1]), ([(0, 1, np.inf)], [1, 1])],
+)
 def test_a_conductance_that_is_none_is_refused(links, to_ambient):
     with pytest.raises(OutsideRange):
         thermal.conductance_matrix_w_per_k(2, links, to_ambient)

@@ -1,4 +1,4 @@
-"""Temperature over time: within 0.01 % of an ODE solution, periodic to 1e-9, energy kept, a million samples a second."""
+"""Temperature over time: within 0.01 % of an ODE, periodic to 1e-9, energy kept, a million samples a second."""
 
 import time
 
@@ -117,7 +117,9 @@ def test_pulse_train_peak_and_valley_are_those_of_the_periodic_answer(period_s, 
     t_on_s = duty * period_s
     times = np.array([0.0, t_on_s, t_on_s, period_s])
     periodic = transient.foster_periodic_k(times, np.array([9.0, 9.0, 0.0, 0.0]), R, TAU)
-    peak_k, valley_k = (f(9.0, t_on_s, period_s, R, TAU) for f in (transient.pulse_train_peak_k, transient.pulse_train_valley_k))
+    peak_k, valley_k = (
+        f(9.0, t_on_s, period_s, R, TAU) for f in (transient.pulse_train_peak_k, transient.pulse_train_valley_k)
+    )
     assert peak_k == pytest.approx(periodic[1], rel=1e-9, abs=1e-12)
     assert valley_k == pytest.approx(periodic[3], rel=1e-9, abs=1e-12)
     zth = lambda t: foster_zth_k_per_w(t, R, TAU)  # noqa: E731
@@ -167,7 +169,9 @@ def test_the_peak_between_samples(seed):
 def test_the_peak_of_a_power_that_only_rises_is_its_end():
     peak_k, when_s = foster_peak_k([0.0, 1.0, 2.0], [0.0, 5.0, 6.0], R, TAU, start_k=[0.0, 0.0, 0.0, 2.0])
     assert when_s == 2.0
-    assert peak_k == pytest.approx(transient.foster_response_k([0.0, 1.0, 2.0], [0.0, 5.0, 6.0], R, TAU, [0, 0, 0, 2.0])[-1])
+    assert peak_k == pytest.approx(
+        transient.foster_response_k([0.0, 1.0, 2.0], [0.0, 5.0, 6.0], R, TAU, [0, 0, 0, 2.0])[-1]
+    )
 
 
 @settings(max_examples=30)
@@ -181,7 +185,13 @@ def test_more_power_is_never_cooler(seed, more):
 
 @pytest.mark.parametrize(
     ("times", "powers"),
-    [([0.0, -1.0], [1.0, 1.0]), ([0.0, np.nan], [1.0, 1.0]), ([0.0, 1.0], [1.0, np.inf]), ([0.0, 1.0], [1.0]), ([], [])],
+    [
+        ([0.0, -1.0], [1.0, 1.0]),
+        ([0.0, np.nan], [1.0, 1.0]),
+        ([0.0, 1.0], [1.0, np.inf]),
+        ([0.0, 1.0], [1.0]),
+        ([], []),
+    ],
 )
 def test_a_record_that_is_none_is_refused(times, powers):
     with pytest.raises(OutsideRange):

@@ -28,20 +28,29 @@ def exact_rise(power, t):
 @pytest.mark.parametrize("name", SHAPES)
 def test_exact_peak(name):
     power, times, powers, peak, when = SHAPES[name]
-    found = minimize_scalar(lambda t: -exact_rise(power, t), bounds=(0.1, 1.0), method="bounded", options={"xatol": 1e-7})
+    found = minimize_scalar(
+        lambda t: -exact_rise(power, t), bounds=(0.1, 1.0), method="bounded", options={"xatol": 1e-7}
+    )
     assert -found.fun == pytest.approx(peak, abs=0.5e-4)
     assert found.x == pytest.approx(when, abs=0.5e-3)
     if times is None:
         times = np.linspace(0, 1, 401)
         powers = power(times)
-    zth, integral = (lambda t: table_zth_k_per_w(t, [1.0], [1.0])), (lambda t: table_zth_integral_k_s_per_w(t, [1.0], [1.0]))
+    zth, integral = (
+        (lambda t: table_zth_k_per_w(t, [1.0], [1.0])),
+        (lambda t: table_zth_integral_k_s_per_w(t, [1.0], [1.0])),
+    )
     ours = transient.superposed_rise_k([when, found.x], times, powers, zth, integral)
     assert ours == pytest.approx(-found.fun, rel=2e-5)
 
 
 @pytest.mark.parametrize(
     ("name", "energy", "equal_energy", "over"),
-    [("falling triangle", 1 / 2, 0.7071, 0.50), ("rising triangle", 1 / 2, 0.7071, 0.06), ("half sine", 2 / np.pi, 0.7979, 0.19)],
+    [
+        ("falling triangle", 1 / 2, 0.7071, 0.50),
+        ("rising triangle", 1 / 2, 0.7071, 0.06),
+        ("half sine", 2 / np.pi, 0.7979, 0.19),
+    ],
 )
 def test_equal_energy_rule_reads_high(name, energy, equal_energy, over):
     length_s = transient.equivalent_length_s(energy, 1.0)
