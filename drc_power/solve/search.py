@@ -2,7 +2,8 @@
 
 By the sign of each quantity's change along each side a first corner is guessed, and random corners and interior
 points are tried beside it; then sides are flipped one at a time, for every quantity from its own worst point so far,
-until no flip makes anything worse. A box of few sides is searched at every corner.
+until no flip makes anything worse. A box of few sides is searched at every corner. Where a quantity is worst inside
+the box (a matched load, a duty of a half), shrinking steps along the sides that matter follow it there.
 """
 
 from __future__ import annotations
@@ -22,6 +23,9 @@ WHOLE_BOX_SIDES = 7
 """A box of so many sides or fewer is searched at every corner."""
 
 MAX_ROUNDS = 6
+N_SHRINKS = 14
+"""How often the step inside the box is halved, from a quarter of a side: to some 1e-5 of it."""
+
 N_RANDOM = 64
 SEED = 20
 SAME = 1e-9
@@ -45,9 +49,15 @@ def worst_corners(box: Box, objectives: Objectives) -> Worst:
     """Search the box. The followed objectives come first in the result, then the others."""
     search = _Search(box, objectives)
     search.start()
-    for _ in range(MAX_ROUNDS):
-        if not search.flip_sides():
-            break
+    if search.n_free:
+        for _ in range(MAX_ROUNDS):
+            before = search.worst_values()
+            while search.flip_sides():
+                pass
+            search.look_inside()
+            search.refine_inside()
+            if not search.is_worse_than(before):
+                break
     return search.result()
 
 
@@ -63,8 +73,8 @@ class _Search:
         self.n_followed = 0
         self.seen: dict[bytes, int] = {}
 
-    def evaluate(self, points: np.ndarray) -> bool:
-        """Add points not seen yet; whether any was new."""
+    def evaluate(self, points: np.ndarray) -> None:
+        """Add the points that were not seen yet."""
         new = []
         for point in points:
             key = point.tobytes()
@@ -72,12 +82,11 @@ class _Search:
                 self.seen[key] = len(self.points) + len(new)
                 new.append(point)
         if not new:
-            return False
+            return
         followed, others = self.objectives(np.array(new))
         self.n_followed, values = len(followed), np.vstack([followed, others])
         self.points = np.vstack([self.points, new])
         self.values = values if self.values is None else np.hstack([self.values, values])
-        return True
 
     def start(self) -> None:
         """The typical point, each side's ends, then the corner that each objective's signs point to, and random points."""
@@ -92,9 +101,11 @@ class _Search:
             self.evaluate(self._all_corners())
             return
         index = [self.seen[point.tobytes()] for point in ends]
-        at_low, at_high = self.values[:, index[1::2]], self.values[:, index[2::2]]
+        at_low, at_high, inside = self.values[:, index[1::2]], self.values[:, index[2::2]], self.values[:, [index[0]]]
         corners = np.tile(self.typical, (self.values.shape[0], 1))
-        corners[:, self.free] = np.where(at_low < at_high, self.low[self.free], self.high[self.free])
+        ends = np.where(at_low < at_high, self.low[self.free], self.high[self.free])
+        is_valley = inside < np.minimum(at_low, at_high) - SAME * np.maximum(1.0, np.abs(inside))
+        corners[:, self.free] = np.where(is_valley, self.typical[self.free], ends)
         self.evaluate(np.vstack([corners, self._random()]))
 
     def _all_corners(self) -> np.ndarray:
@@ -104,22 +115,89 @@ class _Search:
         return points
 
     def flip_sides(self) -> bool:
-        """Flip every side at every worst point; whether that made any followed objective worse."""
-        followed = slice(0, self.n_followed)
-        before = self.values[followed].min(axis=1)
-        worst = np.unique(self.values[followed].argmin(axis=1))
-        if self.n_free:
-            self.evaluate(self._neighbours(self.points[worst]))
-        after = self.values[followed].min(axis=1)
-        return bool((after < before - SAME * np.maximum(1.0, np.abs(before))).any())
+        """Flip every side at every worst point, then all that made it worse together; whether anything got worse."""
+        before = self.worst_values()
+        points = self._worst_points()
+        neighbours = [self._at_ends(point) for point in points]
+        self.evaluate(np.vstack([row for _, row in neighbours]))
+        self.evaluate(np.array([self._joined(k, point, *rows) for k, (point, rows) in
+                                enumerate(zip(points, neighbours, strict=True))]))
+        return self.is_worse_than(before)
 
-    def _neighbours(self, points: np.ndarray) -> np.ndarray:
-        out = np.repeat(points, self.n_free, axis=0)
-        side = np.tile(self.free, len(points))
-        row = np.arange(len(out))
-        middle = (self.low + self.high)[side] / 2.0
-        out[row, side] = np.where(out[row, side] > middle, self.low[side], self.high[side])
-        return out
+    def look_inside(self) -> None:
+        """Try the middle of every side that matters at every worst point."""
+        before = self.worst_values()
+        middles = []
+        for k, point in enumerate(self._worst_points()):
+            sides, rows = self._at_ends(point)
+            moved = np.abs(self._values_at(rows)[k] - before[k])
+            for side in dict.fromkeys(sides[moved > SAME * max(1.0, abs(before[k]))].tolist()):
+                middle = point.copy()
+                middle[side] = (self.low[side] + self.high[side]) / 2.0
+                middles.append(middle)
+        self.evaluate(np.array(middles).reshape(-1, len(self.typical)))
+
+    def _worst_points(self) -> np.ndarray:
+        return self.points[self.values[: self.n_followed].argmin(axis=1)]
+
+    def worst_values(self) -> np.ndarray:
+        return self.values[: self.n_followed].min(axis=1)
+
+    def is_worse_than(self, before: np.ndarray) -> bool:
+        return bool((self.worst_values() < before - SAME * np.maximum(1.0, np.abs(before))).any())
+
+    def _at_ends(self, point: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        """The sides, and the point with each moved to the ends it is not at: both for one that lies inside."""
+        sides, rows = [], []
+        for side in self.free.tolist():
+            for end in (self.low[side], self.high[side]):
+                if point[side] != end:
+                    sides.append(side)
+                    row = point.copy()
+                    row[side] = end
+                    rows.append(row)
+        return np.array(sides, dtype=int), np.array(rows).reshape(-1, len(point))
+
+    def _joined(self, objective: int, point: np.ndarray, sides: np.ndarray, rows: np.ndarray) -> np.ndarray:
+        """The point with every move that alone made this objective worse; of two ends the worse one."""
+        values, joined = self._values_at(rows)[objective], point.copy()
+        for k in np.argsort(-values, kind="stable"):
+            if values[k] < self.values[objective, self.seen[point.tobytes()]]:
+                joined[sides[k]] = rows[k, sides[k]]
+        return joined
+
+    def _values_at(self, points: np.ndarray) -> np.ndarray:
+        """The followed objectives at points already evaluated, shape (objective, point)."""
+        return self.values[: self.n_followed, [self.seen[point.tobytes()] for point in points]]
+
+    def refine_inside(self) -> None:
+        """Follow the quantities that are worst inside the box along the sides on which they are."""
+        step = (self.high - self.low) / 4.0
+        for _ in range(N_SHRINKS):
+            moves = []
+            for objective in range(self.n_followed):
+                point = self.points[self.values[objective].argmin()]
+                moves += [point + sign * step * (np.arange(len(point)) == side) for side in self._inner_sides(objective, point)
+                          for sign in (-1.0, 1.0)]
+            if not moves:
+                return
+            self.evaluate(np.clip(np.array(moves), self.low, self.high))
+            step = step / 2.0
+
+    def _inner_sides(self, objective: int, point: np.ndarray) -> list[int]:
+        """The sides on which a worst point lies inside the box although the quantity depends on them."""
+        sides = []
+        for side in self.free[(point > self.low)[self.free] & (point < self.high)[self.free]]:
+            ends = []
+            for end in (self.low, self.high):
+                other = point.copy()
+                other[side] = end[side]
+                at = self.seen.get(other.tobytes())
+                ends.append(np.inf if at is None else self.values[objective, at])
+            here = self.values[objective].min()
+            if max(np.abs(np.array(ends) - here)) > SAME * max(1.0, abs(here)):
+                sides.append(int(side))
+        return sides
 
     def _random(self) -> np.ndarray:
         """Random corners and random interior points."""
@@ -134,13 +212,12 @@ class _Search:
         at = self.values.argmin(axis=1)
         influence = np.zeros((len(at), len(self.typical)))
         for objective, sample in enumerate(at):
-            for side, neighbour in zip(self.free, self._neighbours(self.points[sample][None]), strict=True):
+            for side, neighbour in zip(*self._at_ends(self.points[sample]), strict=True):
                 other = self.seen.get(neighbour.tobytes())
-                if other is None:
-                    other, own = self._from_typical(sample, side)
-                else:
-                    own = sample
-                influence[objective, side] = self.values[objective, other] - self.values[objective, own]
+                own, other = (sample, other) if other is not None else self._from_typical(sample, side)
+                moved = self.values[objective, other] - self.values[objective, own]
+                if abs(moved) > abs(influence[objective, side]):
+                    influence[objective, side] = moved
         used, places = np.unique(at, return_inverse=True)
         return Worst(self.points[used], places.reshape(-1), influence)
 
@@ -152,4 +229,4 @@ class _Search:
             point[side] = end[side]
             ends.append(self.seen[point.tobytes()])
         is_high = self.points[sample][side] > (self.low[side] + self.high[side]) / 2.0
-        return (ends[0], ends[1]) if is_high else (ends[1], ends[0])
+        return (ends[1], ends[0]) if is_high else (ends[0], ends[1])

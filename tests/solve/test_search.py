@@ -51,3 +51,22 @@ def test_influence_names_the_sides_that_matter():
 def test_a_box_without_sides_is_one_point():
     worst = worst_corners(Box(), lambda points: (np.zeros((1, len(points))), np.zeros((1, len(points)))))
     assert worst.points.shape == (1, 0)
+
+
+@pytest.mark.parametrize("n", [1, 5, 10])
+def test_a_worst_point_inside_the_box_is_followed(n):
+    """Worst at x0 = 0.3 and x1 = -0.4, a corner in the rest."""
+    def objective(points):
+        bowl = (points[:, 0] - 0.3) ** 2 + (points[:, 1] + 0.4) ** 2 if n > 1 else (points[:, 0] - 0.3) ** 2
+        return (bowl + 0.1 * points[:, 2:].sum(axis=1))[None]
+
+    worst = worst_corners(box_of(n), lambda points: (objective(points), np.zeros((0, len(points)))))
+    assert objective(worst.points)[0, worst.at[0]] == pytest.approx(-0.1 * max(0, n - 2), abs=2e-4)
+
+
+def test_half_duty_is_found():
+    """A ripple of D·(1 − D) is largest at a duty of a half, whatever ends the span has."""
+    box = Box()
+    box.param("duty", Span(0.2, 0.25, 0.95), "ratio", Mark("here"))
+    worst = worst_corners(box, lambda points: (-(points * (1.0 - points)).T, np.zeros((0, len(points)))))
+    assert worst.points[worst.at[0], 0] == pytest.approx(0.5, abs=1e-3)
