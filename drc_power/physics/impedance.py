@@ -35,6 +35,8 @@ class Foster(NamedTuple):
     tau_s: np.ndarray
     residual: float
     """Largest deviation at the curve's own points, as a share of them [-]."""
+    longest_s: float
+    """Until when the network stands for its curve [s]: infinity where the final value was given."""
 
 
 def foster_zth_k_per_w(t_s, r_k_per_w, tau_s):
@@ -63,10 +65,11 @@ def table_zth_k_per_w(t_s, times_s, zth_k_per_w, rth_k_per_w=None):
     t_s: time since the power was switched on, not below 0, infinity for steady state [s], any shape.
     times_s: abscissae, above 0 and rising [s], shape (point,).
     zth_k_per_w: ordinates, above 0 and not falling [K/W], shape (point,).
-    rth_k_per_w: final value [K/W]; left out, the curve's last point stands for it.
-    Returns the impedance [K/W], shape of t_s; NaN for a negative time. Before the first point it falls with
-    √t, past the last it goes on along the last line up to the final value. Both read high, since a chip falls
-    at least so fast towards short times and its curve bends downward towards long ones.
+    rth_k_per_w: final value [K/W]; left out, nothing is said past the last point.
+    Returns the impedance [K/W], shape of t_s; NaN for a negative time and past the last point without a final
+    value. Before the first point it falls with √t, past the last it goes on along the last line up to the
+    final value. Both read high, since a chip falls at least so fast towards short times and its curve bends
+    downward towards long ones.
     Source: common practice; one-dimensional heat flow into a half space for √t.
 
     >>> round(float(table_zth_k_per_w(3e-3, [1e-3, 10e-3], [0.13, 0.5])), 4)
@@ -75,7 +78,7 @@ def table_zth_k_per_w(t_s, times_s, zth_k_per_w, rth_k_per_w=None):
     lines = _lines(*_checked_table(times_s, zth_k_per_w), rth_k_per_w)
     t_s = np.asarray(t_s, dtype=float)
     line = lines[:, np.searchsorted(lines[0, 1:], t_s, side="right")]
-    return nan_where(~(t_s >= 0.0), _on_line(np.maximum(t_s, 0.0), line))
+    return nan_where(~_answered(t_s, times_s, rth_k_per_w), _on_line(np.maximum(t_s, 0.0), line))
 
 
 def table_zth_integral_k_s_per_w(t_s, times_s, zth_k_per_w, rth_k_per_w=None):
@@ -84,18 +87,20 @@ def table_zth_integral_k_s_per_w(t_s, times_s, zth_k_per_w, rth_k_per_w=None):
     t_s: upper end of the integral, not below 0 and finite [s], any shape.
     times_s: abscissae, above 0 and rising [s], shape (point,).
     zth_k_per_w: ordinates, above 0 and not falling [K/W], shape (point,).
-    rth_k_per_w: final value [K/W]; left out, the curve's last point stands for it.
-    Returns the integral, the rise per watt a second of rising power [K.s/W], shape of t_s.
+    rth_k_per_w: final value [K/W]; left out, nothing is said past the last point.
+    Returns the integral, the rise per watt a second of rising power [K.s/W], shape of t_s; NaN where
+    `table_zth_k_per_w` is.
     Source: integral of z · (t/t_k)^m, line by line.
 
-    >>> round(float(table_zth_integral_k_s_per_w(0.04, [0.01], [1.0])), 9)
+    >>> round(float(table_zth_integral_k_s_per_w(0.04, [0.01], [1.0], 1.0)), 9)
     0.036666667
     """
     lines = _lines(*_checked_table(times_s, zth_k_per_w), rth_k_per_w)
     t_s = np.asarray(t_s, dtype=float)
     k = np.searchsorted(lines[0, 1:], t_s, side="right")
     whole = np.append(0.0, np.cumsum(_integral_on_line(lines[0, 1:], lines[:, :-1])))
-    return nan_where(~(t_s >= 0.0), whole[k] + _integral_on_line(np.maximum(t_s, 0.0), lines[:, k]))
+    integral = whole[k] + _integral_on_line(np.maximum(t_s, 0.0), lines[:, k])
+    return nan_where(~_answered(t_s, times_s, rth_k_per_w), integral)
 
 
 def fit_foster(times_s, zth_k_per_w, rth_k_per_w=None):
@@ -103,10 +108,11 @@ def fit_foster(times_s, zth_k_per_w, rth_k_per_w=None):
 
     times_s: abscissae, above 0 and rising [s], shape (point,).
     zth_k_per_w: ordinates, above 0 and not falling [K/W], shape (point,).
-    rth_k_per_w: final value, which the network goes on to past the last point [K/W]; left out, it ends where
-        the curve's own trend takes it.
-    Returns a `Foster`: resistances [K/W], time constants [s] and the largest deviation at the curve's own
-    points, as a share of them [-]. Between two points with a kink the network bulges above the straight line.
+    rth_k_per_w: final value, which the network goes on to past the last point [K/W]; left out, the network
+        says nothing past that point.
+    Returns a `Foster`: resistances [K/W], time constants [s], the largest deviation at the curve's own points as
+    a share of them [-], and how long it holds [s]. Between two points with a kink the network bulges above the
+    straight line.
     Raises OutsideRange for a curve that falls or starts at 0.
     Source: Lawson and Hanson, Solving Least Squares Problems, 1974 (scipy.optimize.nnls); common practice.
 
@@ -130,7 +136,8 @@ def fit_foster(times_s, zth_k_per_w, rth_k_per_w=None):
         rows, weights = np.vstack([rows, np.full(taus_s.size, WEIGHT_FINAL / final)]), np.append(weights, WEIGHT_FINAL)
     r_k_per_w = nnls(rows, weights)[0]
     residual = np.max(np.abs(shares[printed] @ r_k_per_w - 1.0))
-    return Foster(r_k_per_w[r_k_per_w > 0.0], taus_s[r_k_per_w > 0.0], float(residual))
+    longest_s = float(times_s[-1]) if rth_k_per_w is None else np.inf
+    return Foster(r_k_per_w[r_k_per_w > 0.0], taus_s[r_k_per_w > 0.0], float(residual), longest_s)
 
 
 def foster_to_cauer(r_k_per_w, tau_s):
@@ -212,6 +219,10 @@ def _lines(times_s, zth_k_per_w, rth_k_per_w):
         times_s, zth_k_per_w = np.append(times_s, growth * times_s[-1]), np.append(zth_k_per_w, final)
     anchors_s, anchors_k_per_w = np.append(times_s[0], times_s), np.append(zth_k_per_w[0], zth_k_per_w)
     return np.array([np.append(0.0, times_s), anchors_s, anchors_k_per_w, np.append(exponents, 0.0)])
+
+
+def _answered(t_s, times_s, rth_k_per_w):
+    return (t_s >= 0.0) & (t_s <= (np.inf if rth_k_per_w is not None else times_s[-1]))
 
 
 def _on_line(t_s, line):

@@ -33,8 +33,9 @@ def test_a_point_of_the_table_is_exact_and_has_no_step(t_s, expected):
         (0.0, None, 0.0),
         (1e-7, None, 0.0012),
         (3e-3, None, float(np.exp(np.interp(np.log(3e-3), np.log(TIMES_S), np.log(ZTH))))),
-        (0.2, None, 1.2),
-        (np.inf, None, 1.2),
+        (0.1, None, 1.2),
+        (np.nextafter(0.1, 1), None, np.nan),
+        (np.inf, None, np.nan),
         (0.12, 1.36, 1.2 * 1.2 ** np.log10(2.4)),
         (0.2, 1.36, 1.36),
         (np.inf, 1.36, 1.36),
@@ -47,6 +48,13 @@ def test_between_and_beyond(t_s, rth, expected):
     assert table_zth_k_per_w(t_s, TIMES_S, ZTH, rth) == pytest.approx(expected, rel=1e-12, nan_ok=True)
 
 
+def test_without_a_final_value_nothing_is_said_past_the_table():
+    past_s = np.nextafter(0.1, 1)
+    assert np.isnan(table_zth_integral_k_s_per_w(past_s, TIMES_S, ZTH))
+    assert fit_foster(TIMES_S, ZTH).longest_s == 0.1
+    assert fit_foster(TIMES_S, ZTH, 1.36).longest_s == np.inf
+
+
 def test_a_table_that_ends_level_below_the_final_value_jumps_to_it():
     ends = table_zth_k_per_w([1e-2, 1.0, 1.001], [1e-3, 1e-2, 1.0], [0.1, 0.5, 0.5], 0.6)
     np.testing.assert_allclose(ends, [0.5, 0.5, 0.6])
@@ -56,8 +64,10 @@ def test_one_point_follows_the_root_law():
     np.testing.assert_allclose(table_zth_k_per_w([0.0025, 0.01, 0.04, 1.0], [0.01], [1.0], 1.5), [0.5, 1.0, 1.5, 1.5])
 
 
-@pytest.mark.parametrize("t_s", [0.0, 3e-6, 1e-5, 3e-3, 0.1, 0.12, 3.0])
-@pytest.mark.parametrize("rth", [None, 1.36])
+@pytest.mark.parametrize(
+    ("t_s", "rth"),
+    [*((t, 1.36) for t in (0.0, 3e-6, 1e-5, 3e-3, 0.1, 0.12, 3.0)), *((t, None) for t in (0.0, 3e-3, 0.1))],
+)
 def test_integral_is_scipys(t_s, rth):
     pieces = np.concatenate([[0.0], [x for x in (*TIMES_S, 0.14) if x < t_s], [t_s]])
     zth = lambda t: float(table_zth_k_per_w(t, TIMES_S, ZTH, rth))  # noqa: E731
