@@ -12,6 +12,7 @@ from drc_power.survey.graph import directed
 from drc_power.survey.identify import identify
 from drc_power.survey.inlets import End
 from drc_power.survey.model import Element, Identity, Rail, Signal, Survey
+from drc_power.survey.neighbours import with_neighbours
 from drc_power.survey.paths import trace
 from drc_power.survey.rails_found import make_rails
 from drc_power.survey.stages import find_stages
@@ -22,7 +23,7 @@ from drc_power.survey.wiring import Wiring
 def build_survey(netlist: Netlist) -> Survey:
     """The survey of a netlist; see the package."""
     left_out = tuple(ref for ref, part in netlist.parts.items() if why_not_fitted(part))
-    identities = identify(netlist)
+    identities = with_neighbours(netlist, identify(netlist), left_out)
     wiring = Wiring(netlist, identities, left_out)
     nets = Standing(wiring)
     drivers = outlets.find_drivers(nets)

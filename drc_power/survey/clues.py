@@ -20,6 +20,8 @@ import re
 from functools import cache
 from typing import NamedTuple
 
+from drc_power.survey.families import FAMILIES
+
 
 class Clue(NamedTuple):
     """One row: where `pattern` (case ignored) is found in the text of `source`, `kind` gains `weight`."""
@@ -157,6 +159,7 @@ TEXT = _rows(
     ("bjt", r"\b(npn|pnp)\b|bipolar.{0,12}transistor|darlington", 4.0),
     ("igbt", r"\bigbt\b(?!.{0,14}driver)", 5.0),
     ("diode", r"\b(schottky|rectifier|switching|fast|general purpose|signal)\b.{0,20}diode|^diode|\bdiodes?\b(?!.{0,12}(driver|bridge|control))|recovery rectifier", 3.0),
+    ("diode", r"\b(schottky|ultrafast|rectifier)\b(?!.{0,20}(bridge|controller|driver))", 1.5),
     ("bridge", r"diode bridge|bridge rectifier|rectifier bridge", 6.0),
     ("zener", r"\bzener\b", 8.0),
     ("tvs", r"\btvs\b|transient.{0,3}voltage.{0,3}suppress|\besd\b.{0,20}protect|varistor|surge suppress|voltage dependent resistor", 8.0),
@@ -166,6 +169,7 @@ TEXT = _rows(
     ("linear-regulator", r"(linear|li-?ion|li-?po|lithium|battery).{0,24}charg|charge management controller|charger", 5.0),
     ("linear-regulator", r"\bldo\b|low.?drop.?out|linear (voltage )?regulator|(fixed|adjustable|positive|negative).{0,20}regulator(?!.{0,20}switch)|\d+ ?m?A.{0,12}(voltage )?regulator|ddr termination", 5.0),
     ("switching-regulator", r"\b(buck|boost|sepic|step.?(up|down)|switch(ing|ed|mode)?.?(mode)?|flyback|charge pump)\b.{0,40}(regulator|converter|inverter)|simple switcher|dc.?[-/]?dc (converter|module|step|buck|boost)|power (module|stage)|isolated dc", 5.0),
+    ("switching-regulator", r"\breg(ulator)?\b.{0,12}\b(buck|boost|step|switch)|\b(buck|boost)\b.{0,6}\breg", 5.0),
     ("ic", r"\b(buck|boost|pwm|flyback|switching|mppt|step.?down|step.?up|dc.?dc)\b.{0,30}controller|controller.{0,30}(buck|boost|external)", 4.0),
     ("load-switch", r"load switch|power.{0,14} switch|high.?side.{0,12}switch|hot.?swap|e-?fuse|ideal diode(?!.{0,16}controller)|current.limit(ed|ing).{0,10}switch|usb power|smart switch", 5.0),
     ("gate-driver", r"(gate|mosfet|igbt|fet|half.?bridge|bridge|high.?side|low.?side).{0,24}driver(?!.{0,24}(with|integrated) (fet|mosfet))", 5.0),
@@ -219,26 +223,6 @@ FOOTPRINT = _rows(
     ("motor", r"\bmotor\b", 1.0),
 )
 
-VALUE = _rows(
-    "value", "part number",
-    ("linear-regulator", r"(^|[^\d])(LM|UA|MC|L|KA|LD|NCP|MIC|AZ|TS|NJM|BA|CJ|HT|WS)?7[89][LMTN]?\d\d([A-Z]|$|[-_ ])", 4.0),
-    ("linear-regulator", r"\b\w{0,6}1117|(LM|LT|UA)\d?3(17|37|38|50)\b|LM3(17|37)|LM1084|LT108[3-6]|LT1(129|521|763|764|962|963)|LT30\d\d|LP298\d|LP38\d|LP59\d\d|LM29(31|36|40|41)|MIC(29|37|39|52|53|55)\d|AP(2112|2114|2127|2204|2210|7333|7361|7365|7380)|MCP17(00|02|03|54|55|90|92)|MCP18\d\d|XC62\d\d|HT7[1-8]\d\d|TPS7\d\d|TLV7(0|1|3|4|5|6|7)\d|ADP1[2567]\d|ADM71|RT9(0|1)\d\d|SPX(38|58|29)|NCP(11|16|40|51|55|56|57|58|69)\d|LD(39|59|L1|K1|FM)\d|ME6\d\d\d|S-?1[12]\d\d|TC1(0|1|2)\d\d|ISL80\d|BA\d\dBC|TCR\d|L78\d\d|L4940|MAX(1658|1793|8887|8510|8511)|TPS51200|TPS748\d|XC6206|SGM20\d|RP1\d\d", 3.5),
-    ("linear-regulator", r"^(MCP738\d\d|TP40[57]\d|TP5400|LTC405\d|LTC406\d|BQ2(10|40[2-9]|407|423)\w*|MAX1(555|811)|STC405\d|ME405\d|CN3\d{3}|LTH7|XT2052)", 5.0),
-    ("switching-regulator", r"\bLM(25[79]\d|2678|2671|2676|267\d|2734|2840|22\d{3}|43[67]\d\d|5(00|01|16|57|60)\d{1,2})\b|LM259\d|LM257\d|LMR\d{5}|LMZ\w?\d|TPS5[46]\w?\d{2,4}|TPS6[0-3]\w?\d{2,4}|TPS82\d\d|TPS84\d|MP(1[45]|2[0-9]|44|86)\d\d|MT3608|XL(40|60|15|70)\d\d|SY8\d{3}|RT(6|8)\d{3}|AP(3|6[25])\d{3,4}|AP1509|AP150\d|ADP(2[13]|5)\d{2,3}|L5973|L597\d|ST1S|MCP16(0|2|3|4)\d|MC34063|MC33063|LT(13|17|19|30|34|36|37|80|83|86)\d\d\b|LTC(1877|3[1-6]\d\d|3780(?!))|LTM\d{4}|MAX(150|1[67]\d|756|8)\d{1,3}|TDA215\d|TDA21[24]\d|IR38\d\d|IRPS5401|NCP(1529|3020|3170|63\d\d)|ICL7660|LM2662|LM828|TPS6040|TC7660|R-?78\w|OKI-78|TSR ?\d|V78\d\d|TEC ?\d|MEE?1S|SY72\d|XC9\d\d|AOZ1\d|TLV62\d|PAM23\d|NCP34\d|RT57\d|MPM\d", 3.0),
-    ("mosfet", r"^(IR(F|L|FZ|FP|FB|FS|FH|LB|LML|LR|FR)\d?\w*\d|BSS\d+|BSC\d|BSZ\d|IP[ABDPTW]\d|2N700\d|BS170|BS250|AO[NDTIU]?[0-9]\d{2,4}|SI[0-9A-Z]\d{3}|SIR\d|SIS\w?\d|SQ[JDM]?\w?\d|DM[NPGT]\w?\d|CSD[1-8]\d|PSMN\w|BUK\w|FD[BCDMNPSV]\w?\d|FQ[APDBU]\w*\d|NT[DMRPJAZF]\w+\d|STP\d|STD\d|STB\d|STL\d|STH\w?\d|TPH\w|TK\d|RJK\d|VN\d{3,4}|VP\d{3,4}|TP0610|FS?8205|GS-?\d|EPC2\d|SCT\d|IMW|IPT\d|HUF|RFP\d|RFD\d|MTP\d|NDS\d|NDP\d|PMV\d|PMN\d|PMZ\w?\d|SSM\d|RU[EFMC]\d|WPM\d|LP\d{4}LT|CJ[23]\d{3}|DTU?S?\d{4}|NCE\w?\d|WSD\w?\d|WST\w?\d|HY\d{4}|CRSS|SUD\d|SUP\d|SUM\d|BSP\d{2,3}(?!5[0-6])|BUZ\d|SPP\d|IXF|IXT|APT\d|TSM\d)", 3.5),
-    ("bjt", r"^(Q?2N(2222|2907|390[46]|440[13]|505\d|555\d|540\d|3055|3019|3773|6\d{3})|BC\d{3}|BC[PVXW]\w?\d|BD\w?\d{2,3}|BF\d{3}|BU\d{3}|MMBT\w*\d|MMST\w?\d|PMBT|MJ[EDL]?\d|TIP\d|2S[ABCD]\d|S8050|S8550|S901\d|SS8[05]50|PZT\w*\d|FZT\d|ZTX\d|ZXT\w?\d|FMMT\d|MPSA\d|KSC\d|KSA\d|NJW\d|NSS\d|PBSS\d|DT[ACD]\d|MUN\d|390[46]$|ULN2\d{3}L?$)", 3.5),
-    ("ic", r"^ULN2[08]\d\d", 4.0),
-    ("diode", r"^(1N(400\d|4148|4448|540\d|58[12]\d|914|4150|6263)\w*|SS\d{2,3}\w*|SK\d{2,3}|SB\d{3,4}|SR\d{3}|B\d{3}[A-Z]?|MBR\w*\d|BA[TVSWR]\d+\w*|BAT\d|ES\d[A-J]|US\d[A-M]|RS\d[A-M]|S\d[A-M](B|C|L)?$|M[1-7]$|UF\d{4}|STPS\w*\d|STTH\w*\d|PMEG\w*\d|RB\d{3}\w*|HER\d|FR\d{3}|MUR\w*\d|MURS|V\d+P\d+|VS-?\d|SD\d{3}|CDBA?|DSS\d|LL4148|BYV|BYT|BYW|STPSC\w*|C3D\d|PMEG|CUS\d|SDM\d|DFLS\d|SBR\d|NRVB|SMD\d{2}$|GF1|SCS\d|NSR\d|ZLLS)", 3.5),
-    ("bridge", r"^(KBP\w?\d|GBU\d|GBJ|DF\d{2}|MB\d+S|DB10\d|ABS\d|2W\d\d|W0\dM?|KBU\d|KBPC|HD\d\d|TS\d{3}S?$|B\d+[CR]\d{4})", 4.0),
-    ("zener", r"^(BZ[XVTDG]\d*\w*|MM[SB]?Z\w*\d|1N47\d\d\w*|1N52\d\d\w*|1N53\d\d\w*|DDZ|PZU|ZMM|ZPD|UDZ|SMAZ|LM4040|LM385|TZ\w?\d)", 4.5),
-    ("tvs", r"^(SM[ABCDF]J\d|SMF\d|P[46]KE\d|P[46]SMA|1[.,]5KE|1[.,]5SMC|5KP|PESD|ESD\w*\d|USBLC|PRTR|SM712|SP0\d|SP[34]\d|TPD\d|D5V0|RCLAMP|SMDJ|5[.,]0SMDJ|SRV05|0402ESD|NUP\d|TVS|IP4\d{3}|CDSOT|GBLC|ESDA|SZNUP|SM24CAN|LC03|SL[DV]\d|\d{2}D\d{3}K|\d{2}E\d{3}K|VDR)", 4.5),
-    ("ferrite", r"BLM\d\d|MPZ\d|MMZ\d|HZ\d{4}|HI\d{4}|FBM\w|\d+\s*[RΩ]\s*@\s*\d+|\d+\s*ohm\w*\s*@|@\s*100\s*MHz|742792|FB\d{4}|bead|^ferrite|^FB_", 4.5),
-    ("fuse", r"polyfuse|\bPTC\b|resettable|MF-?(R|MSM|NSM|USM|PSM)|nano2?smd|0ZC[A-Z]|^FUSE|FUSR|1812L\d|0603L\d|1206L\d|RXEF|^RUEF|^\d+(\.\d+)?A? ?(fast|slow|T|FF)$", 3.0),
-    ("load-switch", r"^(TPS(20[1-9]\d|22\d{2,3}|25[0-9]\d+|2[0-9]{3}\w?|1[HS]\w+)|AP2(1[4-9]|2[2-9]|8)\d\w*|AP22\d{2,3}|MIC20\d\d|MIC25\d\d|SIP32\d|STMPS2\d|SY628\d|SLG5\w|NCP3(3|6|7|8)\d|FPF\d|RT97\d\d|TPS272\w|BTS\d|BTF\d|VN[QDI5]?\d\w*E|PROFET|ITS\d|LTC43(5[0-9]|6\d|7\d)(?!)|NCV84|AUIPS|IPS\d|MAX4995|STEF\d|TPS259\d|MP50\d\d|KTS1\d|DML30|TCK\d|NX5P|G51\d|GLF\d)", 3.5),
-    ("gate-driver", r"^(IR2[01]\d\d|IRS2\d|LM510[0-9]|UCC2[0-9]\d{3}|TC44\d|MCP14\w?\d|FAN73\d|FAN3\d|L638\d|L639\d|LTC444|MIC44|EG2\d|EG3\d|HIP40|HIP2\d|DRV83(01|02|03|05|23|53)|ISL\d{4}6|IXD\d|NCP51\d|NCP30\d|2ED\d|1ED\w?\d|6ED\d|SI827|SI823|ADUM4223|TPS28\d|MAX5[0-9]{2}[45]|FD6288|TF2\d{3})", 4.0),
-    ("ic", r"^(DRV8(8|4|7)\d\d|L29[38]|L62\d\d|A49\d\d|TMC\d{4}|TB6\d|VNH\d|BTN\d|BTS79|STSPIN|TPA\d|TDA(7|20|2[0-9])\d\d|LM(3886|4780|1875|386)|MAX98\d|PAM8|IRS20957|TAS\d|MAX7219|LT3750|INA\d|ACS7\d\d|ATMEGA|STM32|ESP\d|PIC\d|LPC\d|RP2|NRF|SAM[DE]|TL43\d|LM43[12]|REF\d|LT1[04]\d\d|NE5\d\d|LM3[135]\d|TL0\d\d|LTC41\d\d|BQ7\d{4}|BQ27\d{3}|MAX1\d{3,4}|74\w*\d|CD4\d{3}|LM5069|LTC43\d\d|LM74\d\d|LM5050|LTC78\d\d|LM511\d|LM51\d\d|LM34\d\d|UC[23]\d{3}|TL494|SG35\d|LTC3[78]\d\d|ISL8\d|TPS40\d|TPS43\d|LM27\d\d|LM3[01]\d\d|RT8\d20|MAX150)", 2.5),
-)
-
 MODEL = _rows(
     "model", "simulation model",
     ("resistor", r"^R$", 6.0), ("capacitor", r"^C$", 6.0), ("inductor", r"^L$", 6.0), ("diode", r"^D$", 3.0),
@@ -246,7 +230,10 @@ MODEL = _rows(
     ("switch", r"^SW$", 6.0),
 )
 
-CLUES: tuple[Clue, ...] = REFERENCE + SYMBOL + LIBRARY + TEXT + FOOTPRINT + VALUE + MODEL
+CLUES: tuple[Clue, ...] = (
+    REFERENCE + SYMBOL + LIBRARY + TEXT + FOOTPRINT + MODEL
+    + tuple(Clue("value", f.pattern, f.kind, f.weight, "part number") for f in FAMILIES)
+)
 
 
 @cache

@@ -8,7 +8,10 @@ from drc_power.netlist.model import Part
 
 _MARK = r"(?:DNP|DNF|DNI|DNM|DNS|NP|NF|NM|NA|N/A|DO NOT (?:POPULATE|FIT|PLACE|INSTALL|STUFF)|NOT (?:FITTED|POPULATED|PLACED|MOUNTED)|NO[ -]?POP|NO[ -]?STUFF|UNPOPULATED)"
 _VALUE = re.compile(rf"^(?:{_MARK}(?:$|[\s(_/:,;-])|.*[\s(_/;,]{_MARK}\)?$)", re.IGNORECASE)
-_FIELDS = {"dnp": "yes", "populate": "no", "fitted": "no", "fit": "no", "place": "no", "mount": "no", "config": "dnf"}
+_FIELDS = {
+    "dnp": "yes", "dnf": "yes", "dni": "yes", "dnm": "yes", "do not populate": "yes", "do not fit": "yes", "not fitted": "yes",
+    "populate": "no", "fitted": "no", "fit": "no", "place": "no", "mount": "no", "config": "dnf", "assembly": "dnf",
+}
 _YES = {"yes", "y", "true", "1", "x", "dnp", "dnf", ""}
 _NO = {"no", "n", "false", "0", "dnp", "dnf", "dni", "nf"}
 

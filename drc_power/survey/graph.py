@@ -45,7 +45,7 @@ def distances(founds: Sequence[Found], nets: Standing, sources: Iterable[str], k
 def directed(found: Found, nets: Standing, steps: Mapping[str, int]) -> tuple[str, str]:
     """(from, to) of an element: along conduction, away from the source, from a supply down to a return."""
     c = found.conduit
-    if c.one_way:
+    if c.one_way and c.kind not in ("zener", "tvs"):
         return c.a, c.b
     low_a, low_b = c.a in nets.low, c.b in nets.low
     if low_a != low_b:

@@ -33,7 +33,8 @@ def identify(netlist: Netlist) -> dict[str, Identity]:
 def _likeness(part: Part) -> tuple:
     pins = tuple((p.number, p.name, p.type) for p in part.pins)
     model = tuple(part.fields.get(name, "") for name in ("Sim.Device", "Sim.Type", "Spice_Primitive"))
-    return (letters(part.ref), part.library, part.symbol, part.value, part.footprint, part.description, part.keywords, model, pins)
+    return (letters(part.ref), part.library, part.symbol, part.value, part.footprint, part.description, part.keywords, model, pins,
+            _fields(part, _DESCRIBING), _fields(part, _NAMING))
 
 
 def _renamed(identity: Identity, part: Part) -> Identity:
@@ -63,15 +64,25 @@ def bare_symbol(symbol: str) -> str:
     return _COPY.sub("", symbol.rpartition(":")[2]) if len(symbol) > 3 else symbol
 
 
+_DESCRIBING = frozenset({"bom", "desc", "description", "comment", "partdescription", "part description", "manufacturer_description"})
+_NAMING = frozenset({"mpn", "part number", "partnumber", "part", "mfg#", "manf#", "manufacturer_part_number", "mfr part number", "mfr. no", "mpn1"})
+
+
+def _fields(part: Part, wanted: frozenset[str]) -> str:
+    """The texts of the part's own fields of these names, those that repeat its value left out."""
+    texts = (value for name, value in part.fields.items() if name.strip().lower() in wanted)
+    return " ".join(text for text in texts if text not in (part.value, part.description))
+
+
 def _texts(part: Part) -> dict[str, str]:
     symbol = bare_symbol(part.symbol)
     return {
         "reference": letters(part.ref),
         "symbol": symbol,
         "library": part.library.rpartition("/")[2],
-        "text": f"{part.description} {part.keywords}",
+        "text": f"{part.description} {part.keywords} {_fields(part, _DESCRIBING)}".strip(),
         "footprint": part.footprint,
-        "value": part.value,
+        "value": part.value if clues.matching("value", part.value) else _fields(part, _NAMING) or part.value,
         "model": part.fields.get("Sim.Device", "") or part.fields.get("Spice_Primitive", ""),
     }
 

@@ -63,7 +63,7 @@ ROWS: tuple[Row, ...] = (
     Row(lambda c: c.net in c.behind, 0.5, "something else may feed the net"),
     Row(lambda c: c.net in c.fed, -2.0, "something else feeds the net"),
     Row(lambda c: c.net in c.feeds, 1.5, "a pass element leads on from it"),
-    Row(lambda c: c.net in c.driven, -3.0, "a switch drives the net"),
+    Row(lambda c: c.net in c.driven, -20.0, "a switch drives the net"),
     Row(lambda c: len(c.others()) <= 4, 1.0, "few contacts"),
     Row(lambda c: bool(_INLET.search(c.words)), 1.0, "looks like an inlet"),
     Row(lambda c: bool(_OUTLET.search(c.words)), -1.5, "looks like an outlet"),
@@ -78,7 +78,7 @@ def _contacts(nets: Standing, founds: Sequence[Found]) -> list[tuple[float, End]
     passing = [f for f in founds if f.verdict.group == "pass"]
     fed, behind = fed_nets(nets, founds)
     feeds = frozenset(f.conduit.a for f in passing) | frozenset(f.conduit.b for f in passing if not f.conduit.one_way)
-    driven = frozenset(net for f in founds if f.verdict.group == "switch" and not f.conduit.one_way for net in (f.conduit.a, f.conduit.b) if net not in nets.supplies)
+    driven = _driven(nets, founds)
     found = []
     for part in nets.wiring.parts():
         if nets.wiring.kind(part.ref) == "connector":
@@ -89,6 +89,14 @@ def _contacts(nets: Standing, founds: Sequence[Found]) -> list[tuple[float, End]
                     words = tuple(row.words for row in ROWS if row.weight > 0 and row.holds(contact))
                     found.append((score, End(part.ref, net, return_of(nets, part), Verdict("source", ("contact where power comes in", *words), 0.6))))
     return found
+
+
+def _driven(nets: Standing, founds: Sequence[Found]) -> frozenset[str]:
+    """Nodes that a transistor, a relay or a driver chip moves: power comes out of them, not in."""
+    moved = {net for f in founds if f.verdict.group == "switch" and not f.conduit.one_way for net in (f.conduit.a, f.conduit.b)}
+    fixed = {net for f in founds if f.verdict.group == "pass" and f.conduit.kind not in ("inductor", "resistor") for net in (f.conduit.a, f.conduit.b)}
+    coils = {net for f in founds if f.verdict.group == "pass" and f.conduit.kind == "inductor" and moved & {f.conduit.a, f.conduit.b} for net in (f.conduit.a, f.conduit.b)}
+    return frozenset((moved - fixed | coils) - nets.supplies)
 
 
 def return_of(nets: Standing, part: Part) -> str:
@@ -125,9 +133,12 @@ class _Reach:
 
 
 def _twin(nets: Standing, other: End, end: End) -> bool:
-    """A second contact of the same make on the same net shares the job (two battery tabs)."""
+    """A second contact of the same make, or another that looks like an inlet, shares the net (a jack beside a terminal)."""
     parts = nets.wiring.netlist.parts
-    return parts[other.ref].symbol == parts[end.ref].symbol and not _OUTLET.search(parts[other.ref].value + parts[other.ref].ref)
+    part = parts[other.ref]
+    alike = part.symbol == parts[end.ref].symbol
+    inlet = len(part.nets_of()) <= 3 and bool(_INLET.search(f"{part.ref} {part.value} {part.symbol} {part.footprint}"))
+    return (alike or inlet) and not _OUTLET.search(parts[other.ref].value + parts[other.ref].ref)
 
 
 def _proper_sources(nets: Standing) -> list[End]:

@@ -11,7 +11,7 @@ from drc_power.survey.channel import texts
 from drc_power.survey.grounds import is_low_ohm
 from drc_power.survey.pins import plain
 from drc_power.survey.standing import MAIN_ENDS, SWITCHING_PIN, Standing
-from drc_power.survey.values import amperes, ohms, watts
+from drc_power.survey.values import amperes, farads, ohms, watts
 from drc_power.survey.wiring import Tap
 
 
@@ -59,6 +59,25 @@ def _power_resistor(nets: Standing, tap: Tap, value: float) -> bool:
     return 1.0 < value <= 200.0 and (rated >= 1.0 or bool(re.search(r"heater|TO-?2|DIN0[4-9]|25\d\d|L\d\d\.\dmm", f"{tap.part.value} {tap.part.footprint}", re.I)))
 
 
+def _precharge(nets: Standing, tap: Tap, value: float) -> bool:
+    """A resistor of power size on to another power net: it limits an inrush."""
+    return 5.0 < value <= 1000.0 and nets.is_power(nets.wiring.across(tap)) and has_power_size(tap.part)
+
+
+def has_power_size(part: Part) -> bool:
+    """Whether a resistor's value, description or footprint speaks of half a watt or more."""
+    rated = watts(f"{part.value} {part.description}") or 0.0
+    return rated >= 0.5 or bool(re.search(r"(?<!\d)(2010|2512|5025|6332|2816|4527)(?!\d)|DIN0[3-9]|TO-?2|wirewound|MELF_0207|Power", part.footprint, re.IGNORECASE))
+
+
+def _coupled(nets: Standing, tap: Tap) -> bool:
+    """A large capacitor in series with a contact or loudspeaker."""
+    if tap.kind != "capacitor" or (farads(tap.part.value) or 0.0) < 4.7e-6:
+        return False
+    other = nets.wiring.across(tap)
+    return other not in nets.low and other not in nets.supplies and bool(nets.wiring.tied(other, "connector") or nets.wiring.tied(other, "speaker"))
+
+
 def _ballast(nets: Standing, tap: Tap) -> bool:
     """A resistor to the return that is called a load, or a formula of a simulated one."""
     value = ohms(tap.part.value)
@@ -81,8 +100,10 @@ HANGS: tuple[Hang, ...] = (
     Hang(lambda n, t: t.kind == "led", 0.5, 0.5, "a light-emitting diode"),
     Hang(lambda n, t: t.kind == "led" and bool(re.search(r"laser|high.?power|\dW\b|\bCOB\b|strip", texts(t.part), re.I)), 1.5, 1.5, "a power light-emitting diode"),
     Hang(_ballast, 1.5, 1.5, "a load resistor"),
+    Hang(_coupled, 2.0, 2.0, "a load behind a coupling capacitor"),
     Hang(_resistor(lambda n, t, r: r >= 47 and not _power_resistor(n, t, r)), -0.6, -1.8, "resistors of signal size"),
     Hang(lambda n, t: t.kind in ("ic", "unknown") and t.terminal == "" and t.pin.type != "passive" and not SWITCHING_PIN.match(plain(t.pin.name)), -1.0, -2.0, "signal pins"),
+    Hang(_resistor(_precharge), 2.5, 2.5, "a precharge resistor to a supply"),
     Hang(lambda n, t: t.terminal == "supply" and t.kind in ("ic", "gate-driver"), 1.0, 2.0, "supply pins"),
     Hang(lambda n, t: t.kind == "optocoupler", -2.0, -2.0, "an optocoupler"),
     Hang(lambda n, t: t.terminal in ("gate", "base", "gate_2", "base_2"), -3.0, -3.0, "a gate"),

@@ -54,7 +54,7 @@ SUPPLY_NAME = re.compile(
 NOT_SUPPLY_NAME = re.compile(r"REF|SENSE|SNS|_EN$|^EN|PG(OOD)?$|OUT_?OK|CAP$|^V_?(FB|REF)|DET")
 GROUND_NAME = re.compile(r"^((A|P|D|S|E|C|I|Q)?GND\w*|GND.*|(A|D|P|I)?VSS\w*|EP|EPAD|THERMAL_?PAD|EXP_?PAD|0V|V_?\{?SS\w*\}?|VEE[TR]?|GROUND|CAGE)$")
 BOOST_NAME = re.compile(r"^(C?BOOT\w*|BST\w*|CB|VB\d?|HB|BS|VBST\w*|BOOST\w*|CBOOT|CPP|VCP|CP\w?)$")
-DRIVE_NAME = re.compile(r"^(HO\d?|LO\d?|[HL]DRV\w*|[UL]GATE\w*|[UL]G\d?|D[HL]\d?|DRV[HL]\w*|G[HL]\w{0,2}|HG|LG|TG\d?|BG\d?|GATE\w*|[ABCUVW]?H[ABCUVW]?_?OUT|HS?GATE|LS?GATE|INH[ABC]?GATE|GHS?|GLS?|DRV|PGATE|NGATE|CHG|DSG|HO[+-]|LO[+-])$")
+DRIVE_NAME = re.compile(r"^(HO\d?|LO\d?|[HL]DRV\w*|[UL]GATE\w*|[UL]G\d?|D[HL]\d?|DRV[HL]\w*|G[HL]\w{0,2}|HG|LG|TG\d?|BG\d?|GATE\w*|[ABCUVW]?H[ABCUVW]?_?OUT|HS?GATE|LS?GATE|INH[ABC]?GATE|GHS?|GLS?|DRV?|G?DRIVE|GD|EXT|NDRV|PDRV|PGATE|NGATE|CHG|DSG|HO[+-]|LO[+-])$")
 
 _TAIL = re.compile(r"[-_ ]?PAD\d*$|_\d+$")
 

@@ -27,6 +27,11 @@ class NetView(NamedTuple):
     def count(self, holds: Callable[[Tap], bool]) -> int:
         return sum(1 for tap in self.taps if holds(tap))
 
+    def taps_behind_converter(self) -> list[Tap]:
+        """Inductors from a converter's switch node to this net, where a capacitor holds it."""
+        coils = [t for t in self.wiring.tied(self.net, "inductor") if "switch_node" in self.wiring.terminals_on(self.wiring.across(t))]
+        return coils if self.decouplers() and "switch_node" not in self.wiring.terminals_on(self.net) else []
+
     def decouplers(self) -> list[Tap]:
         return [t for t in self.taps if t.kind == "capacitor" and self.wiring.across(t) in self.grounds]
 
@@ -80,6 +85,7 @@ ROWS: tuple[Row, ...] = (
     Row(lambda v: v.count(lambda t: t.kind in REGULATORS and t.terminal == "input"), 3.0, 3.0, "input of a regulator"),
     Row(lambda v: v.count(lambda t: t.kind in REGULATORS and t.terminal == "output"), 3.0, 3.0, "output of a regulator"),
     Row(lambda v: v.count(lambda t: t.kind == "bridge" and t.terminal == "plus"), 3.0, 3.0, "output of a rectifier"),
+    Row(lambda v: bool(v.taps_behind_converter()), 3.0, 3.0, "behind a converter's inductor"),
     Row(_steady_source, 3.0, 3.0, "source or battery"),
     Row(lambda v: v.count(lambda t: t.kind == "connector" and t.pin.number in pins.supply_pins(t.part)), 2.0, 2.0, "supply contact of a connector"),
     Row(lambda v: len(v.decouplers()), 0.5, 1.5, "capacitors to ground"),

@@ -24,13 +24,20 @@ def _rail(nets: Standing, net: str, elements: Sequence[Element]) -> Rail:
 
 def _fed_by(nets: Standing, net: str, elements: Sequence[Element]) -> tuple[str, ...]:
     """What supply current comes through to the rail; behind a converter's inductor stands the converter."""
-    direct = [e for e in elements if e.to_net == net and e.group in ("source", "pass", "switch")]
+    direct = [e for e in elements if e.to_net == net and e.group in ("source", "pass", "switch") and not _gives_back(e, elements)]
     fed: dict[str, None] = {tap.ref: None for tap in nets.wiring.taps(net) if tap.kind == "ic" and tap.pin.type == "power_out" and not is_ground_pin(tap.pin)}
     for e in direct:
         chips = [c.ref for c in elements if c.role == "switching-regulator" and c.to_net == e.from_net] if e.role == "inductor" else []
         for ref in chips or [e.ref]:
             fed[ref] = None
     return tuple(fed)
+
+
+def _gives_back(e: Element, elements: Sequence[Element]) -> bool:
+    """A freewheel diode returns what the rail itself has fed: nothing but diodes leads to where it starts."""
+    if e.role != "diode" or e.group != "switch":
+        return False
+    return not any(o.to_net == e.from_net and o.from_net != e.to_net for o in elements if o.group in ("pass", "switch") and o.role != "diode")
 
 
 def _voltage(nets: Standing, net: str, feeders: Iterable[str]) -> tuple[float | None, str]:

@@ -7,7 +7,7 @@ import re
 from drc_power.survey import pins
 from drc_power.survey.conduits import Conduit
 from drc_power.survey.grounds import is_low_ohm
-from drc_power.survey.loads import load_on
+from drc_power.survey.loads import has_power_size, load_on
 from drc_power.survey.pins import plain
 from drc_power.survey.standing import MAIN_ENDS, Standing
 from drc_power.survey.values import henries, ohms, watts
@@ -121,6 +121,8 @@ def judge_resistor(nets: Standing, c: Conduit) -> Verdict:
         verdict = _shunt(nets, c, value)
     elif value is not None and value <= 100.0:
         verdict = _dropper(nets, c, value)
+    elif value is not None and value <= 1000.0 and has_power_size(part) and nets.is_power(c.a) and nets.is_power(c.b):
+        verdict = Verdict("pass", ("limits an inrush between two power nets",), 0.7)
     else:
         verdict = None
     return verdict or _load_resistor(nets, c, value, watts(f"{part.value} {part.description}")) or signal(_why_signal(nets, c, value))
@@ -169,7 +171,7 @@ def _load_resistor(nets: Standing, c: Conduit, value: float | None, rated_w: flo
 def _why_signal(nets: Standing, c: Conduit, value: float | None) -> str:
     """The plainest reason that holds, for the reader."""
     wiring = nets.wiring
-    if any(wiring.tied(net, "led") for net in (c.a, c.b)):
+    if any(wiring.tied(net, "led") and not nets.is_any(net) for net in (c.a, c.b)):
         return "series resistor of a light-emitting diode"
     if any("feedback" in wiring.terminals_on(net) and not nets.is_power(net) for net in (c.a, c.b)):
         return "feedback divider"

@@ -14,7 +14,7 @@ _SCALE = {
 }
 _UNIT = {"ohm": r"(?:r|e|Ω|ω|ohms?)", "F": r"f", "H": r"h", "W": r"w", "A": r"a"}
 _NUMBER = r"(?P<whole>\d*(?:[.,]\d+)?)"
-_STEM = re.compile(r"^[RCL]\s*=\s*", re.IGNORECASE)
+_STEM = re.compile(r"^(?:[RCL]\s*=\s*|[<>~≈≥]\s*)", re.IGNORECASE)
 _SPLIT = re.compile(r"[\s_/;|()@±\[\]]+")
 
 
