@@ -22,6 +22,11 @@ def test_standard_atmosphere_is_that_of_fluids(altitude_m):
     assert room.density_share(altitude_m) == pytest.approx(standard.rho / 1.225, rel=2e-3)
 
 
+def test_a_surface_colder_than_the_air_takes_heat_as_a_hot_one_gives_it():
+    hot, cold = (convection.natural_h_w_per_m2_k(0.1, *pair) for pair in ((60.0, 20.0), (20.0, 60.0)))
+    assert cold == pytest.approx(hot, rel=1e-12)
+
+
 def test_air_ends():
     np.testing.assert_array_equal(np.isnan(air([-75.0, 230.0, -75.1, 230.1]).k_w_per_m_k), [False, False, True, True])
     np.testing.assert_array_equal(np.isnan(room.pressure_pa([-500.0, 11_000.0, -501.0, 11_001.0])), [0, 0, 1, 1])

@@ -47,6 +47,14 @@ def test_a_chart_fit_ends(fit, end_a):
     assert np.isnan(copper.chart_rise_k(end_a, 0.1e-3 * 35e-6, fit)), "hotter than the fit knows"
 
 
+def test_a_chart_fit_says_no_current_past_its_end():
+    """The area that carries just 8 A at 20 K, a little less and a little more of it."""
+    area_m2 = 1e-8 * (8.0 / copper.chart_current_a(20.0, 1e-8, "cnes")) ** (1 / (0.5420 * 20**0.0034))
+    currents_a = copper.chart_current_a(20.0, area_m2 * np.array([0.999, 1.001]), "cnes")
+    np.testing.assert_array_equal(np.isnan(currents_a), [False, True])
+    np.testing.assert_array_equal(np.isnan(copper.chart_current_a([-1.0, 0.0, 100.0, 100.1], 1e-8)), [1, 0, 0, 1])
+
+
 @given(TRACK_M2, st.floats(0, 8), st.floats(0, 8), st.sampled_from(sorted(copper.CHART_FITS)))
 def test_more_current_is_hotter_and_more_copper_cooler(area_m2, one_a, other_a, fit):
     for rise_k in (copper.ipc_2221_rise_k, lambda i, a: copper.chart_rise_k(i, a, fit)):
