@@ -8,7 +8,7 @@ from drc_power.netlist.model import Netlist
 from drc_power.survey import elements, inlets, outlets
 from drc_power.survey.elements import Found, judge_all
 from drc_power.survey.fitted import why_not_fitted
-from drc_power.survey.graph import directed
+from drc_power.survey.graph import directed, return_distances
 from drc_power.survey.identify import identify
 from drc_power.survey.inlets import End
 from drc_power.survey.model import Element, Identity, Rail, Signal, Survey
@@ -31,7 +31,8 @@ def build_survey(netlist: Netlist) -> Survey:
     founds = judge_all(wiring, nets)
     ways_in = inlets.find_sources(nets, founds)
     steps = inlets.steps_from(nets, founds, ways_in)
-    found_elements = _elements(netlist, identities, founds, nets, steps)
+    back_steps = return_distances(founds, nets, [end.back for end in ways_in])
+    found_elements = _elements(netlist, identities, founds, nets, (steps, back_steps))
     found_elements += [_end_element(identities, end) for end in (*ways_in, *drivers, *outlets.find_loads(nets, ways_in))]
     order = {ref: i for i, ref in enumerate(netlist.parts)}
     ordered = tuple(sorted(found_elements, key=lambda e: (order[e.ref], _GROUPS.index(e.group), e.from_net, e.to_net)))
@@ -51,13 +52,13 @@ def build_survey(netlist: Netlist) -> Survey:
 _GROUPS = ("source", "pass", "switch", "clamp", "load")
 
 
-def _elements(netlist: Netlist, identities: dict[str, Identity], founds: Sequence[Found], nets: Standing, steps: dict[str, int]) -> list[Element]:
+def _elements(netlist: Netlist, identities: dict[str, Identity], founds: Sequence[Found], nets: Standing, steps: tuple[dict[str, int], dict[str, int]]) -> list[Element]:
     made = []
     for found in founds:
         if not found.verdict.on_path:
             continue
         identity = identities[found.conduit.ref]
-        from_net, to_net = directed(found, nets, steps)
+        from_net, to_net = directed(found, nets, *steps)
         confidence = round(found.verdict.confidence * (0.5 + 0.5 * identity.confidence), 2)
         made.append(Element(identity.ref, found.verdict.group, identity.kind, from_net, to_net,
                             found.conduit.control or None, confidence, found.verdict.because + identity.because[:3]))

@@ -62,9 +62,17 @@ def judge_all(wiring: Wiring, nets: Standing) -> list[Found]:
         if not on_path:
             break
         settled |= on_path
-        for conduit in on_path:
-            nets.power |= {net for net in (conduit.a, conduit.b) if net not in nets.low and net not in nets.gates}
+        for conduit, verdict in on_path.items():
+            nets.power |= _energised(nets, conduit, verdict)
     return [Found(c, _after_all(nets, c, settled.get(c) or fresh[c])) for c in ways]
+
+
+def _energised(nets: Standing, conduit: Conduit, verdict: Verdict) -> set[str]:
+    """Nets that an element carries power to; a pass element with an end on a return carries return current only."""
+    ends = {conduit.a, conduit.b}
+    if verdict.group == "pass" and ends & nets.low and not conduit.one_way:
+        return set()
+    return ends - nets.low - nets.gates
 
 
 def _after_all(nets: Standing, conduit: Conduit, verdict: Verdict) -> Verdict:

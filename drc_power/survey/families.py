@@ -57,9 +57,9 @@ FAMILIES: tuple[Family, ...] = (
         BA[TVSWR]\d+ ES\d[A-J] US\d[A-M] RS\d[A-M] S\d[A-M][BCL]?$ M[1-7]$ UF\d{4} STPS\w*\d STTH\w*\d PMEG\w*\d RB\d{3} HER\d FR\d{3}
         MUR\w*\d V\d+P\d+ VS-?\d SD\d{3} CDBA? DSS\d LL4148 BYV BYT BYW C3D\d CUS\d SDM\d DFLS\d SBR\d NRVB SMD\d{2}$ GF1 SCS\d NSR\d ZLLS"""),
     _starting("bridge", 4.0, r"KBP\w?\d GBU\d GBJ DF\d{2} MB\d+S DB10\d ABS\d 2W\d\d W0\dM? KBU\d KBPC HD\d\d B\d+[CR]\d{4}"),
-    _starting("zener", 4.5, r"""
+    _starting("zener", 6.5, r"""
         BZ[XTVDG]\d*\w* MM[SB]?Z\w*\d 1N47\d\d 1N52\d\d 1N53\d\d DDZ PZU ZMM ZPD UDZ SMAZ LM4040 LM385 TZ\w?\d"""),
-    _starting("tvs", 4.5, r"""
+    _starting("tvs", 6.5, r"""
         SM[ABCDF]J\d SMF\d P[46]KE\d P[46]SMA 1[.,]5KE 1[.,]5SMC 5KP PESD ESD\w*\d USBLC PRTR SM712 SP0\d SP[34]\d TPD\d D5V0 RCLAMP SMDJ
         5[.,]0SMDJ SRV05 0402ESD NUP\d TVS IP4\d{3} CDSOT GBLC ESDA SZNUP SM24CAN LC03 SL[DV]\d \d{2}[DE]\d{3}K VDR TSM\d{2}A"""),
     Family("ferrite", 4.5, r"BLM\d\d|MPZ\d|MMZ\d|HZ\d{4}|HI\d{4}|FBM\w|\d+\s*[RΩ]\s*@\s*\d+|\d+\s*ohm\w*\s*@|@\s*100\s*MHz|742792|FB\d{4}|bead|^ferrite|^FB_"),

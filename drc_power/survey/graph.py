@@ -42,12 +42,31 @@ def distances(founds: Sequence[Found], nets: Standing, sources: Iterable[str], k
     return steps
 
 
-def directed(found: Found, nets: Standing, steps: Mapping[str, int]) -> tuple[str, str]:
+def return_distances(founds: Sequence[Found], nets: Standing, backs: Iterable[str]) -> dict[str, int]:
+    """Steps from the sources' returns to each return net, along pass elements: return current runs down them."""
+    ways: dict[str, list[str]] = {}
+    for c in (f.conduit for f in founds if f.verdict.group == "pass"):
+        ways.setdefault(c.a, []).append(c.b)
+        ways.setdefault(c.b, []).append(c.a)
+    steps = {net: 0 for net in backs if net in nets.low}
+    queue = deque(steps)
+    while queue:
+        net = queue.popleft()
+        for other in ways.get(net, ()):
+            if other not in steps and not nets.is_power(other):
+                steps[other] = steps[net] + 1
+                queue.append(other)
+    return steps
+
+
+def directed(found: Found, nets: Standing, steps: Mapping[str, int], back_steps: Mapping[str, int]) -> tuple[str, str]:
     """(from, to) of an element: along conduction, away from the source, from a supply down to a return."""
     c = found.conduit
     if c.one_way and c.kind not in ("zener", "tvs"):
         return c.a, c.b
     low_a, low_b = c.a in nets.low, c.b in nets.low
+    if c.a in back_steps and c.b in back_steps and back_steps[c.a] != back_steps[c.b]:
+        return (c.b, c.a) if back_steps[c.a] < back_steps[c.b] else (c.a, c.b)
     if low_a != low_b:
         return (c.b, c.a) if low_a else (c.a, c.b)
     if low_a and low_b:

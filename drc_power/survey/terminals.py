@@ -53,7 +53,7 @@ def _two_channels(part: Part, letters_: str) -> dict[str, tuple[str, ...]]:
         name = plain(pin.name)
         match = pattern.match(name)
         joined = "source+drain_2" if _JOINED.match(name) else _POWER_BLOCK.get(name, "")
-        if match:
+        if match and name not in _POWER_BLOCK:
             letter, index = match[1] or match[4], match[2] or match[3]
             joined = _TERMINAL[letter] + ("_2" if index == "2" else "")
         for terminal in filter(None, joined.split("+")):

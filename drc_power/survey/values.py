@@ -100,7 +100,7 @@ def henries(text: str) -> float | None:
     return None if value is None else float(f"{value:.6g}")
 
 
-_WATT = re.compile(r"(?<![\d.,/])(?P<top>\d+(?:[.,]\d+)?)(?:/(?P<bottom>\d+))?\s*(?P<milli>m?)W\b", re.IGNORECASE)
+_WATT = re.compile(r"(?<![\d.,])(?P<top>\d+(?:[.,]\d+)?)(?:/(?P<bottom>\d+))?\s*(?P<milli>m?)W\b", re.IGNORECASE)
 _AMPERE = re.compile(r"(?<![\w.,])(?P<number>\d+(?:[.,]\d+)?)\s*(?P<milli>m?)A(?![\w])")
 
 

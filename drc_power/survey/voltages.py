@@ -10,7 +10,7 @@ _CONTROL = re.compile(
     r"(\d*[NB]?)($|[_./})+-])|^~|#$|SENSE|_N$|V\d?PG(OOD)?$"
 )
 _BETWEEN = re.compile(r"(?<![\d.])([+-]?)(?:[NP]{1,2}(?=\d))?(\d{1,3})[VP](\d{1,2})(?!\d)")
-_PLAIN = re.compile(r"(?<![\d.A-UW-Z])([+-]?)P?(\d{1,3}(?:[.,]\d{1,2})?)V(?!\d)")
+_PLAIN = re.compile(r"(?:^|[^\dA-Z.]|V)([+-]?)[NP]{0,2}(\d{1,3}(?:[.,]\d{1,2})?)V(?!\d)")
 _AFTER_V = re.compile(r"^(?:V|VCC|VDD|VOUT|VIN|VBUS|PP|P)[_+]?(\d{1,2})$")
 _SHORT = {"33": 3.3, "18": 1.8, "25": 2.5, "50": 5.0, "15": 1.5, "28": 2.8, "5": 5.0, "3": 3.0, "12": None, "10": None, "24": 24.0}
 _SUPPLY = re.compile(
