@@ -34,7 +34,7 @@ def foster_response_k(t_s, p_w, r_k_per_w, tau_s, start_k=None):
     >>> foster_response_k([0.0, 0.01, 0.01, 0.02], [10.0, 10.0, 0.0, 0.0], [1.0], [0.01]).round(4).tolist()
     [0.0, 6.3212, 6.3212, 2.3254]
     """
-    t_s, p_w, starts_k = _checked(t_s, p_w, r_k_per_w, start_k)
+    t_s, p_w, starts_k = _checked(t_s, p_w, r_k_per_w, tau_s, start_k)
     rise_k = np.zeros(p_w.shape)
     for r, tau, start in zip(np.atleast_1d(r_k_per_w), np.atleast_1d(tau_s), starts_k, strict=True):
         rise_k += _term_k(t_s, p_w, r, tau, start)
@@ -55,7 +55,7 @@ def foster_end_k(t_s, p_w, r_k_per_w, tau_s, start_k=None):
     >>> foster_end_k([0.0, 0.01], [10.0, 10.0], [1.0, 0.5], [0.01, 1.0]).round(4).tolist()
     [6.3212, 0.0498]
     """
-    t_s, p_w, starts_k = _checked(t_s, p_w, r_k_per_w, start_k)
+    t_s, p_w, starts_k = _checked(t_s, p_w, r_k_per_w, tau_s, start_k)
     ends_k = []
     for r, tau, start in zip(np.atleast_1d(r_k_per_w), np.atleast_1d(tau_s), starts_k, strict=True):
         fading = np.exp(-(t_s[-1] - t_s) / tau)
@@ -219,12 +219,12 @@ def equivalent_length_s(energy_j, peak_w):
     return energy_j / peak_w
 
 
-def _checked(t_s, p_w, r_k_per_w, start_k):
+def _checked(t_s, p_w, r_k_per_w, tau_s, start_k):
     t_s, p_w = np.asarray(t_s, dtype=float), np.asarray(p_w, dtype=float)
     refuse_unless(t_s.ndim == 1 and t_s.size and p_w.shape[-1:] == t_s.shape, "power needs a value at every time")
     refuse_unless(np.isfinite(t_s).all() and np.isfinite(p_w).all(), "times and powers must be numbers")
     refuse_unless(np.diff(t_s) >= 0.0, "times must not fall")
-    foster_zth_k_per_w(0.0, r_k_per_w, np.ones(np.size(r_k_per_w)))
+    foster_zth_k_per_w(0.0, r_k_per_w, tau_s)  # refuses terms that are none
     starts_k = np.zeros((np.size(r_k_per_w),)) if start_k is None else np.asarray(start_k, dtype=float)
     return t_s, p_w, np.broadcast_to(starts_k, (np.size(r_k_per_w), *starts_k.shape[1:]))
 

@@ -198,6 +198,12 @@ def test_a_record_that_is_none_is_refused(times, powers):
         transient.foster_response_k(times, powers, R, TAU)
 
 
+def test_terms_that_are_none_are_refused():
+    for terms in (([1.0], [0.0]), ([-1.0], [1.0]), ([1.0, 1.0], [1.0])):
+        with pytest.raises(OutsideRange):
+            transient.foster_response_k([0.0, 1.0], [1.0, 1.0], *terms)
+
+
 def test_a_period_of_no_length_is_refused():
     with pytest.raises(OutsideRange):
         transient.foster_periodic_k([0.0, 0.0], [1.0, 2.0], R, TAU)
