@@ -6,203 +6,20 @@ from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass, replace
 from typing import Annotated, Any, ClassVar
 
-from pydantic import BeforeValidator, Field, PlainValidator, PrivateAttr
+from pydantic import BeforeValidator, Field, PrivateAttr
 from pydantic_core import PydanticCustomError
 
 from ..faults import Fault, InputError, Mark
 from .device_kinds import KINDS, LIMITS, SECTIONS_OF_ALL, Kind
-from .documents import record_from, refuse
-from .fields import (
-    Charge, Current, CurrentRating, EdgeTime, Factor, HeatCapacity, Named, Resistance, TemperatureCoefficient,
-    ThermalResistanceAboveZero, Voltage, VoltageCoefficient, VoltageMagnitude, VoltageRating, Word, as_branch, collected,
-    each, one_of, read_word, reader, table, table_reader,
+from .device_sections import (
+    FROM_ZERO, TEMPERATURE, Body, Conduction, Envelope, Gate, StoredCharge, Switching, Thermal, Transfer, gather_pulses,
 )
+from .documents import record_from, refuse
+from .fields import Named, Word, as_branch, collected, each, one_of, read_word, table
 from .files import inside, read_file
-from .record import Record, complaint, shorten, together, unknown_keys
+from .record import Reads, Record, complaint, shorten, together, unknown_keys
 from .tree import Branch, Row
 from .values import Quantity, SourceFile, Table, Text
-
-_POSITIVE = {name: reader(name, above=0) for name in
-             ("voltage", "current", "time", "power", "thermal_resistance", "thermal_capacity")}
-_FROM_ZERO = {name: reader(name, least=0) for name in ("voltage", "current")}
-_TEMPERATURE = reader("temperature")
-_EFFICIENCY = reader("ratio", above=0, most=1)
-
-
-class Section(Record):
-    """One section of a device. `source` is where its numbers were read, if that is not the device's own."""
-
-    source: Word | None = None
-
-
-def _by_gate_voltage(node: Any) -> dict[float | None, Quantity]:
-    """On-resistance: one value, or one for each gate voltage."""
-    read = reader("resistance", above=0)
-    if not isinstance(node, Branch) or set(node) & {"min", "typ", "max"}:
-        return {None: read(node)}
-    rows = each(lambda key: (_POSITIVE["voltage"](key).typ, read(node[key])), node)
-    return dict(sorted(rows))
-
-
-def _by_temperature(node: Any) -> dict[float, Table]:
-    """Forward curves: for each junction temperature, voltage over current."""
-    read = table_reader(_FROM_ZERO["current"], _POSITIVE["voltage"])
-    branch = as_branch(node)
-    return dict(sorted(each(lambda key: (_TEMPERATURE(key).typ, read(branch[key])), branch)))
-
-
-def _efficiency(node: Any) -> tuple[tuple[float | None, Quantity | Table], ...]:
-    """A value, a curve over output current, or curves by input voltage."""
-    curve = table_reader(_POSITIVE["current"], _EFFICIENCY)
-    if not isinstance(node, Row):
-        return ((None, _EFFICIENCY(node)),)
-    if not all(isinstance(row, Branch) for row in node) or not node:
-        return ((None, curve(node)),)
-    rows = each(lambda row: _efficiency_at(row, curve), node)
-    voltages = [vin_v for vin_v, _ in rows]
-    if len(set(voltages)) < len(voltages):
-        raise complaint(node.mark, "two efficiency curves for one input voltage", "keep one of them")
-    return tuple(sorted(rows, key=lambda row: row[0]))
-
-
-def _efficiency_at(row: Branch, curve: Any) -> tuple[float, Quantity | Table]:
-    wrong = unknown_keys(row, ("vin", "at"), "an efficiency curve")
-    wrong += [complaint(row.mark, f"an efficiency curve without {key!r}", f"add {key}: ...") for key in ("vin", "at") if key not in row]
-    if wrong:
-        raise together(wrong)
-    at = curve(row["at"]) if isinstance(row["at"], Row) else _EFFICIENCY(row["at"])
-    return _POSITIVE["voltage"](row["vin"]).typ, at
-
-
-class Conduction(Section):
-    """How the part conducts; which keys a kind takes is in `KINDS`.
-
-    `rds` maps gate voltage in V (None where one value is given) to the resistance at 25 °C. `forward` maps junction
-    temperature in °C to a curve of voltage over current. `efficiency` is rows of input voltage in V (None for any)
-    and a `Quantity` or a curve of efficiency over output current.
-    """
-
-    IS: ClassVar[str] = "conduction"
-    rds: Annotated[Mapping[float | None, Quantity], PlainValidator(_by_gate_voltage)] = {}
-    rds_scale: Annotated[Table, table(_TEMPERATURE, reader("number", above=0))] | None = None
-    at_gate: VoltageRating | None = None
-    saturation: VoltageMagnitude | None = None
-    slope: Resistance | None = None
-    gain: Factor | None = None
-    knee: VoltageMagnitude | None = None
-    knee_tempco: VoltageCoefficient | None = None
-    forward: Annotated[Mapping[float, Table], PlainValidator(_by_temperature)] = {}
-    clamp: Annotated[Table, table(_FROM_ZERO["current"], _POSITIVE["voltage"])] | None = None
-    standoff: VoltageRating | None = None
-    dropout: VoltageMagnitude | None = None
-    quiescent: Current | None = None
-    reference: Voltage | None = None
-    minimum_load: Current | None = None
-    current_limit: CurrentRating | None = None
-    efficiency: Annotated[tuple[tuple[float | None, Quantity | Table], ...], PlainValidator(_efficiency)] = ()
-    resistance: Resistance | None = None
-    tempco: TemperatureCoefficient | None = None
-    winding: Resistance | None = None
-    primary: Resistance | None = None
-    secondary: Resistance | None = None
-    ratio: Annotated[Quantity, PlainValidator(reader("number", above=0))] | None = None
-    esr: Resistance | None = None
-
-    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
-        if self.at_gate and self.rds and None not in self.rds:
-            yield complaint(self.source_of("at_gate"), "at_gate beside rds by gate voltage", "leave at_gate out")
-        if self.forward and (self.knee or self.slope):
-            yield complaint(self.source_of("forward"), "forward beside knee and slope", "give the curves or the line")
-
-
-class Gate(Section):
-    """Gate of a mosfet: total charge, threshold, edge times."""
-
-    IS: ClassVar[str] = "gate"
-    charge: Charge | None = None
-    threshold: Voltage | None = None
-    rise: EdgeTime | None = None
-    fall: EdgeTime | None = None
-
-
-class Switching(Section):
-    """Edge times of a bjt or igbt."""
-
-    IS: ClassVar[str] = "switching"
-    rise: EdgeTime | None = None
-    fall: EdgeTime | None = None
-
-
-class StoredCharge(Section):
-    """Charges that every switching cycle moves: output and reverse recovery, at a voltage."""
-
-    IS: ClassVar[str] = "charge"
-    output: Charge | None = None
-    recovery: Charge | None = None
-    at: VoltageRating | None = None
-
-
-class Body(Section):
-    """Body diode: V = knee + slope · I."""
-
-    IS: ClassVar[str] = "body"
-    knee: VoltageMagnitude | None = None
-    slope: Resistance | None = None
-
-
-class Transfer(Section):
-    """`alpha`: temperature coefficient of the drain current [A/K] over drain current [A], at constant gate voltage."""
-
-    IS: ClassVar[str] = "transfer"
-    alpha: Annotated[Table, table(_FROM_ZERO["current"], reader("current_tempco"))] | None = None
-
-
-class Thermal(Section):
-    """From junction to case (bottom, top), board and ambient. `zth_jc` is (s, K/W), `foster` (K/W, s), `cauer` (K/W, J/K)."""
-
-    IS: ClassVar[str] = "thermal"
-    rth_jc: ThermalResistanceAboveZero | None = None
-    rth_jc_top: ThermalResistanceAboveZero | None = None
-    rth_jb: ThermalResistanceAboveZero | None = None
-    rth_ja: ThermalResistanceAboveZero | None = None
-    capacity: HeatCapacity | None = None
-    zth_jc: Annotated[Table, table(_POSITIVE["time"], _POSITIVE["thermal_resistance"])] | None = None
-    foster: Annotated[Table, table(_POSITIVE["thermal_resistance"], _POSITIVE["time"], rising=False)] | None = None
-    cauer: Annotated[Table, table(_POSITIVE["thermal_resistance"], _POSITIVE["thermal_capacity"], rising=False)] | None = None
-
-    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
-        given = [key for key in ("zth_jc", "foster", "cauer") if key in self.written]
-        if len(given) > 1:
-            yield complaint(self.source_of(given[1]), f"{' and '.join(given)} in one device", "keep one of them")
-
-
-def _pulses(node: Any) -> Any:
-    """The mapping of an envelope, its pulse lengths gathered under one key."""
-    if not isinstance(node, Branch):
-        return node
-    gathered, pulses = Branch(node.mark), Branch(node.mark)
-    for key, value in node.items():
-        (gathered if key in ("dc", "source") else pulses).put(key, value)
-    if pulses:
-        gathered.put(Text("pulses", node.mark), pulses)
-    return gathered
-
-
-def _by_length(node: Any) -> tuple[tuple[float, Table], ...]:
-    read = table_reader(_POSITIVE["voltage"], _POSITIVE["current"])
-    rows = each(lambda key: (_POSITIVE["time"](key).typ, read(node[key])), node)
-    lengths = [length_s for length_s, _ in rows]
-    if len(set(lengths)) < len(lengths):
-        raise complaint(node.mark, "two curves for one pulse length", "keep one of them")
-    return tuple(sorted(rows, key=lambda row: row[0]))
-
-
-class Envelope(Section):
-    """Digitised safe-area curves, case at 25 °C, as (V, A). `pulses` runs from the shortest length [s]."""
-
-    IS: ClassVar[str] = "an envelope"
-    dc: Annotated[Table, table(_POSITIVE["voltage"], _POSITIVE["current"])] | None = None
-    pulses: Annotated[tuple[tuple[float, Table], ...], PlainValidator(_by_length)] = ()
 
 
 def _limits(node: Any) -> dict[str, Quantity | Table]:
@@ -241,9 +58,9 @@ class Device(Record):
     NEEDS: ClassVar[tuple[str, ...]] = ("kind",)
     kind: Annotated[Text, one_of(*KINDS)] | None = None
     channel: Annotated[Text, one_of("n", "p", "npn", "pnp")] | None = None
-    matches: Annotated[tuple[Mapping[str, Text], ...], PlainValidator(_matches)] = ()
+    matches: Annotated[tuple[Mapping[str, Text], ...], Reads(_matches)] = ()
     source: Word | None = None
-    limits: Annotated[Mapping[str, Quantity | Table], PlainValidator(_limits)] = {}
+    limits: Annotated[Mapping[str, Quantity | Table], Reads(_limits)] = {}
     conduction: Conduction = Field(default_factory=Conduction.of)
     gate: Gate = Field(default_factory=Gate.of)
     switching: Switching = Field(default_factory=Switching.of)
@@ -251,8 +68,8 @@ class Device(Record):
     body: Body = Field(default_factory=Body.of)
     transfer: Transfer = Field(default_factory=Transfer.of)
     thermal: Thermal = Field(default_factory=Thermal.of)
-    envelope: Annotated[Envelope, BeforeValidator(_pulses)] = Field(default_factory=Envelope.of)
-    leakage: Annotated[Table, table(_TEMPERATURE, _FROM_ZERO["current"])] | None = None
+    envelope: Annotated[Envelope, BeforeValidator(gather_pulses)] = Field(default_factory=Envelope.of)
+    leakage: Annotated[Table, table(TEMPERATURE, FROM_ZERO["current"])] | None = None
     _name: Text = PrivateAttr(Text(""))
 
     @property
@@ -263,7 +80,7 @@ class Device(Record):
     @classmethod
     def complaints_about_keys(cls, branch: Branch) -> list[PydanticCustomError]:
         general = super().complaints_about_keys(branch)
-        kind = KINDS.get(branch.get("kind", ""))
+        kind = KINDS.get(str(branch.get("kind", "")))
         return general + list(_foreign_keys(branch, kind)) if kind else general
 
     def entry(self, path: str) -> Mark:
@@ -302,9 +119,10 @@ def _foreign_keys(branch: Branch, kind: Kind) -> Iterator[PydanticCustomError]:
     ):
         if section in top and isinstance(branch.get(section), Branch):
             yield from _known_but_foreign(branch[section], (*allowed, "source"), all_keys, f"the {section} of {what}")
-    if "channel" in branch and branch["channel"] not in kind.channels:
+    channel = branch.get("channel")
+    if isinstance(channel, Text) and channel not in kind.channels:
         advice = f"write {' or '.join(kind.channels)}" if kind.channels else "leave it out"
-        yield complaint(branch["channel"].mark, f"the channel {shorten(str(branch['channel']))!r} for {what}", advice)
+        yield complaint(channel.mark, f"the channel {shorten(channel)!r} for {what}", advice)
 
 
 def _known_but_foreign(branch: Branch, allowed: Iterable[str], known: Iterable[str], what: str) -> Iterator[PydanticCustomError]:

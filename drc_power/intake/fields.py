@@ -10,11 +10,11 @@ import re
 from collections.abc import Callable, Iterable
 from typing import Annotated, Any, TypeVar
 
-from pydantic import BeforeValidator, PlainValidator, ValidationError
+from pydantic import BeforeValidator, ValidationError
 from pydantic_core import PydanticCustomError
 
 from ..quantity import QuantityError, Span, a_dimension, due_words, parse_any, span_from_ends, such_as
-from .record import complaint, complaints_of, describe, shorten, together
+from .record import Reads, complaint, complaints_of, describe, shorten, together
 from .suggest import nearest
 from .tree import Blank, Branch, Row
 from .values import Quantity, Table, Text
@@ -103,9 +103,9 @@ def choice(*words: str) -> Reader:
     return read
 
 
-def one_of(*words: str) -> PlainValidator:
+def one_of(*words: str) -> Reads:
     """A field that takes one word from a fixed choice."""
-    return PlainValidator(choice(*words))
+    return Reads(choice(*words))
 
 
 # --- quantities --------------------------------------------------------------------------------------------------
@@ -168,9 +168,9 @@ def reader(*dimensions: str, least: float | None = None, above: float | None = N
     return read
 
 
-def quantity(*dimensions: str, **bounds: float) -> PlainValidator:
+def quantity(*dimensions: str, **bounds: float) -> Reads:
     """A field that takes a quantity; see `reader`."""
-    return PlainValidator(reader(*dimensions, **bounds))
+    return Reads(reader(*dimensions, **bounds))
 
 
 def _out_of_range(span: Span, least: float | None, above: float | None, most: float | None) -> str:
@@ -202,9 +202,9 @@ def table_reader(*columns: Reader, rising: bool = True) -> Reader:
     return read
 
 
-def table(*columns: Reader, rising: bool = True) -> PlainValidator:
+def table(*columns: Reader, rising: bool = True) -> Reads:
     """A field that takes a table; see `table_reader`."""
-    return PlainValidator(table_reader(*columns, rising=rising))
+    return Reads(table_reader(*columns, rising=rising))
 
 
 def _point(row: Any, columns: tuple[Reader, ...]) -> list[Quantity]:
@@ -252,10 +252,10 @@ def as_row(node: Any) -> Row:
     return node
 
 
-Word = Annotated[Text, PlainValidator(read_word)]
-Words = Annotated[tuple[Text, ...], PlainValidator(read_words)]
-Flag = Annotated[bool, PlainValidator(read_flag)]
-Day = Annotated[datetime.date, PlainValidator(read_date)]
+Word = Annotated[Text, Reads(read_word)]
+Words = Annotated[tuple[Text, ...], Reads(read_words)]
+Flag = Annotated[bool, Reads(read_flag)]
+Day = Annotated[datetime.date, Reads(read_date)]
 Named = Annotated[dict[Word, T], BeforeValidator(as_branch)]
 Listed = Annotated[tuple[T, ...], BeforeValidator(as_row)]
 

@@ -3,13 +3,13 @@
 from collections.abc import Iterable, Iterator, Mapping
 from typing import Annotated, Any, ClassVar
 
-from pydantic import PlainValidator, PrivateAttr
+from pydantic import PrivateAttr
 from pydantic_core import PydanticCustomError
 
 from ..quantity import a_dimension, such_as
 from .device_kinds import KINDS, STRESSES
 from .fields import Flag, Listed, Temperature, Word, as_branch, collected, one_of, read_words, reader, table_reader
-from .record import Record, complaint, shorten, together, unknown_keys
+from .record import Reads, Record, complaint, shorten, together, unknown_keys
 from .suggest import nearest
 from .tree import Row
 from .values import Quantity, Table, Text
@@ -48,7 +48,7 @@ def _unknown_kinds(kinds: Iterable[Text]) -> list[PydanticCustomError]:
     return [complaint(kind.mark, f"there is no kind {shorten(kind)!r}", nearest(kind, known)) for kind in kinds if kind not in known]
 
 
-Amount = Annotated[Quantity | Table, PlainValidator(_amount)]
+Amount = Annotated[Quantity | Table, Reads(_amount)]
 """A share of the rating, an absolute value, or either as a table over temperature."""
 
 
@@ -61,7 +61,7 @@ class LimitPart(Record):
     IS: ClassVar[str] = "a limit"
     at_most: Amount | None = None
     at_least: Amount | None = None
-    below_rating_by: Annotated[Quantity, PlainValidator(reader(*_DIFFERENCES, least=0))] | None = None
+    below_rating_by: Annotated[Quantity, Reads(reader(*_DIFFERENCES, least=0))] | None = None
     against: Annotated[Text, one_of("ambient", "case", "junction")] | None = None
     full_until: Temperature | None = None
     zero_at: Temperature | None = None
@@ -97,7 +97,7 @@ class Limit(LimitPart):
     """One house rule. `applies_to` maps its keys to words or globs; every key given must hold, any of its words may."""
 
     NEEDS: ClassVar[tuple[str, ...]] = ("stress",)
-    applies_to: Annotated[Mapping[str, tuple[Text, ...]], PlainValidator(_applies_to)] = {}
+    applies_to: Annotated[Mapping[str, tuple[Text, ...]], Reads(_applies_to)] = {}
     stress: Annotated[Text, one_of(*STRESSES)] | None = None
     lowest_of: Listed[LimitPart] = ()
     locked: Flag = False

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 import functools
 import itertools
-from collections.abc import Iterable, Mapping
+from collections.abc import Callable, Iterable, Mapping
 from typing import Any, ClassVar, Self
 
 from pydantic import BaseModel, ConfigDict, PrivateAttr, ValidationError, model_validator
-from pydantic_core import InitErrorDetails, PydanticCustomError
+from pydantic_core import InitErrorDetails, PydanticCustomError, core_schema
 
 from ..faults import Fault, InputError, Mark
 from .suggest import MOST_ADVISED, nearest
@@ -55,6 +55,16 @@ def describe(node: Any) -> str:
 def shorten(text: str, width: int = 40) -> str:
     """The text, cut where a message would grow too long."""
     return str(text) if len(text) <= width else text[: width - 3] + "..."
+
+
+class Reads:
+    """Makes a reader the whole of a field's schema: `Annotated[Quantity, Reads(read_quantity)]`."""
+
+    def __init__(self, reader: Callable[[Any], Any]) -> None:
+        self.reader = reader
+
+    def __get_pydantic_core_schema__(self, source: Any, handler: Any) -> Any:
+        return core_schema.no_info_plain_validator_function(self.reader)
 
 
 class Record(BaseModel):

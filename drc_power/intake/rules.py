@@ -6,14 +6,14 @@ from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass, field
 from typing import Annotated, Any, ClassVar
 
-from pydantic import Field, PlainValidator, PrivateAttr
+from pydantic import Field, PrivateAttr
 
 from ..faults import Fault, InputError, Mark
 from .documents import record_from, refuse
 from .fields import Named, Word, Words, as_branch, choice, collected, one_of, reader
 from .files import inside, read_file
 from .limits import VERDICTS_THAT_FAIL, Limit, LimitPart
-from .record import Record, shorten, together, unknown_keys
+from .record import Reads, Record, shorten, together, unknown_keys
 from .suggest import nearest
 from .values import Quantity, SourceFile, Text
 
@@ -63,9 +63,9 @@ class RuleFile(Record):
     name: Word | None = None
     based_on: Words = ()
     limits: Named[Limit] = {}
-    methods: Annotated[Mapping[str, Text], PlainValidator(_methods)] = {}
+    methods: Annotated[Mapping[str, Text], Reads(_methods)] = {}
     fields: FieldNames = Field(default_factory=FieldNames.of)
-    close_at: Annotated[Quantity, PlainValidator(reader("ratio", above=0, most=1))] | None = None
+    close_at: Annotated[Quantity, Reads(reader("ratio", above=0, most=1))] | None = None
     fails_from: Annotated[Text, one_of(*VERDICTS_THAT_FAIL)] | None = None
     _file: SourceFile = PrivateAttr(SourceFile("rules", "", ""))
 

@@ -4,14 +4,13 @@ import os
 from dataclasses import dataclass
 from typing import Annotated, Any, ClassVar
 
-from pydantic import PlainValidator
 
 from ..faults import Mark
 from ..quantity import DIMENSIONS
 from .documents import refuse
 from .fields import Day, Word, as_row, collected, one_value
 from .files import read_file
-from .record import Record, faults_of, together
+from .record import Reads, Record, faults_of, together
 from .tree import tree_of
 from .values import Quantity, SourceFile, Text
 
@@ -29,7 +28,7 @@ class Waiver(Record):
     because: Word | None = None
     by: Word | None = None
     until: Day | None = None
-    value: Annotated[Quantity, PlainValidator(_value)] | None = None
+    value: Annotated[Quantity, Reads(_value)] | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -158,7 +158,7 @@ def test_flipped_bits_and_foreign_bytes(reader, data, tmp_path_factory):
 WORDS = st.sampled_from(
     ["1", "format", "netlist", "rails", "loads", "modes", "parts", "stages", "events", "sinks", "copper", "outside", "devices", "limits", "kind", "mosfet",
      "heat", "sink", "like", "conduction", "rds", "efficiency", "vin", "at", "envelope", "dc", "matches", "applies_to", "stress", "vds", "at_most", "lowest_of",
-     "5 V", "1 A", "80 %", "25 °C", "10 ms", "~", "", "*", "x", "motor", "buck", "min", "max", "typ", "source", "name", "based_on", "fields", "not_fitted"]
+     "5 V", "5.0 V", "1 A", "80 %", "25 °C", "25.0 °C", "10 ms", "0.01 s", "diode", "forward", "switching-regulator", "thermal", "foster", "1 K/W", "~", "", "*", "x", "motor", "buck", "min", "max", "typ", "source", "name", "based_on", "fields", "not_fitted"]
 )  # fmt: skip
 TREES = st.recursive(WORDS, lambda inner: st.one_of(st.lists(inner, max_size=3), st.dictionaries(WORDS, inner, max_size=4)), max_leaves=25)
 
@@ -167,6 +167,19 @@ def as_yaml(tree):
     if isinstance(tree, dict):
         return "{" + ", ".join(f'"{key}": {as_yaml(value)}' for key, value in tree.items()) + "}"
     return "[" + ", ".join(map(as_yaml, tree)) + "]" if isinstance(tree, list) else f'"{tree}"' if tree not in ("~", "") else tree
+
+
+FOUND = [
+    ("devices", "{devices: {a: {kind: []}}}"),
+    ("devices", "{devices: {a: {kind: mosfet, channel: [n]}}}"),
+    ("devices", "{devices: {a: {kind: mosfet, conduction: {rds: {5 V: 1 ohm, 5.0 V: 1 ohm}}}}}"),
+]
+"""What once ended in a traceback."""
+
+
+@pytest.mark.parametrize(("reader", "text"), FOUND)
+def test_crashes_of_the_past(reader, text, tmp_path):
+    assert refusal(reader, str(tmp_path), text)
 
 
 @settings(max_examples=250, deadline=None)

@@ -3,7 +3,7 @@
 import pytest
 
 from drc_power.intake import not_built, read_annotations
-from drc_power.intake.notes import EVENT_KEYS, STAGE_KEYS, EventNote, StageNote
+from drc_power.intake.stage_notes import EVENT_KEYS, STAGE_KEYS, EventNote, StageNote
 
 HEAD = "format: 1\nnetlist: b.net\n"
 

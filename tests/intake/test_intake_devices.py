@@ -6,7 +6,8 @@ import pytest
 
 from drc_power.intake import read_devices
 from drc_power.intake.device_kinds import KINDS, LIMITS, STRESSES
-from drc_power.intake.devices import Conduction, Device, StoredCharge
+from drc_power.intake.device_sections import Conduction, StoredCharge
+from drc_power.intake.devices import Device
 
 MOSFET = "a: {kind: mosfet, %s}"
 
@@ -27,6 +28,9 @@ WRONG = [
     (MOSFET % "conduction: {dropout: 1 V}", "3:34: 'dropout' is not a key of the conduction of a device of kind mosfet; choose from rds, rds_scale, at_gate, source"),
     (MOSFET % "conduction: {rds: 0 ohm}", "3:39: '0 ohm' is not above zero, which it must be here; write for example 8 mohm"),
     (MOSFET % "conduction: {rds: {10: 8 mohm}}", "3:40: '10' has no unit, a voltage is due; write for example 24 V"),
+    (MOSFET % "conduction: {rds: {10 V: 8 mohm, 10.0 V: 9 mohm}}", "3:39: two rows for one voltage; keep one of them"),
+    (MOSFET % "conduction: {rds: {}}", "3:39: a mapping without a row; add a row, or leave the key out"),
+    ("a: {kind: diode, conduction: {forward: {25 °C: [[1 A, 0.4 V]], 25.0 °C: [[1 A, 0.5 V]]}}}", "3:42: two rows for one temperature; keep one of them"),
     (MOSFET % "conduction: {rds: {10 V: 8 mohm}, at_gate: 10 V}", "3:64: at_gate beside rds by gate voltage; leave at_gate out"),
     (MOSFET % "conduction: {rds_scale: [[100 °C, 1.4], [25 °C, 1]]}",
      "3:62: '25 °C' does not rise above '100 °C' before it; sort the points by their first value, and keep one of each"),
@@ -42,7 +46,7 @@ WRONG = [
     (MOSFET % "thermal: {zth_jc: [[1 ms, 1 K/W]], foster: [[1 K/W, 1 s]]}", "3:64: zth_jc and foster in one device; keep one of them"),
     (MOSFET % "envelope: {dc: [[0 V, 1 A]]}", "3:38: '0 V' is not above zero, which it must be here; write for example 24 V"),
     (MOSFET % "envelope: {10: [[1 V, 1 A]]}", "3:32: '10' has no unit, a time is due; write for example 20 ms"),
-    (MOSFET % "envelope: {10 ms: [[1 V, 1 A]], 0.01 s: [[1 V, 2 A]]}", "3:31: two curves for one pulse length; keep one of them"),
+    (MOSFET % "envelope: {10 ms: [[1 V, 1 A]], 0.01 s: [[1 V, 2 A]]}", "3:31: two rows for one time; keep one of them"),
     (MOSFET % "leakage: [[25 °C, 1 mA]]", "3:21: 'leakage' is not a key of a device of kind mosfet; choose from kind, channel, matches, source, "
                                           "limits, conduction, thermal, gate, charge, body, transfer, envelope"),
     (MOSFET % "matches: {}", "3:30: an empty match, which would fit every part; write {value: ...} or {FIELD: ...}"),
