@@ -1,4 +1,4 @@
-"""How one value of an input file is read. Each name in capitals is a type for a record's field, with its reader inside.
+"""How one value of an input file is read. The types at the end are for the fields of records.
 
 A reader takes a piece of the tree and returns a value, or raises a complaint that carries the place.
 """
@@ -70,6 +70,11 @@ def read_words(node: Any) -> tuple[Text, ...]:
     if not node:
         raise complaint(node.mark, "an empty list", "name at least one, or leave the key out")
     return tuple(each(read_word, node))
+
+
+def read_files(node: Any) -> tuple[Text, ...]:
+    """One file or a list of them, which may be empty."""
+    return () if isinstance(node, (Row, Blank)) and not node else read_words(node)
 
 
 def read_flag(node: Any) -> bool:
@@ -254,6 +259,7 @@ def as_row(node: Any) -> Row:
 
 Word = Annotated[Text, Reads(read_word)]
 Words = Annotated[tuple[Text, ...], Reads(read_words)]
+Files = Annotated[tuple[Text, ...], Reads(read_files)]
 Flag = Annotated[bool, Reads(read_flag)]
 Day = Annotated[datetime.date, Reads(read_date)]
 Named = Annotated[dict[Word, T], BeforeValidator(as_branch)]

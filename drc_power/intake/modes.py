@@ -8,7 +8,7 @@ from typing import TypeVar
 
 from ..faults import Fault, InputError, Mark
 from .documents import refuse
-from .notes import DEMANDS, AnnotationFile, LoadNote, ModeNote, PartNote, RailNote, StageNote, Surroundings
+from .notes import DEMANDS, DEMANDS_OF_A_MOTOR, AnnotationFile, LoadNote, ModeNote, PartNote, RailNote, StageNote, Surroundings
 from .parts import resolve
 from .record import Record, shorten
 from .suggest import nearest
@@ -87,9 +87,10 @@ def _laid_over(base: Mapping[str, R], layers: list[Mapping[str, R]]) -> dict[str
 
 
 def _one_over(note: R, base: R) -> R:
-    """One note over another; a load's new demand takes the place of the old, a motor keeps its resistance."""
-    if isinstance(note, LoadNote) and isinstance(base, LoadNote) and note.demands:
-        base = base.without(*(("draws", "power") if base.is_motor else DEMANDS))
+    """One note over another; a load's new demand takes the place of the old, a motor's resistance stands beside it."""
+    if isinstance(note, LoadNote) and isinstance(base, LoadNote):
+        demands = DEMANDS_OF_A_MOTOR if base.is_motor else DEMANDS
+        base = base.without(*demands) if set(demands) & set(note.written) else base
     return note.over(base)
 
 

@@ -7,7 +7,7 @@ from pydantic import BeforeValidator, Field
 from pydantic_core import PydanticCustomError
 
 from .fields import (
-    Altitude, Area, Count, Current, CurrentRating, Flag, Frequency, HeatCapacity, Length, Listed, Named, Power, Ratio,
+    ENDS, Altitude, Area, Count, Current, CurrentRating, Files, Flag, Frequency, HeatCapacity, Length, Listed, Named, Power, Ratio,
     Resistance, ResistanceAboveZero, Share, Temperature, TemperatureRise, ThermalConductivity, ThermalResistance, Voltage,
     VoltageMagnitude, Word, Words, one_of, quantity_from, read_word, reader,
 )
@@ -65,6 +65,9 @@ class RailNote(Record):
 
 DEMANDS = ("draws", "power", "resistance")
 """The keys that say what a load takes: exactly one is given."""
+
+DEMANDS_OF_A_MOTOR = ("draws", "power")
+"""The same of a motor whose `resistance` is given for a stall."""
 
 
 class LoadNote(Record):
@@ -217,7 +220,8 @@ class OutsideNote(Record):
 
 def _load_in_mode(node: Any) -> Any:
     """In a mode a bare quantity means draws, power or resistance by its unit."""
-    if not isinstance(node, Text) or isinstance(node, Blank):
+    is_span = isinstance(node, Branch) and node and set(node) <= {*ENDS, "source"}
+    if isinstance(node, Blank) or not (isinstance(node, Text) or is_span):
         return node
     key = {"current": "draws", "power": "power", "resistance": "resistance"}
     branch = Branch(node.mark)
@@ -245,8 +249,8 @@ class AnnotationFile(Record):
     format: Annotated[Text, one_of("1")] | None = None
     netlist: Word | None = None
     board: BoardNote | None = None
-    rules: Words = ()
-    devices: Words = ()
+    rules: Files = ()
+    devices: Files = ()
     waivers: Word | None = None
     surroundings: Surroundings = Field(default_factory=Surroundings.of)
     grounds: Words | None = None

@@ -10,7 +10,7 @@ from pydantic import Field, PrivateAttr
 
 from ..faults import Fault, InputError, Mark
 from .documents import record_from, refuse
-from .fields import Named, Word, Words, as_branch, choice, collected, one_of, reader
+from .fields import Files, Named, Word, Words, as_branch, choice, collected, one_of, reader
 from .files import inside, read_file
 from .limits import VERDICTS_THAT_FAIL, Limit, LimitPart
 from .record import Reads, Record, shorten, together, unknown_keys
@@ -61,7 +61,7 @@ class RuleFile(Record):
     NEEDS: ClassVar[tuple[str, ...]] = ("format", "name")
     format: Annotated[Text, one_of("1")] | None = None
     name: Word | None = None
-    based_on: Words = ()
+    based_on: Files = ()
     limits: Named[Limit] = {}
     methods: Annotated[Mapping[str, Text], Reads(_methods)] = {}
     fields: FieldNames = Field(default_factory=FieldNames.of)

@@ -165,3 +165,8 @@ def test_records_are_frozen(project):
 def test_the_kinds_of_stages_and_events_use_keys_that_exist():
     assert {key for keys in STAGE_KEYS.values() for key in keys.split()} <= set(StageNote.attributes())
     assert {key for keys in EVENT_KEYS.values() for key in keys.split()} <= set(EventNote.attributes())
+
+
+def test_lists_of_files_may_be_empty(project):
+    notes = read_annotations(project.write("b.power.yaml", HEAD + "rules: []\ndevices:\n"))
+    assert (notes.rules, notes.devices) == ((), ())

@@ -24,7 +24,7 @@ modes:
   run:   {}
   idle:  {loads: {heater: 0 A, motor: 0 A}, parts: {"Q*": {state: blocked}}}
   warm:  {like: idle, loads: {heater: 40 W}, rails: {A: {voltage: 26 V}}, surroundings: {ambient: 10 °C}}
-  hot:   {like: warm, loads: {heater: {resistance: 10 ohm}, motor: 0.35 ohm}, stages: {fan: {duty: 50 %}}}
+  hot:   {like: warm, loads: {heater: {resistance: 10 ohm}, motor: 0.4 ohm, chip: {min: 1 mA, max: 3 mA}}, stages: {fan: {duty: 50 %}}}
   extra: {loads: {lamp: {net: A, power: 5 W}}, parts: {Q3: {heat: {case: 70 °C}}}}
 """
 
@@ -46,6 +46,11 @@ def test_a_bare_quantity_is_a_demand_by_its_unit_and_takes_the_place_of_the_old(
     assert idle.return_ == warm.return_ == "H" and warm.net == "A"
 
 
+def test_a_span_as_a_mapping_is_a_bare_quantity_too(notes):
+    chip = notes.in_mode("hot").loads["chip"]
+    assert (chip.draws.min, chip.draws.typ, chip.draws.max) == (0.001, 0.002, 0.003)
+
+
 def test_a_demand_written_in_full_takes_the_place_of_the_old_too(notes):
     assert notes.in_mode("hot").loads["heater"].demands == ("resistance",)
     assert notes.in_mode("hot").loads["heater"].resistance.typ == 10.0
@@ -54,7 +59,7 @@ def test_a_demand_written_in_full_takes_the_place_of_the_old_too(notes):
 def test_a_motor_keeps_its_resistance_for_a_stall(notes):
     idle, hot = notes.in_mode("idle").loads["motor"], notes.in_mode("hot").loads["motor"]
     assert (idle.demands, idle.draws.typ, idle.resistance.typ) == (("draws",), 0.0, 0.35)
-    assert (hot.demands, hot.draws) == (("resistance",), None)
+    assert (hot.demands, hot.draws.typ, hot.resistance.typ) == (("draws",), 0.0, 0.4)
 
 
 def test_keys_that_a_mode_does_not_name_stay(notes):
