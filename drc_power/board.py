@@ -10,7 +10,7 @@ from functools import cached_property
 from .faults import Fault, InputError, Mark
 from .intake.annotations import Annotations, ModeView, lay_file_over_fields, part_note_from_fields
 from .intake.devices import Device, DeviceLibrary
-from .intake.notes import InterfaceNote, LoadNote, PartNote, RailNote, StageNote
+from .intake.notes import EventNote, InterfaceNote, LoadNote, PartNote, RailNote, StageNote
 from .intake.rules import Limit, RulePack
 from .intake.suggest import nearest
 from .intake.values import Quantity, Table, Text
@@ -215,6 +215,7 @@ class Board:
         """Parts that the annotations or the schematic's own fields speak of: solved and judged, whatever the survey thought."""
         refs = {ref for mode in self.modes for ref, part in mode.parts.items() if part.note.written}
         refs |= {ref for mode in self.modes for stage in mode.view.stages.values() for ref in stage_parts(stage)}
+        refs |= {ref for event in self.annotations.events.values() for ref in event_parts(event)}
         refs |= {str(load.heats) for mode in self.modes for load in mode.loads.values() if load.heats}
         return frozenset(refs & self.netlist.parts.keys())
 
@@ -277,6 +278,9 @@ class Board:
             yield from (("part", ref, parts) for ref in (load.heats,) if ref)
         for stage in mode.view.stages.values():
             yield from (("part", ref, parts) for ref in stage_parts(stage))
+        for event in self.annotations.events.values():
+            yield from (("part", ref, parts) for ref in event_parts(event))
+            yield from (("net", net, nets) for net in (event.net,) if net)
         for part in mode.parts.values():
             if part.note.heat is not None and part.note.heat.sink:
                 yield "sink", part.note.heat.sink, sinks
@@ -302,3 +306,9 @@ STAGE_PART_KEYS = ("chip", "high", "low", "switch", "pair", "parts", "controller
 def stage_parts(stage) -> tuple[Text, ...]:
     """The references that a stage names."""
     return tuple(ref for key in STAGE_PART_KEYS for ref in getattr(stage, key))
+
+
+def event_parts(event: EventNote) -> tuple[Text, ...]:
+    """The references that an event names: its parts, and the part that clamps."""
+    clamp = (event.clamp,) if isinstance(event.clamp, Text) else ()
+    return (*event.parts, *((event.part,) if event.part else ()), *clamp)

@@ -7,7 +7,7 @@ from collections.abc import Sequence
 import numpy as np
 
 from ..board import Board
-from ..findings.identity import finding_id
+from ..findings.identity import finding_id, named_subject
 from ..findings.model import Finding, InputUsed
 from ..findings.verdict import verdict_of
 from ..text import si, si_apart
@@ -60,14 +60,19 @@ def make_finding(board: Board, judgement: Judgement, sample: int, corner: str, g
         source = board.place(judgement.limit.mark) + (f" ({judgement.limit.source})" if judgement.limit.source else "")
         inputs.append(InputUsed(f"house rule {limits[0]}", describe(judgement.limit), source))
     return Finding(
-        id=finding_id(judgement.subject, rule=judgement.rule, stress=judgement.stress, mode=judgement.mode),
+        id=finding_id(*_subjects(judgement), rule=judgement.rule, stress=judgement.stress, mode=judgement.mode),
         rule=judgement.rule, stress=judgement.stress, verdict=verdict, was=None, ref=judgement.ref,
         uuid=part.uuid if part else None, sheet=part.sheet if part else None, net=judgement.net, mode=judgement.mode,
-        event=None, corner=corner, quantity=judgement.quantity, value=value, allowed=allowed, rated=rated,
+        event=judgement.event, corner=corner, quantity=judgement.quantity, value=value, allowed=allowed, rated=rated,
         unit=judgement.unit, margin=margin if known and not judgement.lacking else None,
         text=_sentence(judgement, verdict, value, allowed, rated, gaps),
         remedy=_remedy(judgement, verdict, gaps), inputs_used=tuple(inputs),
         workings=judgement.steps(sample), file=board.shown(judgement.mark.file), line=judgement.mark.line)
+
+
+def _subjects(judgement: Judgement):
+    event = (named_subject("event", judgement.event),) if judgement.event else ()
+    return judgement.subject, *event
 
 
 def _number(value: float) -> float | None:
@@ -77,6 +82,7 @@ def _number(value: float) -> float | None:
 def _sentence(judgement: Judgement, verdict: str, value, allowed, rated, gaps: Sequence[str]) -> str:
     """What was found, in one or two sentences that stand alone."""
     what = judgement.quantity + (f" of {judgement.ref}" if judgement.ref else "")
+    what += f" during {judgement.event}" if judgement.event else ""
     if judgement.why and (judgement.lacking or verdict == "unproven"):
         return f"{judgement.why[0].upper()}{judgement.why[1:]}."
     if verdict == "unproven":

@@ -36,6 +36,7 @@ class Judgement:
     ref: str | None = None
     net: str | None = None
     mode: str | None = None
+    event: str | None = None
     sense: str = "at_most"
     low: np.ndarray | None = None
     ambient_c: np.ndarray | None = None

@@ -11,7 +11,9 @@ from .values import Text
 
 NOT_BUILT: dict[str, dict[str, bool]] = {
     "annotations": {
-        "events": True,
+        "events.*.kind=stall": True,
+        "events.*.kind=overload": True,
+        "events.*.kind=waveform": True,
         "copper": True,
         "parts.*.heat.copper": True,
         "surroundings.enclosure": True,

@@ -147,6 +147,6 @@ def two_body_foster(r_near_k_per_w, c_near_j_per_k, r_far_k_per_w, c_far_j_per_k
     slow_s = np.maximum((both_s + root_s) / 2.0, AT_ONCE_S)
     fast_s = np.maximum(product / slow_s, AT_ONCE_S)
     apart_s = np.where(slow_s > fast_s, slow_s - fast_s, 1.0)
-    fast_r = np.where(slow_s > fast_s, ((r_1 + r_2) * slow_s - r_1 * r_2 * c_2) / apart_s, 0.0)
+    fast_r = np.where(slow_s > fast_s, (r_1 * r_2 * c_2 - (r_1 + r_2) * fast_s) / apart_s, 0.0)
     fast_r = np.clip(fast_r, 0.0, r_1 + r_2)
     return np.stack([fast_r, r_1 + r_2 - fast_r], axis=-1), np.stack([fast_s, slow_s], axis=-1)

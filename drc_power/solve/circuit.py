@@ -8,6 +8,7 @@ from dataclasses import dataclass, field
 from ..board import Board, BoardPart, Mode, Quantity
 from ..faults import Mark
 from .branches import Branch, Buck
+from .events.probe import EventProbe
 from .heat import HeatModel, HeatPath, Sink
 from .variables import ONE, ZERO, Box, Param
 
@@ -99,6 +100,7 @@ class Circuit:
     unfed: tuple[Unfed, ...]
     missing: Mapping[str, tuple[str, ...]]
     heat_missing: Mapping[str, str]
+    events: tuple[EventProbe, ...] = ()
 
 
 @dataclass(slots=True)
@@ -122,6 +124,7 @@ class Builder:
     chopped: dict[str, tuple[Param, Param | None]] = field(default_factory=dict)
     bucks: dict[str, Buck] = field(default_factory=dict)
     staged: set[str] = field(default_factory=set)
+    events: list[EventProbe] = field(default_factory=list)
     ambient_c: Param = ZERO
 
     @property
@@ -177,4 +180,5 @@ class Builder:
         """The circuit as collected."""
         return Circuit(self.mode, self.box, tuple(self.branches), reference, HeatModel(tuple(self.paths), self.sinks),
                        self.ambient_c, self.probes, tuple(self.loads), tuple(self.sources), tuple(self.unfed.values()),
-                       {ref: tuple(data) for ref, data in self.missing.items()}, self.heat_missing)
+                       {ref: tuple(data) for ref, data in self.missing.items()}, self.heat_missing,
+                       tuple(self.events))

@@ -1,0 +1,114 @@
+"""`EventView`: what the rules on events read: one part in one event, its path and its temperatures."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from ..board import Limit
+from ..solve.events.impedance import JunctionImpedance, impedance_of
+from ..solve.events.probe import EventProbe
+from ..solve.events.response import CASE_HELD_S, Response, capacities, heat_path, longest_s, respond
+from .house import Conditions, Target
+from .judgement import Judgement
+from .safe_area import SafeArea, safe_area_of
+from .view import ElementView
+
+
+@dataclass(frozen=True)
+class EventView(ElementView):
+    """One part in one event: as `ElementView`, with the event's path and temperatures."""
+
+    event: EventProbe
+
+    @property
+    def name(self) -> str:
+        return self.event.name
+
+    @cached_property
+    def response(self) -> Response | None:
+        """The event at every sample; None where its own numbers are missing."""
+        return None if self.event.lacking or self.event.path is None else respond(self.view.solution, self.event)
+
+    @cached_property
+    def longest_s(self) -> float:
+        return longest_s(self.view.solution.circuit, self.event)
+
+    @cached_property
+    def area(self) -> SafeArea | None:
+        memo = self.event.memo
+        if "area" not in memo:
+            memo["area"] = safe_area_of(self.part, self.view.board.rules.methods)
+        return memo["area"]
+
+    @cached_property
+    def start_missing(self) -> tuple[str, ...]:
+        """What the temperature at the event's start needs and nobody gave."""
+        return (*self.missing, *self.heat_missing)
+
+    @cached_property
+    def capacity_missing(self) -> tuple[str, ...]:
+        """A heat capacity beyond the case, which an event longer than a second needs."""
+        path = heat_path(self.view.solution.circuit, self.ref)
+        heat = self.part.note.heat
+        if not self.longest_s > CASE_HELD_S or path is None or (heat is not None and heat.case is not None):
+            return ()
+        found = () if path.case_k_per_w is not None else ("thermal.rth_jc",)
+        if any(capacities(self.view.solution.circuit, self.ref)):
+            return found
+        return (*found, f"sinks.{path.sink}.capacity" if path.sink else "thermal.capacity")
+
+    @cached_property
+    def split_missing(self) -> tuple[str, ...]:
+        """How much of the way lies beyond the case, which an event that returns warms."""
+        path = heat_path(self.view.solution.circuit, self.ref)
+        return ("thermal.rth_jc",) if self.event.every is not None and path is not None and path.case_k_per_w is None else ()
+
+    @cached_property
+    def conditions(self) -> Conditions:
+        if self.response is None or self.response.rise_k is None:
+            return super().conditions
+        return Conditions(self.view.solution.ambient_c, self.response.case_c[:, -1], self.response.peak_c)
+
+    def _limits(self, stress: str) -> tuple[Limit, ...]:
+        target = Target(self.kind, stress, self.view.mode.name, self.part, event=self.name)
+        return self.view.house.limits_on(target)
+
+    def per_sample(self, values: np.ndarray) -> np.ndarray:
+        """A quantity of each distinct path, at every sample."""
+        return values[self.response.row]
+
+    @cached_property
+    def impedance(self) -> JunctionImpedance | None:
+        memo = self.event.memo
+        if "impedance" not in memo:
+            memo["impedance"] = impedance_of(self.part)
+        return memo["impedance"]
+
+    def judgement(self, rule: str, quantity: str, unit: str, value, stress: str, rated=None, **more) -> Judgement:
+        """A judgement of this event on this part, against the rating of a stress after house rules."""
+        rated = self.rating(stress) if rated is None else rated
+        allowed, limit = self.allowed(stress, rated)
+        return Judgement(
+            rule, self.subject, quantity, unit, value, rated, allowed, self.event.note.mark, stress, self.ref,
+            mode=self.view.mode.name, event=self.name, limit=limit, **{"proven": self.solved, **more})
+
+
+def deciding_share(element: EventView) -> np.ndarray:
+    """How much of the area is used up along the path, shape (sample, slice)."""
+    response = element.response
+    return element.area.shares(response.path, response.row, response.case_c[:, 1:])
+
+
+def deciding_point(element: EventView) -> tuple[np.ndarray, np.ndarray]:
+    """Voltage and current of each distinct path where one moment of it, held on, would use most of the area."""
+    path, area = element.response.path, element.area
+    lines = area.lines_a(path.v_v)
+    at_line = np.minimum(np.searchsorted(area.lengths_s, path.lasts_s), len(lines) - 1)
+    allowed = np.take_along_axis(np.stack(lines, axis=-1), at_line[:, None, None], axis=-1)[..., 0]
+    with np.errstate(divide="ignore", invalid="ignore"):
+        use = np.where(path.i_a > 0.0, path.i_a / allowed, 0.0)
+    at = np.argmax(np.where(np.isnan(use), -1.0, use), axis=1)[:, None]
+    return tuple(np.take_along_axis(x, at, axis=1)[:, 0] for x in (path.v_v, path.i_a))
