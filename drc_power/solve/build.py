@@ -6,6 +6,7 @@ from ..board import Mode
 from .branches import Linear, Resistive, Source, Switching
 from .circuit import Builder, Circuit
 from .dividers import add_dividers
+from .events.build import add_events
 from .heatpaths import add_ambient, add_heat_paths
 from .parts import MAKERS
 from .stages import add_chopped, add_stages
@@ -23,6 +24,7 @@ def build_circuit(mode: Mode) -> Circuit:
     add_parts(builder)
     add_dividers(builder)
     add_heat_paths(builder, temperature_dependent(builder.branches))
+    add_events(builder)
     return builder.finish(_references(builder))
 
 
