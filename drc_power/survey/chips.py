@@ -15,7 +15,7 @@ _REFERENCE = re.compile(r"voltage reference|\bREF\d{2,4}|ADR\d|LT146\d|MAX61\d\d
 _BRIDGE_CHIP = re.compile(
     r"\b(DRV8(?!3[0-2]|35)\d{3}|L29[38]|L6(20|2[03]|47|48)\d\w*|A(49|39|59)\d\d|TMC(2[0-9]\d\d|51\d\d)|TB6[56]\d\d|VNH\w+|BTN\w+|BTS79\d\w*|STSPIN\w*|STK\d|LB19\d\d|TLE\d{4}|MC33(88|92)\d\w*"
     r"|TPA3\d\w*|TAS5\d\w*|TDA(7\d{3}|20[0-9]{2}|89\d\d)\w*|LM(3886|4780|3875|1875|4766)\w*|PAM8\d\w*|MAX98\d\w*|ULN2\d{3}\w*|TPIC\w*|SN754410)"
-    r"|(motor|stepper|h.bridge|bldc) driver|class.?d.{0,20}amplifier|audio power amp|darlington.{0,20}arrays?",
+    r"|(motor|stepper|h.bridge|bldc) driver|class.?d.{0,20}amplifier|^(?!.*protect).*audio power amp|darlington.{0,20}arrays?",
     re.IGNORECASE,
 )
 _OUT = re.compile(r"^(OUT|O|SPK|MOT|M|[ABUVW]O)[A-Z0-9_]{0,5}[+-]?$|^[ABUVW]?OUT\w{0,4}[+-]?$|^[12][AB]$|^O[AB][12]$")

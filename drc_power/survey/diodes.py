@@ -38,7 +38,7 @@ def _has_reservoir(nets: Standing, net: str) -> bool:
 
 def _switched(nets: Standing, net: str, ref: str) -> bool:
     """A node that a transistor, a converter or a winding moves about."""
-    return net not in nets.supplies and not nets.holds_charge(net) and any(
+    return net not in nets.supplies and not nets.holds_charge(net) and not nets.wiring.tied(net, "fuse") and any(
         tap.terminal in MAIN_ENDS or tap.terminal == "switch_node" or tap.kind in ("inductor", "transformer")
         for tap in nets.wiring.taps(net)
         if tap.ref != ref
@@ -57,8 +57,8 @@ def _bridge_leg(nets: Standing, c: Conduit) -> Verdict | None:
         if is_small(nets, c.ref) or node in nets.supplies or node in nets.low or nets.holds_charge(node):
             continue
         partner = any(t.ref != c.ref and t.terminal == mine for t in nets.wiring.tied(node, "diode"))
-        rest = _kinds(nets, node, c.ref) - {"diode", "capacitor", "tvs", "resistor", "test-point", "fuse"}
-        if partner and rest and rest <= {"connector", "transformer", "source", "inductor", "switch"}:
+        rest = _kinds(nets, node, c.ref) - {"diode", "capacitor", "tvs", "resistor", "test-point"}
+        if partner and rest and rest <= {"connector", "transformer", "source", "inductor", "switch", "fuse"}:
             return Verdict("switch", ("leg of a rectifier bridge",), 0.85)
     return None
 
@@ -139,6 +139,16 @@ def _rectifier(nets: Standing, c: Conduit) -> Verdict | None:
     return None
 
 
+def _snubber(nets: Standing, c: Conduit) -> Verdict | None:
+    """From a winding's switched end into a resistor and capacitor back to its supply: limits the switch's voltage."""
+    if not _switched(nets, c.a, c.ref) or _kinds(nets, c.b, c.ref) - {"resistor", "capacitor", "tvs", "zener", "test-point"}:
+        return None
+    ends = {nets.wiring.across(t) for kind in ("resistor", "capacitor", "tvs", "zener") for t in nets.wiring.tied(c.b, kind)}
+    if ends and ends <= nets.supplies and not nets.holds_charge(c.b):
+        return Verdict("clamp", ("snubber of a winding: limits the voltage at a switched node",), 0.7)
+    return None
+
+
 def _multiplier(nets: Standing, c: Conduit) -> Verdict | None:
     """A stage of a voltage multiplier: only diodes and capacitors beyond a node that carries power."""
     beyond = _kinds(nets, c.b, c.ref) - {"resistor", "connector", "test-point"}
@@ -162,7 +172,7 @@ def _feeds(nets: Standing, net: str, ref: str) -> bool:
 
 _RULES: tuple[Callable[[Standing, Conduit], Verdict | None], ...] = (
     _bridge_leg, _bootstrap, _around_regulator, _around_pass, _coil_diode, _reversed_across_supply, _line_clamp, _freewheel_up, _freewheel_down,
-    _in_gate_network, _rectifier, _multiplier, _series,
+    _in_gate_network, _snubber, _rectifier, _multiplier, _series,
 )
 
 

@@ -98,6 +98,18 @@ def weigh(part: Part) -> dict[str, list[tuple[float, str]]]:
         evidence[clue.kind].append((clue.weight, f"symbol name {texts['symbol']!r}"))
     for clue in pin_clues(part):
         evidence[clue.kind].append((clue.weight, clue.words))
+    return _with_family(evidence)
+
+
+_SHAPE = ("reference letters", "footprint", "pins named")
+
+
+def _with_family(evidence: dict[str, list[tuple[float, str]]]) -> dict[str, list[tuple[float, str]]]:
+    """What shows a diode by its shape alone speaks as much for a Zener diode or a suppressor, where anything does."""
+    shape = [item for item in evidence.get("diode", ()) if item[1].startswith(_SHAPE)]
+    for kind in ("zener", "tvs"):
+        if kind in evidence:
+            evidence[kind] = evidence[kind] + shape
     return evidence
 
 
@@ -110,7 +122,7 @@ def identify_part(part: Part) -> Identity:
     evidence = weigh(part)
     ranking = sorted(evidence.items(), key=lambda item: (-_total(item[1]), item[0]))
     if not ranking or _total(ranking[0][1]) < _ENOUGH:
-        return Identity(part.ref, "unknown", 0.0, ("nothing says what it is",), {}, "")
+        return Identity(part.ref, "unknown", 0.0, ("nothing says what it is",), terminals.terminals_of("unknown", part)[1], "")
     kind, items = ranking[0]
     best = _total(items)
     second = max(0.0, _total(ranking[1][1])) if len(ranking) > 1 else 0.0

@@ -12,6 +12,7 @@ from drc_power.survey.verdict import Verdict
 
 _WORDS = {
     "ic": "supply pin of a chip",
+    "unknown": "supply pin of a part that nothing else identifies",
     "gate-driver": "supply pin of a gate driver",
     "connector": "contact where power goes out",
     "motor": "motor",
@@ -36,7 +37,7 @@ def find_loads(nets: Standing, sources: Sequence[End]) -> list[End]:
 
 
 def _drawing_nets(nets: Standing, part: Part, kind: str) -> list[str]:
-    if kind in ("ic", "gate-driver"):
+    if kind in ("ic", "gate-driver", "unknown"):
         return [net for net in nets.wiring.nets_of(part.ref, "supply") if net in nets.supplies]
     wanted = nets.wiring.nets_of(part.ref, "coil") if kind == "relay" else part.nets_of()
     powered = [net for net in wanted if nets.is_power(net)]

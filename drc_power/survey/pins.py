@@ -126,7 +126,8 @@ def supply_pins(part: Part) -> tuple[str, ...]:
 
 
 @lru_cache(maxsize=8192)
-def _is_supply_name(name: str) -> bool:
+def is_supply_name(name: str) -> bool:
+    """Whether a pin of this plain name takes a chip's supply."""
     return bool(SUPPLY_NAME.match(name)) and not NOT_SUPPLY_NAME.search(name)
 
 
@@ -134,7 +135,7 @@ def _is_supply(pin: Pin) -> bool:
     name = plain(pin.name)
     if is_ground_pin(pin) or NOT_SUPPLY_NAME.search(name):
         return False
-    return _is_supply_name(name) or pin.type == "power_in"
+    return is_supply_name(name) or pin.type == "power_in"
 
 
 def is_ground_pin(pin: Pin) -> bool:

@@ -7,13 +7,14 @@ from collections.abc import Callable, Iterable
 from typing import NamedTuple
 
 from drc_power.survey import pins
+from drc_power.survey.pins import plain
 from drc_power.survey.values import farads
 from drc_power.survey.voltages import is_control_name, is_supply_name, voltage_of_name
 from drc_power.survey.wiring import Tap, Wiring
 
 REGULATORS = frozenset({"linear-regulator", "switching-regulator", "load-switch"})
 _CHIPS = frozenset({"ic", "gate-driver", "optocoupler", "unknown", "crystal"})
-ENOUGH = 2.5
+ENOUGH = 2.0
 
 
 class NetView(NamedTuple):
@@ -81,6 +82,7 @@ ROWS: tuple[Row, ...] = (
     Row(lambda v: is_supply_name(v.net), 2.0, 2.0, "net name is a supply's"),
     Row(lambda v: is_control_name(v.net), -4.0, -4.0, "net name is a control signal's"),
     Row(lambda v: v.count(_is_supply_tap), 1.0, 3.0, "supply pins of chips"),
+    Row(lambda v: bool(v.count(lambda t: _is_supply_tap(t) and pins.is_supply_name(plain(t.pin.name)))), 0.5, 0.5, "supply pin by its name"),
     Row(lambda v: v.count(lambda t: t.pin.type == "power_out" and not pins.is_ground_pin(t.pin)), 2.0, 2.0, "power output pin"),
     Row(lambda v: v.count(lambda t: t.kind in REGULATORS and t.terminal == "input"), 3.0, 3.0, "input of a regulator"),
     Row(lambda v: v.count(lambda t: t.kind in REGULATORS and t.terminal == "output"), 3.0, 3.0, "output of a regulator"),

@@ -7,7 +7,7 @@ import re
 from drc_power.survey import pins
 from drc_power.survey.conduits import Conduit
 from drc_power.survey.grounds import is_low_ohm
-from drc_power.survey.loads import has_power_size, load_on
+from drc_power.survey.loads import has_power_size, load_on, own_size
 from drc_power.survey.pins import plain
 from drc_power.survey.standing import MAIN_ENDS, Standing
 from drc_power.survey.values import henries, ohms, watts
@@ -21,6 +21,18 @@ _RF_HENRY = 100e-9
 def takes_power(nets: Standing, net: str, without: str) -> bool:
     """Whether a net is a supply or node already, or what hangs on it draws power."""
     return nets.is_power(net) or load_on(nets, net, without)[0] >= 1.0
+
+
+def may_feed(nets: Standing, net: str, without: str) -> bool:
+    """Whether power may come from a net: a contact, battery, fuse, rectifier or power transistor on it, no signal pins."""
+    for tap in nets.wiring.taps(net):
+        if tap.ref == without:
+            continue
+        if tap.kind in ("connector", "battery", "source", "fuse", "bridge"):
+            return True
+        if tap.kind == "mosfet" and tap.terminal in MAIN_ENDS and own_size(tap.part)[0] >= 1.0:
+            return True
+    return False
 
 
 def is_return(nets: Standing, net: str, without: str) -> bool:
@@ -57,7 +69,7 @@ def judge_switch(nets: Standing, c: Conduit) -> Verdict:
     if c.a in nets.low or c.b in nets.low:
         return signal("switch to ground on a signal")
     for one, other in ((c.a, c.b), (c.b, c.a)):
-        if nets.is_power(one) and not _signal_pins(nets, other) and takes_power(nets, other, c.ref):
+        if nets.is_power(one) and not _signal_pins(nets, other) and (takes_power(nets, other, c.ref) or may_feed(nets, other, c.ref)):
             return Verdict("pass", ("a supply goes through the switch",), 0.85)
     return signal("switch on signals")
 
@@ -135,9 +147,18 @@ def _shunt(nets: Standing, c: Conduit, value: float | None) -> Verdict | None:
     for one, other in ((c.a, c.b), (c.b, c.a)):
         if nets.is_power(one) and other not in nets.low and not nets.leads_to_gate(other) and takes_power(nets, other, c.ref):
             return Verdict("pass", (f"{word} in series with a supply or a switched node",), 0.9)
+    if value and _monitored(nets, c) and (nets.is_power(c.a) or nets.is_power(c.b)):
+        return Verdict("pass", (f"{word} with a chip that measures across it",), 0.9)
     if value and all(load_on(nets, net, c.ref)[0] >= 1.5 for net in (c.a, c.b)):
         return Verdict("pass", (f"{word} between a driver and its load",), 0.7)
     return None
+
+
+def _monitored(nets: Standing, c: Conduit) -> bool:
+    """A chip has pins on both ends: it measures the current."""
+    kinds = ("ic", "gate-driver", "switching-regulator", "load-switch")
+    chips = [{t.ref for kind in kinds for t in nets.wiring.tied(net, kind)} for net in (c.a, c.b)]
+    return bool(chips[0] & chips[1])
 
 
 def _dropper(nets: Standing, c: Conduit, value: float) -> Verdict | None:

@@ -220,4 +220,5 @@ _FINDERS: dict[str, Callable[[Part], Found]] = {
     "ic": _chip,
     "gate-driver": _chip,
     "optocoupler": _chip,
+    "unknown": _chip,
 }
