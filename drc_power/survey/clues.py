@@ -105,7 +105,7 @@ SYMBOL = _rows(
     ("switch", r"^SW(_|$|ITCH)|push_?button|tact|^PB_|^BUTTON|^BTN|^SPDT|^SPST|^DPDT|switch_?inv|rotary.?enc", 5.0),
     ("crystal", r"crystal|resonator|^XTAL|oscillator|^OSC", 5.0),
     ("battery", r"^battery|batt.?hold|^CR20\d\d|^Battery_Cell", 5.0),
-    ("net-tie", r"^net-?_?tie|jumper|^JP\d?|^SJ(_|\d|$)|short_?pad|^bridge_", 6.0),
+    ("net-tie", r"^net-?_?tie|(?<!0R_)jumper|^JP\d?|^SJ(_|\d|$)|short_?pad|^bridge_", 6.0),
     ("transformer", r"transformer|^XFMR|^trafo", 6.0),
     ("test-point", r"test_?p(oin|a)|testpad|probe_?pad", 6.0),
     ("mechanical", r"mounting_?hole|fiducial|logo|heat_?sink|^hole|plated_hole|housing|^screw(_|$)|shield_?can|graphic", 6.0),

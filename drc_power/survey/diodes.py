@@ -58,7 +58,8 @@ def _bridge_leg(nets: Standing, c: Conduit) -> Verdict | None:
             continue
         partner = any(t.ref != c.ref and t.terminal == mine for t in nets.wiring.tied(node, "diode"))
         rest = _kinds(nets, node, c.ref) - {"diode", "capacitor", "tvs", "resistor", "test-point"}
-        if partner and rest and rest <= {"connector", "transformer", "source", "inductor", "switch", "fuse"}:
+        fed = rest & {"fuse", "transformer", "source"} or "connector" in rest and "ic" not in rest
+        if partner and fed and rest <= {"connector", "transformer", "source", "inductor", "switch", "fuse", "ic"}:
             return Verdict("switch", ("leg of a rectifier bridge",), 0.85)
     return None
 

@@ -21,11 +21,18 @@ _POSSIBLE = 3.0
 _SMALL_NET = 40
 
 
-def _score(wiring: Wiring, net: str, capacitors: int) -> float:
+def _name_score(net: str) -> float:
+    return sum(weight for pattern, weight in _NAMES if re.match(pattern, leaf(net)))
+
+
+def _score(wiring: Wiring, net: str, capacitors: int, has_plain: bool) -> float:
+    """Evidence that a net is a ground. Beside a net with a plain ground's name, VSS may be a negative rail."""
     taps = wiring.taps(net)
-    name = sum(weight for pattern, weight in _NAMES if re.match(pattern, leaf(net)))
+    name = _name_score(net)
     named_pins = 1.5 * len({tap.ref for tap in taps if tap.kind not in ("capacitor", "resistor") and pins.is_ground_pin(tap.pin)})
     minus = sum(2.0 if tap.kind == "battery" else 1.0 for tap in taps if tap.terminal == "minus")
+    if has_plain and name < _POSSIBLE and not named_pins:
+        return 0.0
     share = sum(1 for tap in taps if tap.kind == "capacitor") / max(1, capacitors)
     return name + min(6.0, named_pins) + min(3.0, minus) + 3.0 * share
 
@@ -33,7 +40,8 @@ def _score(wiring: Wiring, net: str, capacitors: int) -> float:
 def find_grounds(wiring: Wiring) -> frozenset[str]:
     """The ground nets. Where no net is a likely one, the likeliest of all, so that every board has one."""
     capacitors = sum(1 for part in wiring.parts() if wiring.kind(part.ref) == "capacitor")
-    scores = {net: _score(wiring, net, capacitors) for net in wiring.nets}
+    has_plain = any(_name_score(net) >= _LIKELY for net in wiring.nets)
+    scores = {net: _score(wiring, net, capacitors, has_plain) for net in wiring.nets}
     grounds = {net for net, score in scores.items() if score >= _LIKELY}
     if not grounds and scores:
         best = max(scores.values())
