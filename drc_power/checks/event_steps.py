@@ -32,7 +32,7 @@ def junction_steps(element: EventView, k: int) -> Steps:
     event_k, before_w = response.rise_k[response.row[k], at], response.start.power_w[k]
     unit = response.unit_k[response.row[k], at]
     source = impedance.entry
-    if impedance.is_fitted:
+    if impedance.is_fitted and response.period_s is not None:
         source += f"; its Foster network of {len(impedance.foster.tau_s)} terms is within {100 * impedance.foster.residual:.2g} % of its points"
     returns = ", returning for ever" if response.period_s is not None else ""
     return (*path_steps(element, k),
@@ -88,7 +88,7 @@ def _line(element: EventView, length_s: float) -> str:
     lengths = area.lengths_s
     if not len(lengths) or length_s > lengths[-1] or element.longest_s > lengths[-1] and length_s >= lengths[-1] * (1 - 1e-9):
         return "by the dc line"
-    above = lengths[np.searchsorted(lengths, length_s * (1 - 1e-9))]
+    above = lengths[min(int(np.searchsorted(lengths, length_s * (1 - 1e-9))), len(lengths) - 1)]
     return f"by the lines up to {above:g} s"
 
 

@@ -84,25 +84,25 @@ class SafeArea:
         """
         if path.t_s.shape[1] == 2:
             one = Path(path.t_s[row], path.v_v[row], path.i_a[row])
-            return np.where(case_c < self.tj_max_c, self.share(one, np.minimum(case_c, self.tj_max_c - 1e-6)), np.inf)
+            return np.where(case_c >= self.tj_max_c, np.inf, self.share(one, np.minimum(case_c, self.tj_max_c - 1e-6)))
         if self.scaling == "current" and not self.is_derived:
             factor = case_factor(case_c, self.tj_max_c)
             with np.errstate(divide="ignore", invalid="ignore"):
-                return np.where(factor > 0.0, self._tables(path, (T_DRAWN_C,))[row, 0] / factor, np.inf)
+                return np.where(factor <= 0.0, np.inf, self._tables(path, (T_DRAWN_C,))[row, 0] / factor)
         return self._between_cases(path, row, case_c)
 
     def _between_cases(self, path: Path, row: np.ndarray, case_c: np.ndarray) -> np.ndarray:
         """An area whose lines change shape with temperature: worked out at some, straight between."""
         cases_c = np.linspace(COLDEST_C, self.tj_max_c - 1e-6, N_CASES)
         tables = self._tables(path, tuple(cases_c))
-        within_c = np.clip(case_c, COLDEST_C, cases_c[-1])
+        within_c = np.clip(np.nan_to_num(case_c, nan=COLDEST_C), COLDEST_C, cases_c[-1])
         at = np.clip(np.searchsorted(cases_c, within_c, side="right") - 1, 0, N_CASES - 2)
         slices = np.arange(case_c.shape[1])
-        # Headroom goes straight with temperature where use goes to infinity.
+        # A case that is not known gives no answer; headroom goes straight with temperature where use goes to infinity.
         low, high = (1.0 / np.maximum(tables[row[:, None], k, slices], 1e-300) for k in (at, at + 1))
-        weight = (within_c - cases_c[at]) / (cases_c[at + 1] - cases_c[at])
+        weight = (within_c + 0.0 * case_c - cases_c[at]) / (cases_c[at + 1] - cases_c[at])
         with np.errstate(divide="ignore"):
-            return np.where(case_c < self.tj_max_c, 1.0 / (low + weight * (high - low)), np.inf)
+            return np.where(case_c >= self.tj_max_c, np.inf, 1.0 / (low + weight * (high - low)))
 
     def _tables(self, path: Path, cases_c: tuple[float, ...]) -> np.ndarray:
         """Shares at some case temperatures, shape (path, case, slice), each path worked out once."""

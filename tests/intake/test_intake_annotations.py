@@ -68,7 +68,6 @@ WRONG = [
 ]  # fmt: skip
 
 NOT_SUPPORTED = [
-    ("events: {}", "3:1: 'events' is not supported yet; leave it out"),
     ("copper: {board: b.kicad_pcb}", "3:1: 'copper' is not supported yet; leave it out"),
     ("surroundings: {enclosure: {rise: 10 K}}", "3:16: 'enclosure' is not supported yet; leave it out"),
     ("surroundings: {air: 2 m/s}", "3:21: 'air: 2 m/s' is not supported yet; leave it out"),
@@ -105,9 +104,9 @@ EVENTS = [
 
 
 @pytest.mark.parametrize(("event", "fault"), EVENTS)
-def test_events_are_checked_although_not_built(project, event, fault):
+def test_events_are_checked(project, event, fault):
     faults = project.faults(lambda: read_annotations(project.write("b.power.yaml", HEAD + f"events: {{e: {event}}}\n")))
-    assert any(each.endswith(fault) for each in faults) and any("not supported yet" in each for each in faults)
+    assert any(each.endswith(fault) for each in faults)
 
 
 def test_all_faults_at_once_in_the_order_of_the_file(project):

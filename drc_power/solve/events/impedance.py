@@ -24,10 +24,15 @@ class JunctionImpedance:
     A curve answers single events itself, by superposition; its fitted network answers trains and captures.
     """
 
-    foster: Foster
+    entry: str
+    terms: Foster | None = None
     table: tuple[tuple[float, ...], tuple[float, ...], float | None] | None = None
     reach_s: float = np.inf
-    entry: str = ""
+
+    @cached_property
+    def foster(self) -> Foster:
+        """The network given, or the one that fits the curve."""
+        return self.terms if self.terms is not None else fit_foster(*self.table)
 
     @property
     def is_fitted(self) -> bool:
@@ -49,16 +54,16 @@ class JunctionImpedance:
 
     def rise_k(self, t_s: np.ndarray, p_w: np.ndarray, period_s: np.ndarray | None = None) -> np.ndarray:
         """Rise along events, each (event, time); with a period (event,), of an event that has returned for ever."""
-        r_k_per_w, tau_s = self.foster.r_k_per_w, self.foster.tau_s
-        if self.table is None:
-            rise_k, end_k = foster_paths_k(t_s, p_w, r_k_per_w, tau_s)
-        else:
+        if self.table is not None:
             rise_k = superposed_paths_k(t_s, p_w, self.zth_k_per_w, self._integral)
-            end_k = foster_paths_k(t_s, p_w, r_k_per_w, tau_s)[1] if period_s is not None else None
+            if period_s is None:
+                return rise_k
+        along_k, end_k = foster_paths_k(t_s, p_w, self.foster.r_k_per_w, self.foster.tau_s)
         if period_s is None:
-            return rise_k
-        start_k = periodic_starts_k(end_k, t_s[:, -1] - t_s[:, 0], period_s, tau_s)
-        return rise_k + fading_k(t_s - t_s[:, :1], start_k, tau_s)
+            return along_k
+        start_k = periodic_starts_k(end_k, t_s[:, -1] - t_s[:, 0], period_s, self.foster.tau_s)
+        once_k = rise_k if self.table is not None else along_k
+        return once_k + fading_k(t_s - t_s[:, :1], start_k, self.foster.tau_s)
 
     def _integral(self, t_s: np.ndarray) -> np.ndarray:
         return np.where(t_s <= self.reach_s, table_zth_integral_k_s_per_w(t_s, *self.table), np.nan)
@@ -70,13 +75,11 @@ def impedance_of(part: BoardPart) -> JunctionImpedance | None:
     if thermal is None:
         return None
     if thermal.foster is not None:
-        return JunctionImpedance(Foster(*(np.array(thermal.foster.column(k)) for k in (0, 1)), 0.0), entry="thermal.foster")
+        return JunctionImpedance("thermal.foster", Foster(*(np.array(thermal.foster.column(k)) for k in (0, 1)), 0.0, np.inf))
     if thermal.cauer is not None:
-        r_k_per_w, tau_s = cauer_to_foster(thermal.cauer.column(0), thermal.cauer.column(1))
-        return JunctionImpedance(Foster(r_k_per_w, tau_s, 0.0), entry="thermal.cauer")
+        return JunctionImpedance("thermal.cauer", Foster(*cauer_to_foster(thermal.cauer.column(0), thermal.cauer.column(1)), 0.0, np.inf))
     if thermal.zth_jc is None:
         return None
-    times_s, zth_k_per_w = thermal.zth_jc.column(0), thermal.zth_jc.column(1)
     rth = thermal.rth_jc.max if thermal.rth_jc is not None else None
-    reach_s = np.inf if rth is not None else times_s[-1]
-    return JunctionImpedance(fit_foster(times_s, zth_k_per_w, rth), (times_s, zth_k_per_w, rth), reach_s, "thermal.zth_jc")
+    times_s, zth_k_per_w = thermal.zth_jc.column(0), thermal.zth_jc.column(1)
+    return JunctionImpedance("thermal.zth_jc", None, (times_s, zth_k_per_w, rth), np.inf if rth is not None else times_s[-1])
