@@ -45,6 +45,18 @@ def _switched(nets: Standing, net: str, ref: str) -> bool:
     )
 
 
+def _pulled_down(nets: Standing, net: str, ref: str) -> bool:
+    """A node that something pulls towards the return, or that a winding swings: a diode from it upwards freewheels."""
+    if net in nets.supplies or nets.holds_charge(net):
+        return False
+    if nets.wiring.kinds_on(net, ref) & {"inductor", "transformer", "relay", "motor"} or "switch_node" in nets.wiring.terminals_on(net):
+        return True
+    for tap in nets.wiring.taps(net):
+        if tap.terminal in MAIN_ENDS and any(n in nets.low or nets.is_negative(n) for end in MAIN_ENDS for n in nets.wiring.nets_of(tap.ref, end)):
+            return True
+    return any(tap.kind == "ic" and tap.terminal == "" and tap.pin.type in ("open_collector", "output") for tap in nets.wiring.taps(net))
+
+
 def _reversed_across_supply(nets: Standing, c: Conduit) -> Verdict | None:
     if c.a in nets.low and (c.b in nets.supplies or nets.is_power(c.b) and not _switched(nets, c.b, c.ref)):
         return Verdict("clamp", ("across the supply, conducts only when it is reversed",), 0.85)
@@ -111,7 +123,7 @@ def _line_clamp(nets: Standing, c: Conduit) -> Verdict | None:
 
 
 def _freewheel_up(nets: Standing, c: Conduit) -> Verdict | None:
-    if nets.is_power(c.b) and c.b in nets.supplies and _switched(nets, c.a, c.ref) and load_on(nets, c.a, c.ref)[0] >= 1.0:
+    if nets.is_power(c.b) and c.b in nets.supplies and _pulled_down(nets, c.a, c.ref) and load_on(nets, c.a, c.ref)[0] >= 1.0:
         return Verdict("switch", ("from a switched node to a supply: freewheel or rectifier diode",), 0.9)
     return None
 
@@ -134,7 +146,7 @@ def _rectifier(nets: Standing, c: Conduit) -> Verdict | None:
     """From a switched or alternating node into a reservoir capacitor."""
     if c.a in nets.low:
         return None
-    moved = _switched(nets, c.a, c.ref) or bool(_kinds(nets, c.a, c.ref) & {"transformer"})
+    moved = _pulled_down(nets, c.a, c.ref) or bool(_kinds(nets, c.a, c.ref) & {"transformer"})
     if moved and (nets.is_power(c.a) or load_on(nets, c.a, c.ref)[0] >= 2.0) and _has_reservoir(nets, c.b) and c.b not in nets.low:
         return Verdict("switch", ("from a switched node into a reservoir: rectifier diode",), 0.85)
     return None

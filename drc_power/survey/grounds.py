@@ -93,6 +93,14 @@ def is_low_ohm(part: Part, limit_ohm: float = 1.0) -> bool:
     return value <= limit_ohm
 
 
+_FOOT_OHM = 5.0
+
+
+def _has_foot(wiring: Wiring, net: str) -> bool:
+    """A transistor stands on the net with its source or emitter."""
+    return any(tap.terminal.startswith(("source", "emitter")) for tap in wiring.taps(net))
+
+
 def low_side(wiring: Wiring, grounds: frozenset[str], supplies: Iterable[str]) -> frozenset[str]:
     """Grounds and the nets that hang on them through shunts, beads and net ties: sources of low-side switches."""
     barred = set(supplies)
@@ -100,8 +108,10 @@ def low_side(wiring: Wiring, grounds: frozenset[str], supplies: Iterable[str]) -
     waiting = sorted(found)
     while waiting:
         for tap in wiring.taps(waiting.pop()):
-            if tap.kind in ("net-tie", "ferrite") or tap.kind == "resistor" and is_low_ohm(tap.part):
+            if tap.kind in ("net-tie", "ferrite") or tap.kind == "resistor" and is_low_ohm(tap.part, _FOOT_OHM):
                 other = wiring.across(tap)
+                if tap.kind == "resistor" and not is_low_ohm(tap.part) and not _has_foot(wiring, other):
+                    continue
                 if other and other not in found and other not in barred:
                     found.add(other)
                     waiting.append(other)

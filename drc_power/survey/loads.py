@@ -10,7 +10,7 @@ from drc_power.netlist.model import Part
 from drc_power.survey.channel import texts
 from drc_power.survey.grounds import is_low_ohm
 from drc_power.survey.pins import plain
-from drc_power.survey.standing import MAIN_ENDS, SWITCHING_PIN, Standing
+from drc_power.survey.standing import CONTROLS, MAIN_ENDS, SWITCHING_PIN, Standing
 from drc_power.survey.values import amperes, farads, ohms, watts
 from drc_power.survey.wiring import Tap
 
@@ -119,7 +119,11 @@ def load_on(nets: Standing, node: str, without: str = "") -> tuple[float, tuple[
     if node in nets.supplies:
         return 1.5, ("a supply",)
     total, words = 0.0, []
-    taps = [t for net in sorted(nets.far(node, without)) for t in nets.wiring.taps(net) if t.ref != without]
+    own = {net for name in CONTROLS for net in nets.wiring.nets_of(without, name)} if without else set()
+    taps = [
+        t for net in sorted(nets.far(node, without)) for t in nets.wiring.taps(net)
+        if t.ref != without and not (own and t.kind == "resistor" and nets.wiring.across(t) in own)
+    ]
     for row in HANGS:
         weight = row.weight * sum(1 for tap in taps if row.holds(nets, tap))
         weight = max(weight, row.limit) if row.limit < 0 else min(weight, row.limit)

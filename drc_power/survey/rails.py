@@ -46,12 +46,21 @@ class Row(NamedTuple):
     words: str
 
 
-def _is_big(tap: Tap) -> bool:
-    """A suppressor of supply size, not one for a data line."""
-    return bool(re.search(r"SM[ABCD]J|P6KE|1\.?5KE|5KP|SM[ABC](\b|_)|DO-?(201|214|15)|SMF\d|RV_Disc|varistor|\d\dD\d\d\dK", f"{tap.part.value} {tap.part.footprint} {tap.part.symbol}", re.IGNORECASE))
+_SURGE_NUMBER = re.compile(r"^(SM[ABCD]J|SMDJ|P6KE|1[.]?5KE|5KP|SMF)\d", re.IGNORECASE)
+_SURGE_SIZE = re.compile(r"SM[ABC](\b|_)|DO-?(201|214|15)|RV_Disc|varistor|\d\dD\d\d\dK", re.IGNORECASE)
+
+
+def _is_surge(view: NetView, tap: Tap) -> bool:
+    """A suppressor of supply size from the net to a ground, not one for a data line."""
+    if tap.kind not in ("tvs", "zener", "diode") or view.wiring.across(tap) not in view.grounds:
+        return False
+    size = f"{tap.part.value} {tap.part.footprint} {tap.part.symbol}"
+    return bool(_SURGE_NUMBER.match(tap.part.value)) or tap.kind == "tvs" and bool(_SURGE_SIZE.search(size))
 
 
 def _is_supply_tap(tap: Tap) -> bool:
+    if tap.kind in REGULATORS:
+        return tap.terminal == "" and tap.pin.type == "power_in" and pins.is_supply_name(plain(tap.pin.name))
     return tap.kind in _CHIPS and tap.terminal == "supply"
 
 
@@ -91,7 +100,8 @@ ROWS: tuple[Row, ...] = (
     Row(_steady_source, 3.0, 3.0, "source or battery"),
     Row(lambda v: v.count(lambda t: t.kind == "connector" and t.pin.number in pins.supply_pins(t.part)), 2.0, 2.0, "supply contact of a connector"),
     Row(lambda v: len(v.decouplers()), 0.5, 1.5, "capacitors to ground"),
-    Row(lambda v: v.count(lambda t: t.kind == "tvs" and v.wiring.across(t) in v.grounds and _is_big(t)), 1.5, 1.5, "surge suppressor to ground"),
+    Row(lambda v: v.count(lambda t: _is_surge(v, t)), 1.5, 1.5, "surge suppressor to ground"),
+    Row(lambda v: bool(v.wiring.tied(v.net, "connector")) and v.count(lambda t: _is_surge(v, t)), 1.0, 1.0, "surge suppressor at a contact"),
     Row(lambda v: v.count(lambda t: t.kind == "diode" and t.terminal == "cathode" and bool(v.wiring.tied(v.wiring.across(t), "connector"))), 1.0, 1.0, "fed through a diode from a contact"),
     Row(lambda v: any((farads(t.part.value) or 0) >= 4.7e-6 for t in v.decouplers()), 1.0, 1.0, "bulk capacitor"),
     Row(lambda v: not v.decouplers() and not v.count(_is_supply_tap) and v.count(_is_signal_tap), -3.0, -3.0, "driven by a signal output"),

@@ -142,6 +142,8 @@ def judge_resistor(nets: Standing, c: Conduit) -> Verdict:
 
 def _shunt(nets: Standing, c: Conduit, value: float | None) -> Verdict | None:
     word = "link" if value == 0 else "current-sense resistor"
+    if value and _under_a_chip(nets, c):
+        return Verdict("pass", (f"{word} between a chip and the return",), 0.85)
     if is_return(nets, c.a, c.ref) and is_return(nets, c.b, c.ref):
         return Verdict("pass", (f"{word} in a return",), 0.9)
     for one, other in ((c.a, c.b), (c.b, c.a)):
@@ -155,6 +157,14 @@ def _shunt(nets: Standing, c: Conduit, value: float | None) -> Verdict | None:
     return None
 
 
+def _under_a_chip(nets: Standing, c: Conduit) -> bool:
+    """From a ground to a pin of a chip that switches a load itself, as under the bridges of a motor driver."""
+    for ground, other in ((c.a, c.b), (c.b, c.a)):
+        if ground in nets.grounds and other not in nets.grounds and not nets.is_power(other):
+            return bool(nets.wiring.kinds_on(other, c.ref) & {"ic", "gate-driver", "switching-regulator"})
+    return False
+
+
 def _monitored(nets: Standing, c: Conduit) -> bool:
     """A chip has pins on both ends: it measures the current."""
     kinds = ("ic", "gate-driver", "switching-regulator", "load-switch")
@@ -165,6 +175,8 @@ def _monitored(nets: Standing, c: Conduit) -> bool:
 def _dropper(nets: Standing, c: Conduit, value: float) -> Verdict | None:
     if nets.is_power(c.a) and nets.is_power(c.b) and (c.a in nets.supplies or c.b in nets.supplies) and not _switching(nets, c):
         return Verdict("pass", ("resistor between two supplies: filter or dropper",), 0.7)
+    if c.a in nets.low and c.b in nets.low and is_return(nets, c.a, c.ref) and is_return(nets, c.b, c.ref):
+        return Verdict("pass", ("low resistance in a return",), 0.7)
     if value > 10.0 or nets.leads_to_gate(c.a) or nets.leads_to_gate(c.b):
         return None
     for one, other in ((c.a, c.b), (c.b, c.a)):

@@ -7,6 +7,7 @@ import re
 from drc_power.survey.grounds import find_grounds, is_low_ohm, low_side
 from drc_power.survey.rails import find_supplies
 from drc_power.survey.values import farads, ohms
+from drc_power.survey.voltages import leaf, voltage_of_name
 from drc_power.survey.wiring import Tap, Wiring
 
 MAIN_ENDS = ("drain", "source", "collector", "emitter", "drain_2", "source_2", "collector_2", "emitter_2")
@@ -29,6 +30,10 @@ class Standing:
     def is_power(self, net: str) -> bool:
         """A supply, or a net that an element already found carries power to; never a ground."""
         return net in self.power and net not in self.low
+
+    def is_negative(self, net: str) -> bool:
+        """A supply below ground, by its name."""
+        return net in self.supplies and (voltage_of_name(net) or 0.0) < 0 or net in self.supplies and leaf(net).startswith("-")
 
     def is_any(self, net: str) -> bool:
         """Power or return."""

@@ -193,6 +193,11 @@ def _chip(part: Part) -> Found:
     shown = {"supply": tables.supply_pins(part), "ground": tables.ground_pins(part)}
     plus = tuple(p.number for p in part.pins if re.match(r"^IP\+|^IS?\+$", plain(p.name)))
     minus = tuple(p.number for p in part.pins if re.match(r"^IP-|^IS?-$", plain(p.name)))
+    if not plus:
+        plus = tuple(p.number for p in part.pins if re.match(r"^V?IN\+$", plain(p.name)))
+        minus = tuple(p.number for p in part.pins if re.match(r"^V?IN-$", plain(p.name)))
+        if min(len(plus), len(minus)) < 2 or any(p.type == "input" for p in part.pins if p.number in plus):
+            plus = ()
     if plus and minus:
         shown |= {"a": plus, "b": minus}
     return {name: numbers for name, numbers in shown.items() if numbers}, ()
