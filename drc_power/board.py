@@ -9,6 +9,7 @@ from functools import cached_property
 
 from .faults import Fault, InputError, Mark
 from .intake.annotations import Annotations, ModeView, lay_file_over_fields, part_note_from_fields
+from .intake.captures import Capture
 from .intake.devices import Device, DeviceLibrary
 from .intake.notes import EventNote, InterfaceNote, LoadNote, PartNote, RailNote, StageNote
 from .intake.rules import Limit, RulePack
@@ -95,6 +96,7 @@ class Board:
     library: DeviceLibrary
     rules: RulePack
     notes: list[str] = field(default_factory=list)
+    captures: Mapping[str, Capture] = field(default_factory=dict)
 
     @cached_property
     def grounds(self) -> tuple[str, ...]:

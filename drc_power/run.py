@@ -16,6 +16,7 @@ from .findings.model import Coverage, Finding, InputFile, NetPoint, OperatingPoi
 from .findings.order import finding_key
 from .findings.waiving import Waiver, apply_waivers
 from .intake.annotations import Annotations, read_annotations
+from .intake.captures import read_captures
 from .intake.devices import read_devices
 from .intake.rules import read_rules
 from .intake.waivers import read_waivers
@@ -78,9 +79,11 @@ def read_board(path: str | os.PathLike[str], run: Run) -> tuple[Board, tuple[Inp
     rules = read_rules(annotations.rules, annotations.folder)
     library = read_devices(annotations.devices, annotations.folder)
     waivers = read_waivers(annotations.waivers, annotations.folder) if annotations.waivers else None
-    board = Board(annotations, netlist, survey_netlist(netlist), library, rules)
+    captures = read_captures(annotations)
+    board = Board(annotations, netlist, survey_netlist(netlist), library, rules, captures=captures)
     board.check_names()
-    files = [annotations.source_file, *library.files, *rules.files, *(waivers.files if waivers else ())]
+    files = [annotations.source_file, *library.files, *rules.files, *(waivers.files if waivers else ()),
+             *dict.fromkeys(capture.file for capture in captures.values())]
     inputs = [InputFile("netlist", str(annotations.netlist), netlist.sha256)]
     inputs += [InputFile(f.role, f.path, f.sha256) for f in files]
     return board, tuple(inputs), _waivers(waivers)

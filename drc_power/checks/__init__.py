@@ -5,13 +5,13 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from ..solve.solution import Solution
-from . import coverage, derating, envelope, events, heat, network
+from . import coverage, derating, envelope, events, heat, linear, network
 from .house import House
 from .judgement import Judgement
 from .view import View
 
 RULES = (heat.dissipation, heat.junction, envelope.envelope, derating.derating, network.headroom,
-         network.load_voltage, network.source_limit, network.runaway, network.unsolved, coverage.rails, events.events)
+         network.load_voltage, network.source_limit, network.runaway, network.unsolved, coverage.rails, linear.steady, events.events)
 
 
 def judge(solution: Solution, house: House) -> list[Judgement]:

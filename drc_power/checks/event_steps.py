@@ -62,7 +62,7 @@ def envelope_steps(element: EventView, k: int) -> Steps:
     row = response.row[k]
     case = response.case_c[k, at + 1]
     factor = float(case_factor(min(case, area.tj_max_c), area.tj_max_c))
-    v, i = (float(x[row]) for x in deciding_point(element))
+    v, i = (float(x[row]) for x in deciding_point(element)[:2])
     lines_a = np.array([float(line[0]) for line in area.lines_a(np.array([v]))])
     n, end_s = len(area.lengths_s), response.path.t_s[row, at + 1]
     with np.errstate(divide="ignore", invalid="ignore"):

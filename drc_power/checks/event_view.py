@@ -102,8 +102,8 @@ def deciding_share(element: EventView) -> np.ndarray:
     return element.area.shares(response.path, response.row, response.case_c[:, 1:])
 
 
-def deciding_point(element: EventView) -> tuple[np.ndarray, np.ndarray]:
-    """Voltage and current of each distinct path where one moment of it, held on, would use most of the area."""
+def deciding_point(element: EventView) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    """Voltage, current and drawn safe current of each distinct path where one moment of it, held on, would use most."""
     path, area = element.response.path, element.area
     lines = area.lines_a(path.v_v)
     at_line = np.minimum(np.searchsorted(area.lengths_s, path.lasts_s), len(lines) - 1)
@@ -111,4 +111,4 @@ def deciding_point(element: EventView) -> tuple[np.ndarray, np.ndarray]:
     with np.errstate(divide="ignore", invalid="ignore"):
         use = np.where(path.i_a > 0.0, path.i_a / allowed, 0.0)
     at = np.argmax(np.where(np.isnan(use), -1.0, use), axis=1)[:, None]
-    return tuple(np.take_along_axis(x, at, axis=1)[:, 0] for x in (path.v_v, path.i_a))
+    return tuple(np.take_along_axis(x, at, axis=1)[:, 0] for x in (path.v_v, path.i_a, allowed))

@@ -11,6 +11,7 @@ from ..solve.events.impedance import FIT_WITHIN
 from ..solve.events.probe import EventProbe
 from .envelope import HAS_ENVELOPE
 from .event_ratings import ratings
+from . import linear
 from .event_steps import avalanche_steps, envelope_steps, junction_steps
 from .event_view import EventView, deciding_point, deciding_share
 from .heat import HAS_JUNCTION
@@ -24,6 +25,8 @@ NEVER_ENDS = "the breakdown voltage does not lie above the supply, so the avalan
 def events(view: View) -> Iterator[Judgement]:
     """Every judgement of every event that starts from this mode."""
     for probe in view.solution.circuit.events:
+        if view.only not in (None, probe.ref):
+            continue
         solved = view.solution.circuit.probes.get(probe.ref)
         if solved is None:
             yield _not_solved(view, probe)
@@ -93,10 +96,10 @@ def _area_missing(element: EventView) -> tuple[str, ...]:
 def _deciding(element: EventView) -> tuple[np.ndarray, np.ndarray]:
     """Current at the deciding point, and what the area gives there for the window that decides."""
     share = deciding_share(element).max(axis=1)
-    value = element.per_sample(deciding_point(element)[1])
+    value, alone = (element.per_sample(x) for x in deciding_point(element)[1:])
     with np.errstate(divide="ignore", invalid="ignore"):
-        # Without current nothing of the area is used: what it would give is then of no interest.
-        return value, np.where(share > 0.0, value / share, np.where(share == 0.0, np.inf, np.nan))
+        # Without current nothing of the area is used: what it would give there is the point's own.
+        return value, np.where(share > 0.0, value / share, np.where(share == 0.0, alone, np.nan))
 
 
 def avalanche(element: EventView) -> Iterator[Judgement]:
@@ -125,4 +128,4 @@ def returning(element: EventView) -> Iterator[Judgement]:
                      inputs=lambda: element.sources("limits.power"))
 
 
-RULES = (junction, envelope, avalanche, returning, ratings)
+RULES = (junction, envelope, linear.event, avalanche, returning, ratings)

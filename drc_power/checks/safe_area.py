@@ -9,6 +9,7 @@ import numpy as np
 from ..board import BoardPart
 from ..physics.area_use import window_use
 from ..physics.envelope import case_factor, curve_current_a, power_line_a, safe_current_a
+from ..solve.events.captured import CapturedPath
 from ..solve.events.impedance import impedance_of
 from ..solve.events.paths import Path
 
@@ -77,12 +78,19 @@ class SafeArea:
         t_s = np.where(unknown[:, None], 0.0, path.t_s)
         return np.where(unknown[:, None], np.nan, window_use(t_s, use[..., :n], peak, self.lengths_s, beyond))
 
+    def _captured_share(self, path: CapturedPath, t_case_c: float) -> np.ndarray:
+        """As `share` of a capture: the use of every line by every sample, then by slices."""
+        n = len(self.lengths_s)
+        use = _uses(path.raw_i_a, self.lines_a(path.raw_v_v, t_case_c))
+        held, peak = path.mean_use(use, self.lengths_s[0] if n else np.inf)
+        return window_use(path.t_s, held[..., :n], peak, self.lengths_s, held[..., -1] if self.has_any_length else None)
+
     def shares(self, path: Path, row: np.ndarray, case_c: np.ndarray) -> np.ndarray:
         """The same at each sample's own case temperature, shape (sample, slice).
 
         row: which path each sample follows, shape (sample,). case_c: at the end of each slice, shape (sample, slice).
         """
-        if path.t_s.shape[1] == 2:
+        if path.t_s.shape[1] == 2 and not isinstance(path, CapturedPath):
             one = Path(path.t_s[row], path.v_v[row], path.i_a[row])
             return np.where(case_c >= self.tj_max_c, np.inf, self.share(one, np.minimum(case_c, self.tj_max_c - 1e-6)))
         if self.scaling == "current" and not self.is_derived:
@@ -107,6 +115,10 @@ class SafeArea:
     def _tables(self, path: Path, cases_c: tuple[float, ...]) -> np.ndarray:
         """Shares at some case temperatures, shape (path, case, slice), each path worked out once."""
         found = []
+        if isinstance(path, CapturedPath):
+            if "captured" not in self.memo:
+                self.memo["captured"] = np.array([[self._captured_share(path, case_c)[0] for case_c in cases_c]])
+            return self.memo["captured"]
         for k in range(len(path.t_s)):
             one = Path(path.t_s[k : k + 1], path.v_v[k : k + 1], path.i_a[k : k + 1])
             key = one.t_s.tobytes() + one.v_v.tobytes() + one.i_a.tobytes()

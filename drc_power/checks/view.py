@@ -21,6 +21,8 @@ class View:
 
     solution: Solution
     house: House
+    only: str | None = None
+    """Judge this part alone; None for every part."""
 
     @property
     def mode(self) -> Mode:
@@ -38,7 +40,7 @@ class View:
     def elements(self) -> Iterator[ElementView]:
         """Every part that needs a verdict and has been solved."""
         for ref in self.board.elements:
-            if ref in self.solution.circuit.probes:
+            if ref in self.solution.circuit.probes and self.only in (None, ref):
                 yield ElementView(self, self.mode.parts[ref], self.solution.parts[ref], self.solution.circuit.probes[ref])
 
     def unknown(self) -> np.ndarray:

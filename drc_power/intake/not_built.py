@@ -13,7 +13,6 @@ NOT_BUILT: dict[str, dict[str, bool]] = {
     "annotations": {
         "events.*.kind=stall": True,
         "events.*.kind=overload": True,
-        "events.*.kind=waveform": True,
         "copper": True,
         "parts.*.heat.copper": True,
         "surroundings.enclosure": True,

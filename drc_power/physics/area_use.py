@@ -6,12 +6,13 @@
 | q(s, a) | - | - | the same for a pulse of length a: straight in log-log between the lines, as I = c · t^m |
 | u(τ) | - | - | share of the area used up at time τ |
 
-u(τ) = max q_1(s) over ages up to t_1, + ∫ dq(τ − a, a) over ages from t_1 to the last line's, + max(q_DC − q_N) over older
-current. A line says what a pulse of its length does; a trajectory is a sum of slices, each of which has lasted as long
+u(τ) = max q_1(s) over ages up to t_1, + ∫ dq(τ − a, a) over ages from t_1 to t_N, + once current has flowed for longer
+than t_N, the highest mean of q_DC − q_N over any window of length t_N so far. A line says what a pulse of its length does; a trajectory is a sum of slices, each of which has lasted as long
 as its age, so old current counts by how much more a longer pulse uses. A rectangle telescopes to i/I(v, t) exactly.
-For an area that heat alone limits, u is the junction's rise over its allowed rise (Duhamel's superposition); shorter
-than the shortest line and past the last one, where a curve says less than that, the hardest moment counts in full, so
-u is never below it. u grows with every current and with every length.
+For an area that heat alone limits, u is the junction's rise over its allowed rise (Duhamel's superposition); within the
+shortest line, where the area says less than that, the hardest moment counts in full, so u is never below it. The step
+to the line for any length falls on what has been sustained, not on a moment long gone. u grows with every current and
+with every length, and never lies above the rectangle of equal energy at the peak where lines go as a · t^m.
 """
 
 from __future__ import annotations
@@ -58,7 +59,11 @@ def window_use(t_s, use, peak_use, lengths_s, beyond_use=None):
     beyond_use = np.asarray(beyond_use, dtype=float)
     finite = np.isfinite(use[..., -1])
     more = np.where(finite, np.maximum(beyond_use - np.where(finite, use[..., -1], 0.0), 0.0), 0.0)
-    return total + np.where(older, more[:, None, :], 0.0).max(axis=-1)
+    reach_s = lengths_s[-1]
+    inside_s = np.where(happened, np.minimum(old_s, reach_s) - np.minimum(young_s, reach_s), 0.0)
+    with np.errstate(invalid="ignore"):
+        sustained = np.where(inside_s > 0.0, more[:, None, :] * inside_s / reach_s, 0.0).sum(axis=-1)
+    return total + np.where(older.any(axis=-1), np.maximum.accumulate(sustained, axis=-1), 0.0)
 
 
 def _grown(use, age_s, lengths_s):

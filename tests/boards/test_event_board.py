@@ -14,6 +14,7 @@ from scipy.integrate import solve_ivp
 from scipy.optimize import root
 from test_battery_board import scale_q1, scale_q2
 
+from drc_power.faults import InputError
 from drc_power.run import check
 
 Q1_FOSTER = [(0.3, 1e-3), (0.9, 12e-3), (0.8, 150e-3)]
@@ -102,7 +103,7 @@ def test_a_train_of_pulses_after_every_transient_has_gone(tmp_path):
     extra = (80.0 - at["p1"]) * sum(r * -np.expm1(-8e-3 / tau) / -np.expm1(-0.1 / tau) for r, tau in Q1_FOSTER)
     mean = (80.0 - at["p1"]) * 0.08 * 48.0
     assert found(result, "Q1", "junction.event", "hits").value == pytest.approx(at["t1"] + extra + mean, rel=1e-5)
-    assert found(result, "Q1", "dissipation.part", "hits").value == pytest.approx(at["p1"] * 0.92 + 80.0 * 0.08, rel=1e-6)
+    assert found(result, "Q1", "dissipation.part", "hits").value == pytest.approx(at["p1"] * 0.92 + 80.0 * 0.08, rel=1e-5)
 
 
 def test_a_short_behind_a_regulator(tmp_path):
@@ -224,3 +225,70 @@ def test_the_voltage_of_an_inrush_is_the_rails_maximum_unless_given(tmp_path):
     result = run(tmp_path, "plug: {kind: inrush, part: Q1, capacitance: 500 uF, slew: 1 V/ms}",
                  "known: {kind: inrush, part: Q1, capacitance: 500 uF, slew: 1 V/ms, voltage: 20 V}")
     assert [found(result, "Q1", "derating.vds", name).value for name in ("plug", "known")] == [28.0, 20.0]
+
+
+ALPHA = ("body: {knee: 0.7 V, slope: 10 mohm}", "body: {knee: 0.7 V, slope: 10 mohm}, transfer: {alpha: [[1 A, 20 mA/K], [10 A, 40 mA/K], [20 A, -20 mA/K]]}")
+
+
+@pytest.mark.parametrize(("current", "alpha"), [(4.0, 0.02 + 0.02 * 3 / 9), (15.0, 0.01), (20.0, -0.02)])
+def test_linear_mode_feeds_itself_by_voltage_impedance_and_tempco(tmp_path, current, alpha):
+    """1 − margin is V · Z_th(t) · dI/dT; past the zero-tempco point nothing of it is left."""
+    result = run(tmp_path, f"hit: {{kind: pulse, part: Q1, voltage: 20 V, current: {current} A, lasts: 8 ms}}", devices=DEVICES.replace(*ALPHA))
+    zth = sum(r * -np.expm1(-8e-3 / tau) for r, tau in Q1_FOSTER)
+    assert 1.0 - found(result, "Q1", "envelope.linear", "hit").margin == pytest.approx(max(20.0 * zth * alpha, 0.0), abs=1e-6)
+
+
+def test_linear_mode_without_a_dc_line_or_transfer_data_is_unproven(tmp_path):
+    devices = DEVICES.replace("dc: [[0.1 V, 30 A], [2 V, 30 A], [40 V, 0.5 A]], 10 ms", "10 ms")
+    result = run(tmp_path, "hit: {kind: pulse, part: Q1, voltage: 20 V, current: 0.1 A, lasts: 8 ms}", devices=devices)
+    assert found(result, "Q1", "envelope.linear", "hit").verdict == "unproven"
+    assert "transfer.alpha, or envelope.dc" in found(result, "Q1", "envelope.linear", "hit").text
+
+
+def write_capture(tmp_path, text):
+    (tmp_path / "scope.csv").write_text(text, encoding="utf-8")
+
+
+SCOPE = "seen: {kind: waveform, part: Q1, file: scope.csv, columns: {time: t, voltage: vds, current: id}, scale: {time: 0.001}}"
+
+
+def capture_of(power_w, lasts_s, n=4001, v=20.0):
+    t_s = np.linspace(0.0, lasts_s, n)
+    rows = "".join(f"{1e3 * t!r},{v!r},{power_w(t) / v!r}\n" for t in t_s.tolist())
+    return "bench supply 3, channel 1\nt,vds,id\n" + rows
+
+
+@pytest.mark.parametrize(("shape", "share", "bends"), PULSES, ids=[p[0] for p in PULSES])
+def test_a_capture_is_the_pulse_that_it_shows(tmp_path, shape, share, bends):
+    write_capture(tmp_path, capture_of(lambda t: float(80.0 * share(t / 8e-3)), 8e-3))
+    result = run(tmp_path, SCOPE, f"hit: {{kind: pulse, part: Q1, voltage: 20 V, current: 4 A, lasts: 8 ms, shape: {shape}}}")
+    for rule, tolerance in (("junction.event", 1e-3), ("envelope.event", 1e-2)):
+        seen, hit = (found(result, "Q1", rule, name) for name in ("seen", "hit"))
+        assert seen.value / seen.rated == pytest.approx(hit.value / hit.rated, rel=tolerance)
+    assert ("capture", "scope.csv") in {(file.role, file.path) for file in result.inputs}
+
+
+def test_a_gap_in_a_capture_is_unproven(tmp_path):
+    lines = capture_of(lambda t: 8.0, 8e-3, 801).splitlines()
+    lines[300:310] = [line.rsplit(",", 1)[0] + ",nan" for line in lines[300:310]]
+    write_capture(tmp_path, "\n".join(lines) + "\n")
+    result = run(tmp_path, SCOPE)
+    assert found(result, "Q1", "junction.event", "seen").verdict == "unproven"
+    assert "capture lacks between" in found(result, "Q1", "envelope.event", "seen").text
+
+
+def test_single_readings_that_are_missing_are_bridged(tmp_path):
+    lines = capture_of(lambda t: 8.0, 8e-3, 801).splitlines()
+    lines[300] = lines[300].rsplit(",", 1)[0] + ","
+    lines.insert(2, "s,V,A")
+    write_capture(tmp_path, "\n".join(lines) + "\n")
+    assert found(run(tmp_path, SCOPE), "Q1", "junction.event", "seen").verdict == "met"
+
+
+@pytest.mark.parametrize(("text", "said"), [
+    ("a,b\n1,2\n", "no line with the headings"), ("t,vds,id\n0,1,1\n1,1,1\n0.5,1,1\n", "runs backwards"), ("t,vds,id\n", "fewer than two")])
+def test_a_capture_that_is_none_is_refused_by_name(tmp_path, text, said):
+    write_capture(tmp_path, text)
+    with pytest.raises(InputError) as refused:
+        run(tmp_path, SCOPE)
+    assert any(said in str(fault) for fault in refused.value.faults)

@@ -103,3 +103,24 @@ def test_the_equivalent_rectangle_uses_as_much():
     for wanted in (0.1, 0.2, 0.3, 0.4, 0.5):
         length_s = equivalent_length_s([wanted], point, lengths_s)[0]
         assert np.exp(np.interp(np.log(length_s), np.log(lengths_s), np.log(point[0]))) == pytest.approx(wanted)
+
+
+def test_a_short_pulse_is_not_made_a_long_one_by_the_rest_after_it():
+    """What it uses once it is over is its share of a window of the last line, not the line for any length."""
+    lengths_s, lines_a = np.array([1e-3, 1e-2]), np.array([30.0, 8.0])
+    edges = np.array([0.0, 1e-3, 0.05])
+    use = np.array([[3.0], [0.0]]) / lines_a
+    share = window_use([edges], [use], [use[:, 0]], lengths_s, [[3.0, 0.0]])[0]
+    assert share[0] == pytest.approx(0.1)
+    assert share[1] == pytest.approx(0.1 * (3.0 - 3.0 / 8.0))
+
+
+def test_a_train_is_sustained_by_its_mean():
+    lengths_s, lines_a = np.array([1e-3, 1e-2]), np.array([30.0, 8.0])
+    edges = np.linspace(0.0, 0.1, 201)
+    on = (np.arange(200) % 2 == 0).astype(float)
+    use = 2.0 * on[:, None] / lines_a
+    share = window_use([edges], [use], [use[:, 0]], lengths_s, [2.0 * on / 1.0])[0].max()
+    steady = used(lambda x: 1.0, lengths_s, lines_a, 0.1, beyond_a=1.0, n=1)[-1]
+    assert steady == pytest.approx(1.0)
+    assert steady < share < 1.05 * steady

@@ -13,6 +13,7 @@ from ..branches import Linear, Source, Switching
 from ..circuit import Builder
 from ..variables import Param
 from . import paths
+from .captured import captured_path
 from .probe import EventProbe
 
 Inputs = dict[str, Param]
@@ -185,6 +186,16 @@ def _held_off(across_switch: bool, values: Mapping[str, np.ndarray]) -> paths.Pa
     return paths.rectangle(values["clamp"] + over, 0.0 * values["current"], lasts_s)
 
 
+def _waveform(builder: Builder, name: str, event: EventNote) -> list[EventProbe]:
+    capture = builder.board.captures.get(name)
+    if capture is None:
+        return list(_probes(builder, name, event, "file", "", None))
+    gaps = tuple(f"what the capture lacks between {a:g} s and {b:g} s" for a, b in capture.gaps_s[:3])
+    share = 1.0 / len(parts_of(event)) if event.sharing == "even" else 1.0
+    found = captured_path(capture.t_s, capture.v_v, capture.i_a, share)
+    return list(_probes(builder, name, event, "", "", lambda values: found, lacking=gaps))
+
+
 def clamping_of(part: BoardPart) -> Callable[[np.ndarray], np.ndarray] | None:
     """The voltage of a clamp over its current; None where the device data does not say."""
     data = part.device.conduction if part.device else None
@@ -205,5 +216,6 @@ def _clamp_entry(part: BoardPart) -> str:
 
 MAKERS: Mapping[str, Callable[[Builder, str, EventNote], list[EventProbe]]] = {
     "inrush": _inrush, "short": _short, "pulse": _pulse, "avalanche": _avalanche, "surge": _surge, "turn-off": _turn_off,
+    "waveform": _waveform,
 }
 """How each kind of event is built."""

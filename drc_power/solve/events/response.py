@@ -14,6 +14,7 @@ from ..circuit import Circuit
 from ..heat import HeatPath
 from ..solution import Solution
 from ..variables import values_of
+from .captured import CapturedPath
 from .impedance import JunctionImpedance, impedance_of
 from .paths import Path
 from .probe import EventProbe
@@ -47,6 +48,8 @@ class Response:
     @cached_property
     def energy_j(self) -> np.ndarray:
         """Heat of one event [J], shape (sample,)."""
+        if isinstance(self.path, CapturedPath):
+            return np.full(self.solution.n_samples, self.path.energy_j)
         return path_energy_j(self.path.t_s, self.path.v_v, self.path.i_a)[self.row]
 
     @cached_property
@@ -123,7 +126,8 @@ def respond(solution: Solution, probe: EventProbe) -> Response:
         parts = _work_out(solution, probe, tuple(keys), distinct)
     else:
         parts = [None if rows[0] is None else np.concatenate(rows) for rows in zip(*found, strict=True)]
-    return Response(solution, probe, Path(*parts[:3]), row.reshape(-1), *parts[3:])
+    path = probe.path({}) if probe.kind == "waveform" else Path(*parts[:3])
+    return Response(solution, probe, path, row.reshape(-1), *parts[3:])
 
 
 def _row_of(solution: Solution, probe: EventProbe, keys: tuple[str, ...], numbers: np.ndarray):
@@ -138,14 +142,24 @@ def _work_out(solution: Solution, probe: EventProbe, keys: tuple[str, ...], numb
     values = dict(zip(keys, numbers.T, strict=True))
     period_s = values.pop("every", None)
     path = probe.path(values)
-    path = Path(path.t_s, path.v_v, path.i_a * probe.share)
     impedance = _impedance(solution.circuit, probe)
+    if isinstance(path, CapturedPath):
+        return path.t_s, path.v_v, path.i_a, *_captured_rise(path, impedance, period_s)
+    path = Path(path.t_s, path.v_v, path.i_a * probe.share)
     if impedance is None:
         return path.t_s, path.v_v, path.i_a, None, None
     known = np.isfinite(path.t_s).all(axis=1) & np.isfinite(path.p_w).all(axis=1)
     t_s, p_w = np.where(known[:, None], path.t_s, 0.0), np.where(known[:, None], path.p_w, 0.0)
     rise_k, unit_k = (np.where(known[:, None], impedance.rise_k(t_s, w, period_s), np.nan) for w in (p_w, np.ones_like(p_w)))
     return path.t_s, path.v_v, path.i_a, rise_k, unit_k
+
+
+def _captured_rise(path: CapturedPath, impedance: JunctionImpedance | None, period_s: np.ndarray | None):
+    """Rise by every sample of a capture, and the unit response at the start of each slice, which takes least away."""
+    if impedance is None:
+        return None, None
+    unit_k = impedance.rise_k(path.t_s, np.ones_like(path.t_s), period_s)
+    return path.rise_k(impedance, period_s), np.concatenate([unit_k[:, :1], unit_k[:, :-1]], axis=1)
 
 
 def _impedance(circuit: Circuit, probe: EventProbe) -> JunctionImpedance | None:
