@@ -11,7 +11,7 @@ from drc_power.survey.fitted import why_not_fitted
 from drc_power.survey.graph import directed, return_distances
 from drc_power.survey.identify import identify
 from drc_power.survey.inlets import End
-from drc_power.survey.model import Element, Identity, Rail, Signal, Survey
+from drc_power.survey.model import Element, Identity, Signal, Survey
 from drc_power.survey.neighbours import with_neighbours
 from drc_power.survey.paths import trace
 from drc_power.survey.rails_found import make_rails

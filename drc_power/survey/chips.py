@@ -7,18 +7,22 @@ import re
 from drc_power.netlist.model import Part
 from drc_power.survey.channel import texts
 from drc_power.survey.conduits import Conduit
+from drc_power.survey.diodes import is_small_diode
+from drc_power.survey.patterns import one_of
 from drc_power.survey.pins import plain
 from drc_power.survey.standing import Standing
 from drc_power.survey.verdict import Verdict, signal
+from drc_power.survey.wiring import Tap
 
 _REFERENCE = re.compile(r"voltage reference|\bREF\d{2,4}|ADR\d|LT146\d|MAX61\d\d|LM4[01][0-9]\d", re.IGNORECASE)
 _BRIDGE_CHIP = re.compile(
-    r"\b(DRV8(?!3[0-2]|35)\d{3}|L29[38]|L6(20|2[03]|47|48)\d\w*|A(49|39|59)\d\d|TMC(2[0-9]\d\d|51\d\d)|TB6[56]\d\d|VNH\w+|BTN\w+|BTS79\d\w*|STSPIN\w*|STK\d|LB19\d\d|TLE\d{4}|MC33(88|92)\d\w*"
-    r"|TPA3\d\w*|TAS5\d\w*|TDA(7\d{3}|20[0-9]{2}|89\d\d)\w*|LM(3886|4780|3875|1875|4766)\w*|PAM8\d\w*|MAX98\d\w*|ULN2\d{3}\w*|TPIC\w*|SN754410)"
-    r"|(motor|stepper|h.bridge|bldc) driver|class.?d.{0,20}amplifier|^(?!.*protect).*audio power amp|darlington.{0,20}arrays?",
+    r"\b" + one_of(r"""DRV8(?!3[0-2]|35)\d{3} L29[38] L6(?:20|2[03]|47|48)\d\w* A(?:49|39|59)\d\d TMC(?:2\d\d\d|51\d\d) TB6[56]\d\d VNH\w+ BTN\w+
+        BTS79\d\w* STSPIN\w* STK\d LB19\d\d TLE\d{4} MC33(?:88|92)\d\w* TPA3\d\w* TAS5\d\w* TDA(?:7\d{3}|20\d\d|89\d\d)\w*
+        LM(?:3886|4780|3875|1875|4766)\w* PAM8\d\w* MAX98\d\w* ULN2\d{3}\w* TPIC\w* SN754410""")
+    + r"|(motor|stepper|h.bridge|bldc) driver|class.?d.{0,20}amplifier|^(?!.*protect).*audio power amp|darlington.{0,20}arrays?",
     re.IGNORECASE,
 )
-_OUT = re.compile(r"^(OUT|O|SPK|MOT|M|[ABUVW]O)[A-Z0-9_]{0,5}[+-]?$|^[ABUVW]?OUT\w{0,4}[+-]?$|^[12][AB]$|^O[AB][12]$")
+_OUT = re.compile(r"^(OUT|O|SPK|MOT|M|[ABUVW]O)[A-Z0-9_]{0,5}[+-]?$|^[ABUVW]?OUT\w{0,4}[+-]?$|^[12][AB]$|^O[AB][12]$|^\dC$|^C\d$|^Y\d$")
 
 
 def judge_regulator(nets: Standing, c: Conduit) -> Verdict:
@@ -45,11 +49,17 @@ def judge_relay(nets: Standing, c: Conduit) -> Verdict:
 def judge_transformer(nets: Standing, c: Conduit) -> Verdict:
     """A transformer counts where a source, a transistor or a converter drives it or a rectifier follows it."""
     windings = [net for side in ("primary", "secondary") for net in nets.wiring.nets_of(c.ref, side)]
-    kinds = {(t.kind, t.terminal) for net in windings for t in nets.wiring.taps(net) if t.ref != c.ref}
-    driven = any(kind in ("source", "bridge", "fuse") or terminal in ("switch_node", "drain", "collector") for kind, terminal in kinds)
-    if driven or any(nets.is_power(net) for net in windings):
+    if any(_drives_winding(tap) for net in windings for tap in nets.wiring.taps(net) if tap.ref != c.ref):
         return Verdict("pass", ("transformer on a power path",), 0.8)
     return signal("signal transformer")
+
+
+def _drives_winding(tap: Tap) -> bool:
+    if tap.kind in ("source", "bridge", "fuse") or tap.terminal in ("switch_node", "drain", "collector", "drain_2", "collector_2"):
+        return True
+    if tap.kind == "diode":
+        return not is_small_diode(tap.part)
+    return tap.kind in ("ic", "switching-regulator") and plain(tap.pin.name) in ("D", "DRAIN", "SW", "HV")
 
 
 def judge_chip(nets: Standing, c: Conduit) -> Verdict:

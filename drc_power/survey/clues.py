@@ -16,11 +16,11 @@ numbers are those that many makers share, from memory of common practice; they c
 
 from __future__ import annotations
 
-import re
 from functools import cache
 from typing import NamedTuple
 
 from drc_power.survey.families import FAMILIES
+from drc_power.survey.patterns import compiled, one_of
 
 
 class Clue(NamedTuple):
@@ -99,7 +99,9 @@ SYMBOL = _rows(
     ("bjt", r"^Q_?(NPN|PNP)|^(NPN|PNP)(_|$|-)", 6.0),
     ("igbt", r"IGBT", 7.0),
     ("fuse", r"fuse|^FUSR|^PTC_|^F_", 5.0),
-    ("connector", r"^(CONN|BUS|HEADER|HDR|PINHD|USB([-_ ]|\d|[ABC]$|MINI|MICRO|$)|RJ\d|BNC|DB(9|15|25)|DIN|JACK|TERMINAL|XT\d0|JST|MOLEX|SAMTEC|HARTING)|conn_|screw_terminal|barrel_?jack|receptacle|^Bus_|[-_]conn|socket|audiojack|^TB\d|^SUPP\d|terminal|micro_?sd|sd_?card|sim_?card", 5.0),
+    ("connector", "^" + one_of(r"""CONN BUS HEADER HDR PINHD USB([-_ ]|\d|[ABC]$|MINI|MICRO|$) RJ\d BNC DB(9|15|25) DIN JACK TERMINAL XT\d0 JST MOLEX
+        SAMTEC HARTING TB\d SUPP\d Bus_"""), 5.0),
+    ("connector", r"conn_|[-_]conn|screw_terminal|barrel_?jack|receptacle|socket|audiojack|terminal|micro_?sd|sd_?card|sim_?card", 5.0),
     ("relay", r"solid_?state_?relay", 4.0),
     ("relay", r"relay|^G[256][A-Z]?-?\d?|^FINDER", 5.0),
     ("switch", r"^SW(_|$|ITCH)|push_?button|tact|^PB_|^BUTTON|^BTN|^SPDT|^SPST|^DPDT|switch_?inv|rotary.?enc", 5.0),
@@ -196,7 +198,9 @@ TEXT = _rows(
     ("optocoupler", r"opto.?(coupler|isolator|transistor)|photo.?(coupler|mos)|solid state relay", 5.0),
     ("source", r"(voltage|current) source,? (symbol|dc|pulse|sin|for sim)?", 5.0),
     ("speaker", r"\bspeaker\b|buzzer", 4.0),
-    ("ic", r"op.?amp|operational amplifier|\b(eeprom|flash|sram|memory|microcontroller|mcu|fpga|cpld|transceiver|translator|buffer|inverter gate|logic|multiplexer|shift register|counter|sensor|accelerometer|adc|dac|converter, \d+.bit|codec|comparator|supervisor|reset|timer|expander|uart|bridge controller|hub|phy|module|monitor|fuel gauge|protection ic|amplifier|isolator|rtc|clock)\b", 3.0),
+    ("ic", r"\b" + one_of(r"""op.?amp operational.amplifier eeprom flash sram memory microcontroller mcu fpga cpld transceiver translator buffer
+        inverter.gate logic multiplexer shift.register counter sensor accelerometer adc dac converter,.\d+.bit codec comparator supervisor reset
+        timer expander uart bridge.controller hub phy module monitor fuel.gauge protection.ic amplifier isolator rtc clock""") + r"\b", 3.0),
     ("ic", r"voltage reference|shunt regulator|motor driver|stepper|h-?bridge|bldc|esd.protected|led driver", 4.0),
     ("ic", r"battery.{0,24}(manag|monitor|protect|gauge)", 4.0),
 )
@@ -237,12 +241,6 @@ CLUES: tuple[Clue, ...] = (
     REFERENCE + SYMBOL + LIBRARY + TEXT + FOOTPRINT + MODEL
     + tuple(Clue("value", f.pattern, f.kind, f.weight, "part number") for f in FAMILIES)
 )
-
-
-@cache
-def compiled(pattern: str) -> re.Pattern[str]:
-    """The pattern, ignoring case; compiled where it is first needed, because start-up time counts."""
-    return re.compile(pattern, re.IGNORECASE)
 
 
 @cache

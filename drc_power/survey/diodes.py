@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 
+from drc_power.netlist.model import Part
 from drc_power.survey.channel import texts
 from drc_power.survey.conduits import Conduit
 from drc_power.survey.loads import load_on
@@ -15,9 +16,9 @@ from drc_power.survey.verdict import Verdict, signal
 _SMALL = re.compile(r"\b(1N4148|1N4448|1N914|LL4148|BA[VSWT]\d+|BAT\d+|BAR\d+|RB751|RB520|SD10[13]|CDBU|PMEG10|1SS\d+|DAN\d|DAP\d|SDM\d|HSMS)", re.IGNORECASE)
 
 
-def is_small(nets: Standing, ref: str) -> bool:
+def is_small_diode(part: Part) -> bool:
     """Whether the part number is a small-signal diode's."""
-    return bool(_SMALL.search(texts(nets.wiring.netlist.parts[ref])))
+    return bool(_SMALL.search(texts(part)))
 
 
 def _kinds(nets: Standing, net: str, ref: str) -> set[str]:
@@ -66,7 +67,7 @@ def _reversed_across_supply(nets: Standing, c: Conduit) -> Verdict | None:
 def _bridge_leg(nets: Standing, c: Conduit) -> Verdict | None:
     """One of two diodes that meet at an alternating input, as in a bridge of single diodes."""
     for node, mine in ((c.a, "cathode"), (c.b, "anode")):
-        if is_small(nets, c.ref) or node in nets.supplies or node in nets.low or nets.holds_charge(node):
+        if is_small_diode(nets.wiring.netlist.parts[c.ref]) or node in nets.supplies or node in nets.low or nets.holds_charge(node):
             continue
         partner = any(t.ref != c.ref and t.terminal == mine for t in nets.wiring.tied(node, "diode"))
         rest = _kinds(nets, node, c.ref) - {"diode", "capacitor", "tvs", "resistor", "test-point"}
@@ -117,7 +118,7 @@ def _line_clamp(nets: Standing, c: Conduit) -> Verdict | None:
     for fixed, line in ((c.a, c.b), (c.b, c.a)):
         if nets.is_any(fixed) and not nets.is_any(line) and not _switched(nets, line, c.ref):
             paired = any(t.kind == "diode" and t.ref != c.ref for t in nets.wiring.taps(line))
-            if is_small(nets, c.ref) and (paired or not _feeder(nets, line, c.ref)):
+            if is_small_diode(nets.wiring.netlist.parts[c.ref]) and (paired or not _feeder(nets, line, c.ref)):
                 return signal("clamps a signal to a supply or ground")
     return None
 

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from drc_power.survey import chips, diodes, series, transistors
 from drc_power.survey.conduits import Conduit, conduits
 from drc_power.survey.standing import Standing
-from drc_power.survey.verdict import Verdict, signal
+from drc_power.survey.verdict import Verdict
 from drc_power.survey.wiring import Wiring
 
 Judge = Callable[[Standing, Conduit], Verdict]
@@ -95,6 +95,10 @@ _PLAIN_REASONS: Mapping[str, str] = {
     "gate-driver": "gate driver without a supply pin that was found",
     "connector": "connector on signals only",
     "unknown": "nothing says what it is",
+    "source": "source that feeds no power net",
+    "battery": "battery on no power net",
+    "motor": "motor on no power net",
+    "speaker": "sounder on signals",
     "relay": "relay without contacts that were found",
 }
 
@@ -102,8 +106,3 @@ _PLAIN_REASONS: Mapping[str, str] = {
 def plain_reason(kind: str) -> str:
     """Why a part that has no conduit is not on a power path."""
     return _PLAIN_REASONS.get(kind, "its terminals are not known or not on two nets")
-
-
-def signal_of(kind: str) -> Verdict:
-    """The verdict for a part without conduits."""
-    return signal(plain_reason(kind))

@@ -9,6 +9,7 @@ from typing import NamedTuple
 from drc_power.netlist.model import Part
 from drc_power.survey.channel import texts
 from drc_power.survey.grounds import is_low_ohm
+from drc_power.survey.patterns import compiled, one_of
 from drc_power.survey.pins import plain
 from drc_power.survey.standing import CONTROLS, MAIN_ENDS, SWITCHING_PIN, Standing
 from drc_power.survey.values import amperes, farads, ohms, watts
@@ -146,7 +147,9 @@ _PACKAGES: tuple[OwnRow, ...] = (
     OwnRow(r"SOT-?(223|89)|TSOP-?6|SOT-?23-?6|TSOT", 0.5, "medium package"),
     OwnRow(r"TO-?92|SOT-?(23(?!-?[5-9])|323|363|563|523|723|883)|SC-?(70|75|59|88|89)|SOT95|SOT65|DFN1006|X2SON", -0.5, "small package"),
 )
-_SMALL = r"\b(2N700[02]|BSS1[23]8|BSS84|BS170|BS250|FDV30|NX7002|BSN20|DMG1012|DMN(26D|53D|62D|65D)|2N390[46]|2N2222|2N2907|MMBT|PMBT|BC[58][0-9]{2}|BC337|BC327|S8050|S8550|DT[ACD]\d|MUN\d|NTR4003|RU[EM]00|SSM3|2SK3018|2SC(1815|2240|2712)|2SA(970|1015)|BCW|BCV|BSR|FJV|PDT)"
+_SMALL = r"\b" + one_of(r"""
+    2N700[02] BSS1[23]8 BSS84 BS170 BS250 FDV30 NX7002 BSN20 DMG1012 DMN(?:26D|53D|62D|65D) 2N390[46] 2N2222 2N2907 MMBT PMBT BC[58]\d{2}
+    BC337 BC327 S8050 S8550 DT[ACD]\d MUN\d NTR4003 RU[EM]00 SSM3 2SK3018 2SC(?:1815|2240|2712) 2SA(?:970|1015) BCW BCV BSR FJV PDT""")
 
 
 def own_size(part: Part) -> tuple[float, tuple[str, ...]]:
@@ -157,6 +160,6 @@ def own_size(part: Part) -> tuple[float, tuple[str, ...]]:
         rows.append((1.5, f"described for {current:g} A"))
     elif current is not None and current < 0.6:
         rows.append((-1.0, f"described for {current:g} A"))
-    if re.search(_SMALL, texts(part), re.IGNORECASE):
+    if compiled(_SMALL).search(texts(part)):
         rows.append((-1.0, "small-signal type"))
     return sum(w for w, _ in rows), tuple(words for _, words in rows)

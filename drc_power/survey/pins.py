@@ -11,6 +11,7 @@ from collections.abc import Iterable, Mapping
 from functools import lru_cache
 
 from drc_power.netlist.model import Part, Pin
+from drc_power.survey.patterns import one_of
 
 Terminals = Mapping[str, tuple[str, ...]]
 
@@ -47,14 +48,15 @@ PATTERNS: Mapping[str, tuple[tuple[str, str], ...]] = {
     ),
     "transformer": (("primary", r"A[AB]|P(RI)?\w*|\w*PRI\w*"), ("secondary", r"S[A-Z]?\d?|SEC\w*|\w*SEC\w*")),
 }
-SUPPLY_NAME = re.compile(
-    r"^([ADP]?V(CC|DD|IN|BAT|BUS|SYS|M|MOT|PP|S|BB|AA|EE|CCA|CCB|CCO|DDIO|DDA|LOGIC|REG|P|IO|PWR|BST|USB)\w*|V_?\{?(CC|DD)\w*\}?|V\+|V-|VS\+|VS-"
-    r"|\+?\d+V\d*\w*|PWR|POWER|\+?VIN|3V3|5V|[AD]?VDD\w*|VCC\w*|\w*VDD\w*|\w*VCC\w*|IOVDD|PVDD|AVDD|DVDD|UVDD|BAT\+?|PVCC\w*|VCC\d+)$"
-)
+SUPPLY_NAME = re.compile("^" + one_of(r"""
+    [ADP]?V(?:CC|DD|IN|BAT|BUS|SYS|MOT|PP|BB|AA|EE|CCA|CCB|CCO|DDIO|DDA|LOGIC|REG|IO|PWR|BST|USB|M|S|P)\w* V_?\{?(?:CC|DD)\w*\}? V[+-] VS[+-]
+    \+?\d+V\d*\w* PWR POWER \+VIN \w*VDD\w* \w*VCC\w* BAT\+?""") + "$")
 NOT_SUPPLY_NAME = re.compile(r"REF|SENSE|SNS|_EN$|^EN|PG(OOD)?$|OUT_?OK|CAP$|^V_?(FB|REF)|DET")
 GROUND_NAME = re.compile(r"^((A|P|D|S|E|C|I|Q)?GND\w*|GND.*|(A|D|P|I)?VSS\w*|EP|EPAD|THERMAL_?PAD|EXP_?PAD|0V|V_?\{?SS\w*\}?|VEE[TR]?|GROUND|CAGE)$")
 BOOST_NAME = re.compile(r"^(C?BOOT\w*|BST\w*|CB|VB\d?|HB|BS|VBST\w*|BOOST\w*|CBOOT|CPP|VCP|CP\w?)$")
-DRIVE_NAME = re.compile(r"^(HO\d?|LO\d?|[HL]DRV\w*|[UL]GATE\w*|[UL]G\d?|D[HL]\d?|DRV[HL]\w*|G[HL]\w{0,2}|HG|LG|TG\d?|BG\d?|GATE\w*|[ABCUVW]?H[ABCUVW]?_?OUT|HS?GATE|LS?GATE|INH[ABC]?GATE|GHS?|GLS?|DRV?|G?DRIVE|GD|EXT|NDRV|PDRV|PGATE|NGATE|CHG|DSG|HO[+-]|LO[+-])$")
+DRIVE_NAME = re.compile("^" + one_of(r"""
+    [HL]O\d?[+-]? [HL]DRV\w* [UL]GATE\w* [UL]G\d? D[HL]\d? DRV[HL]\w* G[HL]\w{0,2} HG LG TG\d? BG\d? GATE\w* [ABCUVW]?H[ABCUVW]?_?OUT
+    [HL]S?GATE INH[ABC]?GATE G[HL]S? DRV? G?DRIVE GD EXT [NP]DRV [NP]GATE CHG DSG""") + "$")
 
 _TAIL = re.compile(r"[-_ ]?PAD\d*$|_\d+$")
 
@@ -88,10 +90,6 @@ def named(kind: str, pins: Iterable[Pin]) -> dict[str, tuple[str, ...]]:
     return {terminal: tuple(numbers) for terminal, numbers in found.items()}
 
 
-class Pinout(tuple):
-    """(kind, footprint pattern, terminals): the usual numbering of a package whose symbol names no pins."""
-
-
 PINOUTS: tuple[tuple[str, str, Terminals], ...] = (
     ("mosfet", r"SO-?8|SOIC-?8|SON-?8|DFN-?8|PowerPAK|TDSON|LFPAK|PQFN|SuperSO8|5x6", {"source": ("1", "2", "3"), "gate": ("4",), "drain": ("5", "6", "7", "8")}),
     ("mosfet", r"SOT-?23|SOT95|SOT-?323|SC-?70|SC-?59", {"gate": ("1",), "source": ("2",), "drain": ("3",)}),
@@ -103,6 +101,8 @@ PINOUTS: tuple[tuple[str, str, Terminals], ...] = (
     ("diode", r"", {"cathode": ("1",), "anode": ("2",)}),
     ("relay", r"", {}),
 )
+
+"""(kind, footprint, terminals): the usual numbering of a package whose symbol names no pins; the first match counts."""
 
 
 def numbered(kind: str, part: Part) -> dict[str, tuple[str, ...]]:

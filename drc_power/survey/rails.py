@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterable
+from collections.abc import Callable
 from typing import NamedTuple
 
 from drc_power.survey import pins
@@ -133,8 +133,3 @@ def find_supplies(wiring: Wiring, grounds: frozenset[str]) -> dict[str, tuple[st
         if score >= ENOUGH:
             found[net] = words
     return found
-
-
-def supplies_of(wiring: Wiring, refs: Iterable[str]) -> tuple[str, ...]:
-    """Distinct supply nets of chips, in order."""
-    return tuple(dict.fromkeys(net for ref in refs for net in wiring.nets_of(ref, "supply")))

@@ -5,6 +5,8 @@ from __future__ import annotations
 import re
 from functools import lru_cache
 
+from drc_power.survey.patterns import one_of
+
 _CONTROL = re.compile(
     r"(^|[_./~{-])(N?EN|ENABLE|PG|PGOOD|PWRGD|GOOD|OK|SENSE|SNS|FB|FLT|FAULT|MON|DET|ADC|ON|OFF|SEL|CTRL|TRIG|IMON|ISENSE|RST|RESET|ALERT|DIS|SHDN|PWM|LED|MEAS)"
     r"(\d*[NB]?)($|[_./})+-])|^~|#$|SENSE|_N$|V\d?PG(OOD)?$"
@@ -14,8 +16,11 @@ _PLAIN = re.compile(r"(?:^|[^\dA-Z.]|V)([+-]?)[NP]{0,2}(\d{1,3}(?:[.,]\d{1,2})?)
 _AFTER_V = re.compile(r"^(?:V|VCC|VDD|VOUT|VIN|VBUS|PP|P)[_+]?(\d{1,2})$")
 _SHORT = {"33": 3.3, "18": 1.8, "25": 2.5, "50": 5.0, "15": 1.5, "28": 2.8, "5": 5.0, "3": 3.0, "12": None, "10": None, "24": 24.0}
 _SUPPLY = re.compile(
-    r"^[+-]?(VCC|VDD|VBUS|VBAT+|BAT+|BATT|VIN|VOUT|VSYS|V?MOT(OR)?|VM|VPP|VAA|VEE|VSS|VPWR|PWR|POWER|VDRV|VGG|HV|HT|VREG|VRAW|RAW|VSUP|VMAIN|MAIN|DCIN|DC|PACK|PVDD|PVCC|AVDD|AVCC|DVDD|VLED|V_?USB|VHV|VPOWER|VINPUT|VSUPPLY|SUPPLY|VTT|VCORE|VIO|[BPV](?=[+-])|VDDA|VCCA|VDDIO|VBUS|VCCIO|VCCINT|VCCAUX|UIN|UB|UBAT|KL30|KL15|ACC|VDC|VPOS|VNEG)"
-    r"\d?($|[_+./-]|(?=IN|OUT|\d))"
+    "^[+-]?"
+    + one_of(r"""VCC VDD VBUS VBAT+ BAT+ BATT VIN VOUT VSYS V?MOT(?:OR)? VM VPP VAA VEE VSS VPWR PWR POWER VDRV VGG HV HT VREG VRAW RAW VSUP VMAIN
+        MAIN DCIN DC PACK PVDD PVCC AVDD AVCC DVDD VLED V_?USB VHV VPOWER VINPUT VSUPPLY SUPPLY VTT VCORE VIO [BPV](?=[+-]) VDDA VCCA VDDIO VCCIO
+        VCCINT VCCAUX UIN UB UBAT KL30 KL15 ACC VDC VPOS VNEG""")
+    + r"\d?(?:$|[_+./-]|(?=IN|OUT|\d))"
 )
 
 

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import pytest
 
-from drc_power.survey.clues import CLUES, compiled, matching
+from drc_power.survey.clues import CLUES, matching
+from drc_power.survey.patterns import compiled
 
 EXAMPLES = {
     "reference": """R resistor|RX resistor|RN resistor|TH thermistor|RV potentiometer|RV tvs|C capacitor|CV capacitor|L inductor|FB ferrite
