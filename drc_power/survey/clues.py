@@ -173,7 +173,7 @@ TEXT = _rows(
     ("switching-regulator", r"(buck|boost|switch.?mode|switching|step.?down|synchronous).{0,30}charg", 10.0),
     ("linear-regulator", r"(linear|li-?ion|li-?po|lithium|battery).{0,24}charg|charge management controller|charger", 5.0),
     ("linear-regulator", r"\bldo\b|low.?drop.?out|linear (voltage )?regulator|(fixed|adjustable|positive|negative).{0,20}regulator(?!.{0,20}switch)|\d+ ?m?A.{0,12}(voltage )?regulator|ddr termination", 5.0),
-    ("switching-regulator", r"\b(buck|boost|sepic|step.?(up|down)|switch(ing|ed|mode)?.?(mode)?|flyback|charge pump)\b.{0,40}(regulator|converter|inverter)|simple switcher|dc.?[-/]?dc (converter|module|step|buck|boost)|power (module|stage)|isolated dc", 5.0),
+    ("switching-regulator", r"\b(buck|boost|sepic|step.?(up|down)|switch(ing|ed|mode)?.?(mode)?|flyback|charge pump)\b.{0,40}(regulator|converter|inverter)|simple switcher|dc.?[-/]?dc (converter|module|step|buck|boost)|power (module|stage)|isolated dc", 6.0),
     ("switching-regulator", r"\breg(ulator)?\b.{0,12}\b(buck|boost|step|switch)|\b(buck|boost)\b.{0,6}\breg", 5.0),
     ("ic", r"\b(buck|boost|pwm|flyback|switching|mppt|step.?down|step.?up|dc.?dc)\b.{0,30}controller|controller.{0,30}(buck|boost|external)", 4.0),
     ("load-switch", r"load switch|power.{0,14} switch|high.?side.{0,12}switch|hot.?swap|e-?fuse|ideal diode(?!.{0,16}controller)|current.limit(ed|ing).{0,10}switch|usb power|smart switch", 5.0),

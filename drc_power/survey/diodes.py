@@ -34,7 +34,8 @@ def _feeder(nets: Standing, net: str, ref: str) -> bool:
 
 
 def _has_reservoir(nets: Standing, net: str) -> bool:
-    return bool(nets.wiring.tied(net, "capacitor"))
+    """A capacitor, or a choke on to one."""
+    return bool(nets.wiring.tied(net, "capacitor")) or any(nets.holds_charge(nets.wiring.across(t)) for t in nets.wiring.tied(net, "inductor"))
 
 
 def _switched(nets: Standing, net: str, ref: str) -> bool:

@@ -76,10 +76,10 @@ def _energised(nets: Standing, conduit: Conduit, verdict: Verdict) -> set[str]:
 
 
 def _after_all(nets: Standing, conduit: Conduit, verdict: Verdict) -> Verdict:
-    """A pass element judged early may have turned out to stand at a switched node: judge transistors once more."""
-    if conduit.kind in ("mosfet", "bjt", "igbt") and verdict.on_path:
-        again = transistors.judge_transistor(nets, conduit)
-        return again if again.on_path else verdict
+    """What was judged a pass element early may have turned out to stand at a switched node: semiconductors are judged once more."""
+    if conduit.kind in ("mosfet", "bjt", "igbt", "diode") and verdict.on_path:
+        again = JUDGES[conduit.kind](nets, conduit)
+        return again if again.group in ("pass", "switch") else verdict
     return verdict
 
 

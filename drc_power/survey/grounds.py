@@ -7,14 +7,14 @@ from collections.abc import Iterable
 
 from drc_power.netlist.model import Part
 from drc_power.survey import pins
-from drc_power.survey.values import ohms
+from drc_power.survey.values import farads, ohms
 from drc_power.survey.voltages import leaf
 from drc_power.survey.wiring import Tap, Wiring
 
 _NAMES: tuple[tuple[str, float], ...] = (
     (r"^([ADPSEICQ]|PW|PWR|MOT|USB|ISO|SIG|BAT|CHG|HV|LV|ANA|DIG)?_?GND(A|D|P|S|PWR|REF|ISO|_\w+|\d*|[A-Z]{1,4})?$|^0V?$|^GROUND$|^[A-Z0-9]+_[AP]?GND$|^COM$", 6.0),
     (r"^[ADPV]?VSS[ADP]?$", 2.0),
-    (r"^(PACK|BATT?|B|P|VBAT|CELL|LOAD|CHG|C)_?-$|^(BAT|PACK)_?(NEG|MINUS)$|^B0$|^CELL0$|^PV-$|^DC-$", 3.0),
+    (r"^(PACK|BATT?|B|P|VBAT|CELL|CHG|C|SOLAR|PV|PANEL|IN|VIN|DCIN|SUPPLY|PWR|POWER)_?-$|^(BAT|PACK)_?(NEG|MINUS)$|^B0$|^CELL0$|^PV-$|^DC-$", 3.0),
 )
 _LIKELY = 4.0
 _POSSIBLE = 3.0
@@ -82,12 +82,15 @@ def _return_ends(wiring: Wiring, tap: Tap) -> tuple[str, ...]:
     return ()
 
 
+_CALLED_LOAD = re.compile(r"^R_?L(OAD)?_?\d*$", re.IGNORECASE)
 _SHUNT = re.compile(r"shunt|sense|current", re.IGNORECASE)
 
 
 def is_low_ohm(part: Part, limit_ohm: float = 1.0) -> bool:
     """Whether a resistor is small enough to carry supply current, or is called a shunt and says no value."""
     value = ohms(part.value)
+    if _CALLED_LOAD.match(part.ref):
+        return False
     if value is None:
         return bool(_SHUNT.search(f"{part.value} {part.symbol} {part.description}"))
     return value <= limit_ohm
@@ -101,6 +104,11 @@ def _has_foot(wiring: Wiring, net: str) -> bool:
     return any(tap.terminal.startswith(("source", "emitter")) for tap in wiring.taps(net))
 
 
+def _is_held(wiring: Wiring, net: str, grounds: frozenset[str]) -> bool:
+    """A capacitor of 10 uF or more to a ground: a supply with a load on it rather than a return."""
+    return any((farads(t.part.value) or 0.0) >= 1e-5 and wiring.across(t) in grounds for t in wiring.tied(net, "capacitor"))
+
+
 def low_side(wiring: Wiring, grounds: frozenset[str], supplies: Iterable[str]) -> frozenset[str]:
     """Grounds and the nets that hang on them through shunts, beads and net ties: sources of low-side switches."""
     barred = set(supplies)
@@ -112,7 +120,7 @@ def low_side(wiring: Wiring, grounds: frozenset[str], supplies: Iterable[str]) -
                 other = wiring.across(tap)
                 if tap.kind == "resistor" and not is_low_ohm(tap.part) and not _has_foot(wiring, other):
                     continue
-                if other and other not in found and other not in barred:
+                if other and other not in found and other not in barred and not _is_held(wiring, other, grounds):
                     found.add(other)
                     waiting.append(other)
     return frozenset(found)

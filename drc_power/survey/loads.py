@@ -60,6 +60,12 @@ def _power_resistor(nets: Standing, tap: Tap, value: float) -> bool:
     return 1.0 < value <= 200.0 and (rated >= 1.0 or bool(re.search(r"heater|TO-?2|DIN0[4-9]|25\d\d|L\d\d\.\dmm", f"{tap.part.value} {tap.part.footprint}", re.I)))
 
 
+def _on_to_supply(nets: Standing, tap: Tap) -> bool:
+    """A part without loss whose far end is a supply."""
+    small = tap.kind in ("ferrite", "net-tie", "fuse") or tap.kind == "resistor" and is_low_ohm(tap.part)
+    return small and nets.wiring.across(tap) in nets.supplies
+
+
 def _precharge(nets: Standing, tap: Tap, value: float) -> bool:
     """A resistor of power size on to another power net: it limits an inrush."""
     return 5.0 < value <= 1000.0 and nets.is_power(nets.wiring.across(tap)) and has_power_size(tap.part)
@@ -102,6 +108,7 @@ HANGS: tuple[Hang, ...] = (
     Hang(lambda n, t: t.kind == "led", 0.5, 0.5, "a light-emitting diode"),
     Hang(lambda n, t: t.kind == "led" and bool(re.search(r"laser|high.?power|\dW\b|\bCOB\b|strip", texts(t.part), re.I)), 1.5, 1.5, "a power light-emitting diode"),
     Hang(_ballast, 1.5, 1.5, "a load resistor"),
+    Hang(_on_to_supply, 2.0, 2.0, "a bead or link on to a supply"),
     Hang(_coupled, 2.0, 2.0, "a load behind a coupling capacitor"),
     Hang(_resistor(lambda n, t, r: r >= 47 and not has_power_size(t.part)), -0.6, -1.8, "resistors of signal size"),
     Hang(lambda n, t: t.kind in ("ic", "unknown") and t.terminal == "" and t.pin.type != "passive" and not SWITCHING_PIN.match(plain(t.pin.name)), -1.0, -2.0, "signal pins"),

@@ -151,6 +151,8 @@ def _shunt(nets: Standing, c: Conduit, value: float | None) -> Verdict | None:
             return Verdict("pass", (f"{word} in series with a supply or a switched node",), 0.9)
     if value and _monitored(nets, c) and (nets.is_power(c.a) or nets.is_power(c.b)):
         return Verdict("pass", (f"{word} with a chip that measures across it",), 0.9)
+    if c.a in nets.low or c.b in nets.low:
+        return None
     loaded = [load_on(nets, net, c.ref)[0] >= 1.5 for net in (c.a, c.b)]
     if value and any(loaded) and all(is_loaded or may_feed(nets, net, c.ref) for is_loaded, net in zip(loaded, (c.a, c.b), strict=True)):
         return Verdict("pass", (f"{word} between a driver and its load",), 0.7)

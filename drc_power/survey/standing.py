@@ -33,7 +33,7 @@ class Standing:
 
     def is_negative(self, net: str) -> bool:
         """A supply below ground, by its name."""
-        return net in self.supplies and (voltage_of_name(net) or 0.0) < 0 or net in self.supplies and leaf(net).startswith("-")
+        return net in self.supplies and ((voltage_of_name(net) or 0.0) < 0 or leaf(net).startswith("-"))
 
     def is_any(self, net: str) -> bool:
         """Power or return."""

@@ -134,20 +134,19 @@ def _switch(part: Part) -> Found:
 
 
 def _regulator(kind: str) -> Callable[[Part], Found]:
+    """By pin names; an input that no name shows is a supply pin, an output that no name shows a power output pin."""
+
     def finder(part: Part) -> Found:
         shown = tables.named(kind, part.pins)
-        if "input" not in shown:
-            supplies = tables.supply_pins(part)
-            taken = {n for numbers in shown.values() for n in numbers}
-            free = tuple(n for n in supplies if n not in taken)
-            if free:
-                shown["input"] = free
-        if "output" not in shown and "switch_node" not in shown:
-            outputs = tuple(p.number for p in part.pins if p.type == "power_out")
-            if outputs:
-                shown["output"] = outputs
-        guessed = tables.numbered(kind, part) if len(part.pins) <= 4 and not {"input", "output"} <= set(shown) else {}
-        return ({**guessed, **shown} if not shown else shown, _GUESSED) if guessed and not shown else (shown, ())
+        taken = {number for numbers in shown.values() for number in numbers}
+        free = tuple(number for number in tables.supply_pins(part) if number not in taken)
+        if "input" not in shown and free:
+            shown["input"] = free
+        outputs = tuple(p.number for p in part.pins if p.type == "power_out")
+        if not {"output", "switch_node"} & set(shown) and outputs:
+            shown["output"] = outputs
+        guessed = {} if shown else tables.numbered(kind, part)
+        return (guessed, _GUESSED) if guessed else (shown, ())
 
     return finder
 

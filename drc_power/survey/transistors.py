@@ -44,7 +44,7 @@ def _is_switch_node(nets: Standing, node: str, ref: str) -> bool:
     for tap in (t for net in sorted(nets.far(node, ref)) for t in nets.wiring.taps(net)):
         if tap.ref == ref:
             continue
-        if tap.kind in ("inductor", "transformer", "relay", "motor"):
+        if tap.kind == "inductor" and nets.wiring.across(tap) not in nets.supplies or tap.kind in ("transformer", "relay", "motor"):
             return True
         if tap.kind == "diode" and tap.terminal == "cathode" and nets.wiring.across(tap) in nets.low:
             return True

@@ -38,6 +38,7 @@ _OHM_TOKEN = re.compile(
     rf"^R?{_NUMBER}(?P<prefix>meg|[pnuµμmkKMgGRrEeΩω]|ohms?|)(?P<rest>\d*){_UNIT['ohm']}?(?:,?\d*[.]?\d*%)?$", re.IGNORECASE
 )
 _FORMULA = re.compile(r"['\"?{<>*]")
+_MILLI = re.compile(r"^(\d+(?:\.\d+)?)MR$")
 _R_FIRST = re.compile(r"^R(?P<rest>\d{2,4})$")
 _PACKAGE = re.compile(r"^[RCL]?(?:0201|0402|0603|0805|1005|1206|1210|1608|1812|2010|2012|2512|3216|2725|2817|4527)$")
 
@@ -58,6 +59,9 @@ def ohms(text: str) -> float | None:
         first = _R_FIRST.match(token)
         if first:
             return float("0." + first["rest"])
+        milli = _MILLI.match(token)
+        if milli:
+            return float(milli[1]) / 1000.0
         match = _OHM_TOKEN.match(token)
         if match:
             return _scaled(match["whole"], match["prefix"][:3] if match["prefix"].lower() == "meg" else match["prefix"][:1], match["rest"])

@@ -116,7 +116,10 @@ class Wiring:
         return self._terminals.get(net, set())
 
 
-TWO_ENDED = frozenset(
-    "resistor capacitor inductor ferrite fuse thermistor net-tie switch motor speaker crystal diode zener tvs led source battery".split()
-)
+TWO_ENDED = frozenset({
+    "resistor", "capacitor", "inductor", "ferrite", "fuse", "thermistor", "net-tie", "switch", "motor", "speaker", "crystal",
+    "diode", "zener", "tvs", "led", "source", "battery",
+})
+"""Kinds that have two ends, so that one can look through a part from one net to the other."""
+
 _ENDS = ("a", "b", "anode", "cathode", "plus", "minus")
