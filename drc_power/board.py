@@ -120,7 +120,7 @@ class Board:
     def in_mode(self, name: str) -> Mode:
         """The board in one mode."""
         view = self.annotations.in_mode(name)
-        return Mode(name, self, view, self._bind(view.resolve_parts(self.netlist.parts)))
+        return Mode(name, self, view, self._bind(_in_linear_mode(view, view.resolve_parts(self.netlist.parts))))
 
     @cached_property
     def modes(self) -> tuple[Mode, ...]:
@@ -286,6 +286,14 @@ class Board:
         for part in mode.parts.values():
             if part.note.heat is not None and part.note.heat.sink:
                 yield "sink", part.note.heat.sink, sinks
+
+
+def _in_linear_mode(view: ModeView, notes: Mapping[str, PartNote]) -> dict[str, PartNote]:
+    """The notes with the pass elements of linear-pass stages in state linear, unless a state is written."""
+    passing = {str(ref): stage.mark for stage in view.stages.values() if str(stage.kind) == "linear-pass" for ref in stage.parts}
+    plain = PartNote.of()
+    return dict(notes) | {ref: notes.get(ref, plain).model_copy(update={"state": Text("linear", mark)})
+                          for ref, mark in passing.items() if notes.get(ref, plain).state is None}
 
 
 VALUE_DIMENSIONS = {"capacitor": ("capacitance",), "resistor": ("resistance",), "inductor": ("inductance",),

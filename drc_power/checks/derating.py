@@ -11,6 +11,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from ..board import BoardPart
+from ..quantity import parse_value_field
 from .judgement import Judgement
 from .view import ElementView, View
 
@@ -149,7 +151,24 @@ def _temperature(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
 
 
 def _ripple(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
-    return element.view.unknown(), ("a ripple current (this version computes none)",)
+    """What converters, bridges and rectifiers ask of the capacitors between two nets, shared by capacitance."""
+    nets = set(element.part.part.nets_of())
+    asked = [ripple.rms_a for ripple in element.view.solution.ripples if {ripple.net, ripple.back} == nets]
+    if not asked:
+        return element.view.unknown(), (f"what ripple current {element.ref} carries (it is at no end of an annotated stage)",)
+    beside = {ref: _capacitance_f(part) for ref, part in element.view.mode.parts.items()
+              if part.kind == "capacitor" and set(part.part.nets_of()) == nets and ref not in element.view.board.not_fitted}
+    unread = tuple(f"a capacitance as the value of {ref}" for ref, farads in beside.items() if farads is None)
+    if unread:
+        return element.view.unknown(), unread
+    share = beside[element.ref] / sum(beside.values())
+    return share * np.sqrt(sum(rms_a**2 for rms_a in asked)), ()
+
+
+def _capacitance_f(part: BoardPart) -> float | None:
+    """The capacitance that a schematic value gives."""
+    read = parse_value_field(part.part.value, "capacitance")
+    return read.span.typ if read else None
 
 
 _TRANSISTORS = frozenset({"bjt", "igbt"})

@@ -86,8 +86,8 @@ def _deciding_point(element: ElementView) -> tuple[np.ndarray, np.ndarray]:
 
 
 def _on_v(element: ElementView) -> np.ndarray:
-    """The voltage while the part conducts: of a switch in a pair, its conduction loss over its current."""
-    if not element.probe.pulsed:
+    """The voltage while the part conducts: of a switch that chops its load alone, its loss over its current."""
+    if not element.probe.pulsed or element.probe.group is not None:
         return element.point.voltage_v
     with np.errstate(divide="ignore", invalid="ignore"):
         drop = element.point.power_w / element.point.current_a

@@ -65,7 +65,9 @@ def power_steps(element: ElementView, k: int) -> tuple[Step, ...]:
     solved = f"network solution, mode {element.view.mode.name}"
     steps = [Step("V", f"voltage across {ref}", "", _number(v), "V", solved),
              Step("I", f"mean current through {ref}", "", _number(i), "A", solved)]
-    law = _law(element, k)
+    kinds = element.view.solution.losses.get(ref, ())
+    steps += [Step(loss.name, loss.formula, loss.written(k), _number(loss.power_w[k]), "W", loss.source) for loss in kinds]
+    law = (" + ".join(dict.fromkeys(loss.name for loss in kinds)), "", "power balance") if kinds else _law(element, k)
     steps.append(Step("P", law[0], law[1], _number(p), "W", law[2]))
     return tuple(steps)
 
@@ -77,7 +79,7 @@ def _law(element: ElementView, k: int) -> tuple[str, str, str]:
     if element.probe.push_pull is not None:
         return "worst output of class B", "", "worst mean loss at 2/π of the swing, class B"
     if element.probe.pulsed:
-        return "conduction + overlap + charge", "", "averaged switch pair"
+        return "conduction + edges", "", "duty-weighted conduction"
     if element.kind in ("linear-regulator", "switching-regulator"):
         return "V_in · I_in − V_out · I_out", "", "power balance of the regulator"
     if element.kind == "mosfet" and rms > 0.0:

@@ -20,12 +20,7 @@ NOT_BUILT: dict[str, dict[str, bool]] = {
         "surroundings.altitude": False,  # thermal resistances that the user gives hold as they stand at any altitude
         "rails.*.ac": True,
         "rails.*.frequency": True,
-        "stages.*.kind=boost": True,
         "stages.*.kind=three-phase": True,
-        "stages.*.kind=or-ing": True,
-        "stages.*.kind=hot-plug": True,
-        "stages.*.kind=linear-pass": True,
-        "stages.*.kind=load-switch": True,
         "stages.*.kind=rectifier": True,
         "sinks.*.fins": True,
         "sinks.*.height": True,

@@ -49,12 +49,13 @@ class Resistive:
 
 @dataclass(frozen=True)
 class Drop:
-    """The forward law of a one-way branch: knee + slope·i, or measured lines of (temperature, volts over amperes)."""
+    """The forward law of a one-way branch: knee + slope·s(Tj)·i, or measured lines of (temperature, volts over amperes)."""
 
     knee_v: Param = ZERO
     slope_ohm: Param = ZERO
     knee_v_per_k: float = 0.0
     lines: tuple[tuple[float, Curve], ...] = ()
+    scale: Curve | None = None
 
     @cached_property
     def extended(self) -> tuple[tuple[float, StraightLines], ...]:
@@ -113,27 +114,12 @@ class Efficiency:
 
 @dataclass(frozen=True, slots=True)
 class Leg:
-    """One switch of a pulsed pair while it carries the current: a resistive channel or a one-way drop."""
+    """One part of a switched group while it carries the current: a resistive channel or a one-way drop."""
 
     part: str
     r_ohm: Param | None = None
     scale: Curve | None = None
     drop: Drop | None = None
-
-
-@dataclass(frozen=True, slots=True)
-class Buck:
-    """The parts of a buck converter outside its chip: the freewheeling one and the inductor.
-
-    The chip takes the converter's loss less theirs. Duty D = (v_out + drop) / (v_in + drop); ripple
-    ΔI = (v_in − v_out) · D / (L · f).
-    """
-
-    free: Leg | None = None
-    inductor: str | None = None
-    winding_ohm: Param = ZERO
-    inductance_h: Param | None = None
-    frequency_hz: Param | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -148,7 +134,6 @@ class Switching:
     efficiency: Efficiency
     quiescent_a: Param = ZERO
     part: str | None = None
-    buck: Buck | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -176,26 +161,4 @@ class PowerLoad:
     duty: Param = ONE
 
 
-@dataclass(frozen=True, slots=True)
-class Pulsed:
-    """An averaged switch pair: `x` is tied to `main_node` for the share `duty`, to `free_node` for the rest.
-
-    The current of the load at `x` is continuous; `outward` +1 when it leaves `x` (high-side main switch),
-    −1 when it enters (low-side main switch). Switching loss falls on the main switch: edge_s · f · V · i from
-    voltage and current overlap, and charge_c · f · V from output and recovery charge.
-    """
-
-    key: str
-    x: str
-    main_node: str
-    free_node: str
-    main: Leg
-    free: Leg
-    duty: Param
-    outward: int
-    frequency_hz: Param = ZERO
-    edge_s: Param = ZERO
-    charge_c: Param = ZERO
-
-
-Branch = Resistive | OneWay | Source | Linear | Switching | CurrentLoad | PowerLoad | Pulsed
+Branch = Resistive | OneWay | Source | Linear | Switching | CurrentLoad | PowerLoad

@@ -5,11 +5,14 @@ from __future__ import annotations
 from ..board import Mode
 from .branches import Linear, Resistive, Source, Switching
 from .circuit import Builder, Circuit
+from .converters import Converter
 from .dividers import add_dividers
 from .events.build import add_events
 from .heatpaths import add_ambient, add_heat_paths
 from .parts import MAKERS
-from .stages import add_chopped, add_stages
+from .stage_converters import note_converters
+from .stage_pairs import add_chopped
+from .stages import add_stages
 from .supply import add_loads, add_rails, is_active, reference_of
 from .system import temperature_dependent
 
@@ -18,6 +21,7 @@ def build_circuit(mode: Mode) -> Circuit:
     """The circuit of a board in one mode. Raises InputError where an annotation contradicts the netlist."""
     builder = Builder(mode)
     add_ambient(builder)
+    note_converters(builder)
     add_rails(builder)
     add_stages(builder)
     add_loads(builder)
@@ -50,6 +54,7 @@ def _references(builder: Builder) -> tuple[str, ...]:
     """The nets at zero volt: the reference, and every ground that no shunt, bead or net tie links to it."""
     reference = reference_of(builder)
     driven = {b.b for b in builder.branches if isinstance(b, (Linear, Switching))}
+    driven |= {b.held for b in builder.branches if isinstance(b, Converter)}
     driven |= {b.a for b in builder.branches if isinstance(b, Source)}
     links: dict[str, set[str]] = {}
     for branch in builder.branches:

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from ..board import Board, BoardPart, Mode, Quantity
 from ..faults import Mark
-from .branches import Branch, Buck
+from .branches import Branch
 from .events.probe import EventProbe
 from .heat import HeatModel, HeatPath, Sink
 from .variables import ONE, ZERO, Box, Param
@@ -21,7 +21,7 @@ class Probe:
     duty: share of the time it carries that current; mean = duty · i, rms = √duty · i.
     blocks: nodes whose difference it holds off while it does not conduct, () where that is its own voltage.
     ground: the third terminal of a regulator. gate: the gate voltage given, or the nodes it is between.
-    push_pull: the class-AB stage that the part swings in. buck: "free" or "inductor" of the converter `currents` names.
+    push_pull: the class-AB stage that the part swings in. group: the converter or bridge that says what it carries.
     """
 
     ref: str
@@ -37,7 +37,7 @@ class Probe:
     overshoot: Param | None = None
     pulsed: bool = False
     push_pull: PushPull | None = None
-    buck: str | None = None
+    group: str | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -122,7 +122,9 @@ class Builder:
     held: dict[str, str] = field(default_factory=dict)
     load_duties: dict[str, Param] = field(default_factory=dict)
     chopped: dict[str, tuple[Param, Param | None]] = field(default_factory=dict)
-    bucks: dict[str, Buck] = field(default_factory=dict)
+    ideal_diodes: set[str] = field(default_factory=set)
+    stage_rails: dict[str, str] = field(default_factory=dict)
+    stage_setpoints: dict[str, Param] = field(default_factory=dict)
     staged: set[str] = field(default_factory=set)
     events: list[EventProbe] = field(default_factory=list)
     ambient_c: Param = ZERO
@@ -144,10 +146,6 @@ class Builder:
     def constant(self, value: float) -> Param:
         """A parameter that is a number of its own, such as one end of a window."""
         return Param(value)
-
-    def complement(self, name: str, duty: Param) -> Param:
-        """1 − duty, as a parameter that follows it."""
-        return Param(1.0 - duty.value, duty.index, complement=True)
 
     def held_net(self, part: BoardPart) -> str | None:
         """The net whose voltage a regulator holds: its rail, else its output pin's."""
@@ -173,8 +171,8 @@ class Builder:
 
     def nets(self) -> set[str]:
         """Every node a branch touches so far."""
-        names = ("a", "b", "ground", "x", "main_node", "free_node")
-        return {getattr(branch, name) for branch in self.branches for name in names if hasattr(branch, name)}
+        ends = {getattr(branch, name) for branch in self.branches for name in ("a", "b", "ground") if hasattr(branch, name)}
+        return ends | {net for branch in self.branches for net in getattr(branch, "nodes", {}).values()}
 
     def finish(self, reference: tuple[str, ...]) -> Circuit:
         """The circuit as collected."""

@@ -14,17 +14,25 @@ from collections.abc import Iterator, Mapping, Sequence
 
 import numpy as np
 
-from .branches import Buck, CurrentLoad, Curve, Drop, Leg, Linear, OneWay, PowerLoad, Pulsed, Resistive, Source, Switching
+from .branches import (
+    CurrentLoad,
+    Curve,
+    Drop,
+    Linear,
+    OneWay,
+    PowerLoad,
+    Resistive,
+    Source,
+    Switching,
+)
 from .layout import Layout
-from .variables import ZERO, Param, values_of
+from .variables import values_of
 
 COLLAPSE_V = 0.5
 """Below this voltage a constant-current load or a quiescent current fades in proportion, so that an unpowered net rests at zero."""
 
 LINK_OHM = 1e-9
 """The resistance of an ideal link, so that parallel links share and a loop of links has a solution."""
-
-INFINITE = Param(np.inf)
 
 Values = Mapping[str, np.ndarray]
 Residuals = list[tuple[np.ndarray, np.ndarray]]
@@ -44,15 +52,16 @@ def scale_at(scales: Sequence[Curve | None], temperature_c: np.ndarray) -> tuple
 def drop_at(drops: Sequence[Drop], p: Values, i_a: np.ndarray, t_c: np.ndarray) -> tuple[np.ndarray, ...]:
     """Forward drop [V], its slope over current [ohm] and over temperature [V/K], each of shape (branch, sample)."""
     tempco = np.array([d.knee_v_per_k for d in drops])[:, None]
-    volts = p["knee"] + tempco * (t_c - 25.0) + p["slope"] * i_a
-    per_amp, per_k = p["slope"].copy(), np.broadcast_to(tempco, volts.shape).copy()
+    factor, growth = scale_at([d.scale for d in drops], t_c)
+    per_amp, per_k = p["slope"] * factor, tempco + p["slope"] * growth * i_a
+    volts = p["knee"] + tempco * (t_c - 25.0) + per_amp * i_a
     for row, drop in enumerate(drops):
         if drop.lines:
-            volts[row], per_amp[row], per_k[row] = _between_lines(drop.extended, i_a[row], t_c[row])
+            volts[row], per_amp[row], per_k[row] = between_lines(drop.extended, i_a[row], t_c[row])
     return volts, per_amp, per_k
 
 
-def _between_lines(lines, x: np.ndarray, y: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+def between_lines(lines, x: np.ndarray, y: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """A family of curves over x, straight between the y of neighbours; outside them the nearest curve holds.
 
     Returns the value and its slopes over x and over y, each of shape (sample,).
@@ -247,12 +256,7 @@ class Switchings(Regulators):
     """Below this input the converter is off: its output follows the input in proportion, its input is a resistor."""
 
     def parameters(self, points: np.ndarray) -> Values:
-        outside = [b.buck or Buck() for b in self.branches]
-        legs = {f"free {name}": value for name, value in _leg_numbers([b.free or Leg("") for b in outside], points).items()}
-        return {**legs, "winding": values_of([b.winding_ohm for b in outside], points),
-                "henry": values_of([b.inductance_h or INFINITE for b in outside], points),
-                "hertz": values_of([b.frequency_hz or INFINITE for b in outside], points),
-                "set": values_of([b.setpoint_v for b in self.branches], points),
+        return {"set": values_of([b.setpoint_v for b in self.branches], points),
                 "quiescent": values_of([b.quiescent_a for b in self.branches], points),
                 "factor": values_of([b.efficiency.factor for b in self.branches], points)}
 
@@ -261,7 +265,7 @@ class Switchings(Regulators):
         i, v_in = np.maximum(x[self.i], 0.0), x[self.a] - x[self.g]
         eta, per_amp, per_volt = np.empty_like(i), np.empty_like(i), np.zeros_like(i)
         for row, branch in enumerate(self.branches):
-            eta[row], per_amp[row], per_volt[row] = _between_lines(branch.efficiency.lines, i[row], v_in[row])
+            eta[row], per_amp[row], per_volt[row] = between_lines(branch.efficiency.lines, i[row], v_in[row])
         return eta * p["factor"], per_amp * p["factor"], per_volt * p["factor"]
 
     def _loss(self, x: np.ndarray, p: Values):
@@ -297,41 +301,6 @@ class Switchings(Regulators):
                    (self.i_in, self.i_in, one), (self.i_in, self.i, d_i), (self.i_in, self.b, d_out),
                    (self.i_in, self.a, d_in), (self.i_in, self.g, -d_in - d_out)]
         return [(self.i, v_out - p["set"] * share), (self.i_in, x[self.i_in] - power / safe)], entries
-
-
-    def follow_temperature(self, layout: Layout) -> None:
-        outside = [b.buck or Buck() for b in self.branches]
-        self.free_parts = tuple(b.free.part if b.free else None for b in outside)
-        self.inductors = tuple(b.inductor for b in outside)
-        self.t_free = layout.places("temperature", [part or "" for part in self.free_parts])
-
-    def buck(self, x: np.ndarray, p: Values) -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
-        """Duty of the high side, drop of the freewheeling part [V] and its slopes over current and temperature."""
-        legs = [(b.buck.free if b.buck and b.buck.free else Leg("")) for b in self.branches]
-        numbers = {name: p[f"free {name}"] for name in ("r", "knee", "slope")}
-        drop, per_i, per_t = _leg_drop(legs, numbers, np.maximum(x[self.i], 0.0), x[self.t_free])
-        v_in, v_out = x[self.a] - x[self.g], x[self.b] - x[self.g]
-        with np.errstate(divide="ignore", invalid="ignore"):
-            duty = np.nan_to_num((v_out + drop) / (v_in + drop), nan=1.0, posinf=1.0, neginf=0.0)
-        return np.clip(duty, 0.0, 1.0), drop, per_i, per_t
-
-    def ripple(self, x: np.ndarray, p: Values, duty: np.ndarray) -> np.ndarray:
-        """Peak-to-peak current of the inductor [A], 0 where inductance or frequency is not known."""
-        return (x[self.a] - x[self.b]) * duty / (p["henry"] * p["hertz"])
-
-    def heats(self, x: np.ndarray, p: Values) -> Heats:
-        """The converter's loss, of which the parts outside the chip take their own; the duty's slopes are left out."""
-        (parts, total, slopes), = super().heats(x, p)
-        if not any(b.buck for b in self.branches):
-            return [(parts, total, slopes)]
-        duty, drop, per_i, per_t = self.buck(x, p)
-        i = np.maximum(x[self.i], 0.0)
-        free, free_i, free_t = (1 - duty) * drop * i, (1 - duty) * (drop + per_i * i), (1 - duty) * per_t * i
-        ripple = self.ripple(x, p, duty)
-        coil, coil_i = p["winding"] * (i * i + ripple * ripple / 12.0), 2 * p["winding"] * i
-        chip = [*slopes, (self.i, -free_i - coil_i), (self.t_free, -free_t)]
-        return [(parts, total - free - coil, chip), (self.free_parts, free, [(self.i, free_i), (self.t_free, free_t)]),
-                (self.inductors, coil, [(self.i, coil_i)])]
 
 
 class CurrentLoads(Family):
@@ -391,87 +360,6 @@ class PowerLoads(CurrentLoads):
         yield x[self.a] - x[self.b] < p["floor"]
 
 
-class PulsedPairs(Family):
-    """The averaged switch pair: one continuous current, two drops, and a tap for the switching loss."""
-
-    def __init__(self, branches: Sequence[Pulsed], layout: Layout) -> None:
-        self.branches = tuple(branches)
-        self.x = layout.places("node", [b.x for b in branches])
-        self.main_node = layout.places("node", [b.main_node for b in branches])
-        self.free_node = layout.places("node", [b.free_node for b in branches])
-        self.i = layout.places("current", [b.key for b in branches])
-        self.i_tap = layout.places("current", [f"{b.key} switching" for b in branches])
-        self.sign = np.array([float(b.outward) for b in branches])[:, None]
-        self.main_parts = tuple(b.main.part for b in branches)
-        self.free_parts = tuple(b.free.part for b in branches)
-        self.parts = self.main_parts
-
-    def follow_temperature(self, layout: Layout) -> None:
-        self.t_main = layout.places("temperature", self.main_parts)
-        self.t_free = layout.places("temperature", self.free_parts)
-
-    def parameters(self, points: np.ndarray) -> Values:
-        numbers = {name: values_of([getattr(b, name) for b in self.branches], points)
-                   for name in ("duty", "frequency_hz", "edge_s", "charge_c")}
-        for side in ("main", "free"):
-            legs = [getattr(b, side) for b in self.branches]
-            numbers |= {f"{side} {name}": value for name, value in _leg_numbers(legs, points).items()}
-        return numbers
-
-    def flows(self, p: Values):
-        on, off = self.sign * p["duty"], self.sign * (1.0 - p["duty"])
-        return [(self.main_node, self.i, on), (self.free_node, self.i, off), (self.x, self.i, -self.sign),
-                (self.main_node, self.i_tap, self.sign), (self.free_node, self.i_tap, -self.sign)]
-
-    def _leg(self, side: str, x: np.ndarray, p: Values):
-        legs = [getattr(b, side) for b in self.branches]
-        numbers = {name: p[f"{side} {name}"] for name in ("r", "knee", "slope")}
-        return _leg_drop(legs, numbers, np.maximum(x[self.i], 0.0), x[getattr(self, f"t_{side}")])
-
-    def equations(self, x: np.ndarray, p: Values) -> tuple[Residuals, Entries]:
-        duty, rest, sign, i = p["duty"], 1.0 - p["duty"], self.sign, x[self.i]
-        v_main, main_per_i, main_per_t = self._leg("main", x, p)
-        v_free, free_per_i, free_per_t = self._leg("free", x, p)
-        mean = duty * (x[self.main_node] - sign * v_main) + rest * (x[self.free_node] - sign * v_free)
-        edge, running = p["edge_s"] * p["frequency_hz"], (i > 1e-12).astype(float)
-        one = np.ones_like(i)
-        entries = [(self.i, self.x, one), (self.i, self.main_node, -duty), (self.i, self.free_node, -rest),
-                   (self.i, self.i, sign * (duty * main_per_i + rest * free_per_i)),
-                   (self.i, self.t_main, sign * duty * main_per_t), (self.i, self.t_free, sign * rest * free_per_t),
-                   (self.i_tap, self.i_tap, one), (self.i_tap, self.i, -edge)]
-        tap = edge * i + p["charge_c"] * p["frequency_hz"] * running
-        return [(self.i, x[self.x] - mean), (self.i_tap, x[self.i_tap] - tap)], entries
-
-    def regime(self, x: np.ndarray, p: Values) -> Iterator[np.ndarray]:
-        yield x[self.i] > 1e-12
-
-    def heats(self, x: np.ndarray, p: Values) -> Heats:
-        i, duty, rest = x[self.i], p["duty"], 1.0 - p["duty"]
-        v_main, main_per_i, main_per_t = self._leg("main", x, p)
-        v_free, free_per_i, free_per_t = self._leg("free", x, p)
-        blocked = self.sign * (x[self.main_node] - x[self.free_node])
-        tap = x[self.i_tap]
-        main = (self.main_parts, duty * v_main * i + blocked * tap,
-                [(self.i, duty * (v_main + main_per_i * i)), (self.t_main, duty * main_per_t * i),
-                 (self.i_tap, blocked), (self.main_node, self.sign * tap), (self.free_node, -self.sign * tap)])
-        free = (self.free_parts, rest * v_free * i,
-                [(self.i, rest * (v_free + free_per_i * i)), (self.t_free, rest * free_per_t * i)])
-        return [main, free]
-
-
-def _leg_numbers(legs: Sequence[Leg], points: np.ndarray) -> Values:
-    return {"r": values_of([leg.r_ohm or ZERO for leg in legs], points),
-            "knee": values_of([leg.drop.knee_v if leg.drop else ZERO for leg in legs], points),
-            "slope": values_of([leg.drop.slope_ohm if leg.drop else ZERO for leg in legs], points)}
-
-
-def _leg_drop(legs: Sequence[Leg], p: Values, i_a: np.ndarray, t_c: np.ndarray) -> tuple[np.ndarray, ...]:
-    """Drop [V] of each leg at its current, slope over current [ohm] and over temperature [V/K]."""
-    factor, slope = scale_at([leg.scale for leg in legs], t_c)
-    volts, per_amp, per_k = drop_at([leg.drop or Drop() for leg in legs], p, i_a, t_c)
-    return (volts + p["r"] * factor * i_a, per_amp + p["r"] * factor, per_k + p["r"] * slope * i_a)
-
-
 FAMILIES = {Resistive: Resistives, OneWay: OneWays, Source: Sources, Linear: Linears, Switching: Switchings,
-            CurrentLoad: CurrentLoads, PowerLoad: PowerLoads, Pulsed: PulsedPairs}
+            CurrentLoad: CurrentLoads, PowerLoad: PowerLoads}
 """The law of each kind of branch."""

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from ..board import BoardPart, InterfaceNote
-from .branches import Pulsed
 from .circuit import Builder
 from .heat import HeatPath, Sink
 from .variables import Param
@@ -27,7 +26,7 @@ def add_ambient(builder: Builder) -> None:
 
 def add_heat_paths(builder: Builder, followed: set[str]) -> None:
     """A path for every part that has one. `followed` parts obey their temperature: without a path it is a gap."""
-    heated = {p for branch in builder.branches for p in _heated_by(branch) if p} | builder.probes.keys()
+    heated = {part for branch in builder.branches if (part := getattr(branch, "part", None))} | builder.probes.keys()
     for ref in sorted(heated):
         part = builder.parts[ref]
         lacking = _add_path(builder, part)
@@ -38,12 +37,6 @@ def add_heat_paths(builder: Builder, followed: set[str]) -> None:
             unknown = builder.box.gap(f"{ref} temperature", UNKNOWN_C, UNKNOWN_C + GAP_K, "temperature",
                                       f"{lacking} of {ref}", builder.board.where(part))
             builder.paths.append(HeatPath(ref, unknown, ()))
-
-
-def _heated_by(branch) -> tuple[str | None, ...]:
-    if isinstance(branch, Pulsed):
-        return branch.main.part, branch.free.part
-    return (getattr(branch, "part", None),)
 
 
 def _add_path(builder: Builder, part: BoardPart) -> str | None:

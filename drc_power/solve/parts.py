@@ -194,9 +194,12 @@ def make_mosfet(builder: Builder, part: BoardPart) -> None:
     probe = Probe(part.ref, part.kind, state, *forward, gate=gate_of(builder, part),
                   overshoot=builder.span(f"{part.ref} overshoot", part.note.overshoot))
     if state == "blocked":
-        _block_mosfet(builder, part, probe)
+        block_mosfet(builder, part, probe)
     elif state == "linear":
         _pass_element(builder, part, probe)
+    elif part.ref in builder.ideal_diodes:
+        drop = Drop(slope_ohm=on_resistance(builder, part, part.note.gate), scale=rds_scale(part))
+        builder.add(OneWay(part.ref, probe.b, probe.a, drop, part.ref), _with_current(probe, ((part.ref, -1.0),)))
     else:
         r = on_resistance(builder, part, part.note.gate)
         duty = builder.span(f"{part.ref} duty", part.note.duty) or ONE
@@ -204,7 +207,7 @@ def make_mosfet(builder: Builder, part: BoardPart) -> None:
                     _with_current(probe, duty=duty))
 
 
-def _block_mosfet(builder: Builder, part: BoardPart, probe: Probe) -> None:
+def block_mosfet(builder: Builder, part: BoardPart, probe: Probe) -> None:
     body = part.device.body if part.device else None
     if body and body.knee is not None:
         knee = builder.span(f"{part.ref} body knee", body.knee)
@@ -301,7 +304,7 @@ def make_switching_regulator(builder: Builder, part: BoardPart) -> None:
     a, ground = part.terminals["input"], regulator_ground(builder, part)
     quiescent = part.device.conduction.quiescent if part.device else None
     branch = Switching(part.ref, a, held, ground, builder.setpoints[part.ref], efficiency_of(builder, part),
-                       builder.span(f"{part.ref} quiescent", quiescent) or ZERO, part.ref, builder.bucks.get(part.ref))
+                       builder.span(f"{part.ref} quiescent", quiescent) or ZERO, part.ref)
     builder.add(branch, _with_current(Probe(part.ref, part.kind, "conducting", a, held, ground=ground)))
 
 

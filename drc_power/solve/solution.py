@@ -10,7 +10,8 @@ import numpy as np
 
 from ..physics.push_pull import class_b_worst_loss_w
 from .circuit import Circuit, Probe
-from .families import PowerLoads, Switchings
+from .families import PowerLoads
+from .groups import Groups, Loss, PartReading, Ripple
 from .newton import Solver, take
 from .stability import CERTAIN_BELOW, climb, gain_bound, loop_gain
 from .start import starting_point
@@ -88,6 +89,35 @@ class Solution:
                 powers[ref] = self._push_pull(probe)[3]
         return powers
 
+    @property
+    def _groups(self):
+        return [(f, p) for f, p in zip(self.system.families, self.prepared.families, strict=True) if isinstance(f, Groups)]
+
+    @cached_property
+    def _read_groups(self) -> tuple:
+        return tuple(row for family, p in self._groups for row in family.readings(self.x, p))
+
+    @cached_property
+    def readings(self) -> Mapping[str, PartReading]:
+        """What the parts of converters and bridges carry, by reference."""
+        shape = (self.n_samples,)
+        return {ref: PartReading(*(np.broadcast_to(getattr(part, name), shape) for name in PartReading.__slots__))
+                for _, reading in self._read_groups for ref, part in reading.parts.items()}
+
+    @cached_property
+    def ripples(self) -> tuple[Ripple, ...]:
+        """What converters and bridges ask of the capacitors around them."""
+        return tuple(ripple for _, reading in self._read_groups for ripple in reading.ripples)
+
+    @cached_property
+    def losses(self) -> Mapping[str, tuple[Loss, ...]]:
+        """The kinds of loss in each part of a converter or bridge, one by one."""
+        found: dict[str, list[Loss]] = {}
+        for family, p in self._groups:
+            for loss in (loss for law in family.laws(self.x, p) for loss in law.losses if loss.ref is not None):
+                found.setdefault(loss.ref, []).append(loss)
+        return {ref: tuple(losses) for ref, losses in found.items()}
+
     @cached_property
     def temperatures(self):
         """Steady temperatures of junctions, cases and sinks."""
@@ -103,9 +133,9 @@ class Solution:
         voltage, block, (current, rms, peak) = self._voltage(probe), None, self._currents(probe)
         if probe.push_pull is not None:
             voltage, (current, rms, peak) = self._swing_v(probe), self._push_pull(probe)[:3]
-        if probe.pulsed and probe.blocks:
-            # What a switch of a pair holds off is the whole bridge; while it conducts, its loss over its current.
-            block = np.abs(self.node_v(probe.blocks[0]) - self.node_v(probe.blocks[1]))
+        if probe.group is not None:
+            read = self.readings.get(ref) or PartReading(*(unknown,) * 5)
+            voltage, block, (current, rms, peak) = read.on_v, read.block_v, (read.mean_a, read.rms_a, read.peak_a)
         power = self.powers_w.get(ref, np.zeros(self.n_samples) if not probe.currents else unknown)
         missing = ref in self.circuit.heat_missing
         tj = unknown if missing else self.temperatures.junction_c.get(ref, unknown)
@@ -124,24 +154,8 @@ class Solution:
             zero = np.zeros(self.n_samples)
             return zero, zero, zero
         on = np.abs(sum(sign * self.current_a(key) for key, sign in probe.currents))
-        if probe.buck is not None:
-            return self._in_buck(probe, on)
         duty = self.value(probe.duty)
         return duty * on, np.sqrt(np.maximum(duty, 0.0)) * on, on
-
-    def _in_buck(self, probe: Probe, i_out: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
-        """Mean, rms and peak current of a buck's inductor or freewheeling part, with triangular ripple."""
-        key = probe.currents[0][0]
-        family, row = next((f, k) for f in self.system.families if isinstance(f, Switchings)
-                           for k, b in enumerate(f.branches) if b.key == key)
-        p = self.prepared.families[self.system.families.index(family)]
-        buck, duty = family.branches[row].buck, family.buck(self.x, p)[0]
-        known = buck.inductance_h is not None and buck.frequency_hz is not None
-        ripple = family.ripple(self.x, p, duty)[row] if known else np.full(self.n_samples, np.nan)
-        duty = duty[row]
-        rms, peak = np.sqrt(i_out**2 + ripple**2 / 12.0), i_out + ripple / 2.0
-        share = 1.0 - duty if probe.buck == "free" else np.ones(self.n_samples)
-        return share * i_out, np.sqrt(share) * rms, peak
 
     def inflow_a(self) -> Mapping[str, np.ndarray]:
         """What flows into each net [A], shape (sample,)."""

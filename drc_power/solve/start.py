@@ -7,7 +7,10 @@ from collections import defaultdict
 
 import numpy as np
 
-from .branches import Linear, OneWay, Pulsed, Resistive, Source, Switching
+from .branches import Linear, OneWay, Resistive, Source, Switching
+from .bridges import HalfBridge
+from .converters import Converter
+from .groups import Groups, key_of
 from .system import System
 from .variables import values_of
 
@@ -30,6 +33,9 @@ def starting_point(system: System, points: np.ndarray) -> np.ndarray:
     for branch in system.branches:
         if isinstance(branch, OneWay):
             x[currents[branch.key]] = STARTING_A
+    for group in (g for family in system.families if isinstance(family, Groups) for g in family.branches):
+        for slot, amperes in group.start.items():
+            x[currents[key_of(group, slot)]] = amperes
     for row, at in zip(system.followed, system.temperature_at, strict=True):
         x[at] = values_of((system.paths[row].start_c,), points)[0]
     return x
@@ -70,6 +76,9 @@ def _edges(system: System, points: np.ndarray) -> dict[str, list[tuple[str, floa
         elif isinstance(branch, OneWay):
             knee = values_of((branch.drop.knee_v,), points)[0]
             edges[branch.a].append((branch.b, DIODE_OHM, -knee))
-        elif isinstance(branch, Pulsed):
+        elif isinstance(branch, HalfBridge):
             edges[branch.main_node].append((branch.x, DIODE_OHM, 0.0))
+        elif isinstance(branch, Converter):
+            volts = values_of((branch.setpoint_v,), points)[0]
+            edges[branch.ground] += [(branch.held, 1e-6, volts), (branch.b, 2e-6, volts)]
     return edges

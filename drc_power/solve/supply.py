@@ -68,6 +68,9 @@ def _stiff_net(builder: Builder, net: str, rail: RailNote) -> str:
 
 def _hold(builder: Builder, name: str, net: str, rail: RailNote) -> None:
     setpoint = builder.span(f"{name} at", rail.voltage)
+    if name in builder.stage_rails:
+        builder.stage_setpoints[builder.stage_rails[name]] = setpoint
+        return
     holders = [str(rail.held_by)] if rail.held_by else list(drivers_of(builder, net))
     if holders:
         builder.setpoints[holders[0]] = setpoint

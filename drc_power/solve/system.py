@@ -8,11 +8,17 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from .branches import Branch, Pulsed, Switching
+from .branches import Branch
+from .bridges import HalfBridge
+from .converters import Converter
 from .families import FAMILIES, Values
+from .groups import Groups
 from .heat import HeatModel
 from .layout import Layout
 from .variables import values_of
+
+LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups}
+"""The family of each kind of branch and of group."""
 
 LEAK_SIEMENS = 1e-18
 """From every node to the reference, so that a net nothing drives rests at zero instead of anywhere."""
@@ -38,7 +44,7 @@ class System:
         by_kind = defaultdict(list)
         for branch in branches:
             by_kind[type(branch)].append(branch)
-        self.families = [FAMILIES[kind](by_kind[kind], self.layout) for kind in FAMILIES if by_kind[kind]]
+        self.families = [LAWS[kind](by_kind[kind], self.layout) for kind in LAWS if by_kind[kind]]
         self._lay_out_heat()
         self.layout.sealed = True
         for family in self.families:
@@ -138,14 +144,11 @@ def temperature_dependent(branches: Sequence[Branch]) -> set[str]:
     for branch in branches:
         for part, law in _laws(branch):
             scale, drop = getattr(law, "scale", None), getattr(law, "drop", None)
-            if scale is not None or (drop is not None and (drop.knee_v_per_k or len(drop.lines) > 1)):
+            if scale is not None or (drop is not None and (drop.knee_v_per_k or drop.scale is not None or len(drop.lines) > 1)):
                 found.add(part)
     return found - {None}
 
 
 def _laws(branch: Branch):
-    if isinstance(branch, Pulsed):
-        return [(branch.main.part, branch.main), (branch.free.part, branch.free)]
-    if isinstance(branch, Switching) and branch.buck and branch.buck.free:
-        return [(branch.buck.free.part, branch.buck.free)]
-    return [(getattr(branch, "part", None), branch)]
+    legs = getattr(branch, "legs", None)
+    return [(getattr(branch, "part", None), branch)] if legs is None else [(leg.part, leg) for leg in legs]
