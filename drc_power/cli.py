@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import argparse
+import contextlib
 import datetime
 import os
 import sys
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 
 from . import __version__
 from .faults import Fault, InputError, Mark
@@ -79,6 +80,9 @@ def _survey_arguments(commands) -> None:
     command = _command(commands, "survey", survey, "find rails, grounds and power paths, with no annotation at all")
     command.add_argument("netlist", metavar="NETLIST")
     command.add_argument("--json", action="store_true", help="print only JSON on standard output")
+    command.add_argument("--draft", metavar="FILE.power.yaml", type=_file, help="write first annotations and device data, or add what is new")
+    command.add_argument("--mermaid", metavar="FILE.md", help="write the power tree as Mermaid in Markdown; - is standard output")
+    command.add_argument("--dot", metavar="FILE.dot", help="write the power tree for Graphviz; - is standard output")
 
 
 def _check_arguments(commands) -> None:
@@ -110,6 +114,12 @@ def _rules_arguments(commands) -> None:
     command.add_argument("file", metavar="FILE.power.yaml")
 
 
+def _file(text: str) -> str:
+    if text in ("", "-"):
+        raise argparse.ArgumentTypeError(f"{text!r} is no file that can be written again, name one")
+    return text
+
+
 def _date(text: str) -> str:
     try:
         return datetime.date.fromisoformat(text).isoformat()
@@ -119,18 +129,55 @@ def _date(text: str) -> str:
 
 def survey(options) -> int:
     """`drc-power survey`."""
-    from .netlist.reader import read_netlist
+    from .netlist.schematic import read_board_netlist
     from .survey import survey_netlist
     from .survey.show import survey_json, survey_text
+    from .survey.trees import dot_text, mermaid_text
 
-    found = survey_netlist(read_netlist(options.netlist))
+    outputs = [options.mermaid, options.dot, options.draft, "-" if options.json else None]
+    netlist = read_board_netlist(options.netlist)
+    found = survey_netlist(netlist)
+    wanted = [(options.mermaid, mermaid_text), (options.dot, dot_text)]
+    texts = {path: writer(found, netlist) for path, writer in wanted if path}
+    drafted, notes = _drafted(found, netlist, options.draft)
+    if twice := next((path for path in outputs if path and path != "-" and outputs.count(path) > 1), None):
+        raise InputError(Fault(Mark(twice), "two outputs go to this file", "give each a file of its own"))
+    with _folders_for(drafted):
+        to_stdout = _deliver(texts | drafted, outputs)
     if options.json:
         import json
 
         sys.stdout.write(json.dumps(survey_json(found), indent=1, ensure_ascii=True) + "\n")
-    else:
-        sys.stdout.write(survey_text(found))
+    elif not to_stdout:
+        sys.stdout.write(survey_text(found, netlist) + "\n" * bool(notes))
+    (sys.stderr if options.json or to_stdout else sys.stdout).write("".join(f"{note}\n" for note in notes))
     return OK
+
+
+def _drafted(found, netlist, path: str | None) -> tuple[dict[str, str], list[str]]:
+    """The files of a draft, if one is asked for, and what to tell of it."""
+    if path is None:
+        return {}, []
+    from .draft import make_draft
+
+    draft = make_draft(found, netlist, path)
+    return draft.files, draft.notes
+
+
+@contextlib.contextmanager
+def _folders_for(paths: Iterable[str]) -> Iterator[None]:
+    """Make the folders that files go into, and take them away again if the files cannot be written."""
+    missing = [folder for folder in dict.fromkeys(map(os.path.dirname, paths)) if folder and not os.path.lexists(folder)]
+    for folder in missing:
+        with contextlib.suppress(OSError):
+            os.mkdir(folder)
+    try:
+        yield
+    except BaseException:
+        for folder in missing:
+            with contextlib.suppress(OSError):
+                os.rmdir(folder)
+        raise
 
 
 def check(options) -> int:
