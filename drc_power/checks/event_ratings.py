@@ -30,6 +30,8 @@ class EventStress:
 def ratings(element: EventView) -> Iterator[Judgement]:
     """`derating.*` of the event: what it puts on its part against the part's ratings."""
     for row in STRESSES:
+        if element.event.role == "switch" and row.read is not _peak_v:
+            continue  # its current is over when the clamp takes it
         if element.kind in row.kinds and (row.events is None or element.event.kind in row.events):
             if row.must or element.part.limit(row.key) is not None:
                 yield _rating(element, row)

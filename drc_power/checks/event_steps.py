@@ -31,8 +31,8 @@ def junction_steps(element: EventView, k: int) -> Steps:
     start, case = response.start.tj_c[k], response.case_rise_k[k, at]
     event_k, before_w = response.rise_k[response.row[k], at], response.start.power_w[k]
     unit = response.unit_k[response.row[k], at]
-    source = impedance.entry
-    if impedance.is_fitted and response.period_s is not None:
+    source = impedance.entry if impedance is not None else "thermal.rth_jc, as the event is slow"
+    if impedance is not None and impedance.is_fitted and response.period_s is not None:
         source += f"; its Foster network of {len(impedance.foster.tau_s)} terms is within {100 * impedance.foster.residual:.2g} % of its points"
     returns = ", returning for ever" if response.period_s is not None else ""
     return (*path_steps(element, k),

@@ -9,6 +9,7 @@ import numpy as np
 
 from ..board import Limit
 from ..solve.events.impedance import JunctionImpedance, impedance_of
+from ..solve.events.other_mode import OtherResponse, respond_elsewhere
 from ..solve.events.probe import EventProbe
 from ..solve.events.response import CASE_HELD_S, Response, capacities, heat_path, longest_s, respond
 from .house import Conditions, Target
@@ -28,13 +29,20 @@ class EventView(ElementView):
         return self.event.name
 
     @cached_property
-    def response(self) -> Response | None:
+    def response(self) -> Response | OtherResponse | None:
         """The event at every sample; None where its own numbers are missing."""
-        return None if self.event.lacking or self.event.path is None else respond(self.view.solution, self.event)
+        if self.event.lacking or self.event.path is None:
+            return None
+        return (respond_elsewhere if self.event.network else respond)(self.view.solution, self.event)
 
     @cached_property
     def longest_s(self) -> float:
         return longest_s(self.view.solution.circuit, self.event)
+
+    @property
+    def shortest_s(self) -> float:
+        """The least that a stall or an overload lasts."""
+        return self.event.note.lasts.min if self.event.note.lasts is not None else 0.0
 
     @cached_property
     def area(self) -> SafeArea | None:
@@ -50,7 +58,22 @@ class EventView(ElementView):
 
     @cached_property
     def capacity_missing(self) -> tuple[str, ...]:
-        """A heat capacity beyond the case, which an event longer than a second needs."""
+        """A heat capacity beyond the case, which an event longer than a second needs.
+
+        An overload can do without where even the steady heat of what it goes to is allowed: see `bounded`.
+        """
+        return () if self.event.kind == "overload" else self._capacity_missing
+
+    def bounded(self, value: np.ndarray, allowed: np.ndarray) -> tuple[np.ndarray, str]:
+        """Where an overload without a heat capacity is proven all the same, as it never gets hotter than at once; and why not."""
+        if self.event.kind != "overload" or not self._capacity_missing:
+            return self.solved, ""
+        held = ~(value > allowed)
+        why = "" if held[self.solved].all() else f"it would not hold for good, and how slowly it warms is not given: {', '.join(self._capacity_missing)}"
+        return self.solved & held, why
+
+    @cached_property
+    def _capacity_missing(self) -> tuple[str, ...]:
         path = heat_path(self.view.solution.circuit, self.ref)
         heat = self.part.note.heat
         if not self.longest_s > CASE_HELD_S or path is None or (heat is not None and heat.case is not None):
@@ -93,7 +116,11 @@ class EventView(ElementView):
         allowed, limit = self.allowed(stress, rated)
         return Judgement(
             rule, self.subject, quantity, unit, value, rated, allowed, self.event.note.mark, stress, self.ref,
-            mode=self.view.mode.name, event=self.name, limit=limit, **{"proven": self.solved, **more})
+            mode=self.view.mode.name, event=self.name, limit=limit, **{**self._proof(value, allowed), **more})
+
+    def _proof(self, value: np.ndarray, allowed: np.ndarray) -> dict:
+        proven, why = self.bounded(value, allowed)
+        return {"proven": proven, "why": why}
 
 
 def deciding_share(element: EventView) -> np.ndarray:

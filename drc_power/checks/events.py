@@ -19,6 +19,9 @@ from .judgement import Judgement
 from .view import View
 
 CLAMPS = frozenset({"zener", "tvs"})
+SETTLED_S = 10.0
+"""A stall or an overload of this length finds every junction in balance with its case."""
+
 NEVER_ENDS = "the breakdown voltage does not lie above the supply, so the avalanche never ends"
 
 
@@ -62,7 +65,9 @@ def junction(element: EventView) -> Iterator[Judgement]:
 def _impedance_missing(element: EventView) -> tuple[str, ...]:
     impedance = element.impedance
     if impedance is None:
-        return ("thermal.zth_jc",)
+        # Slow against any junction: its steady resistance stands for it.
+        slow = element.event.network is not None and element.shortest_s > SETTLED_S and element.part.device is not None
+        return () if slow and element.part.device.thermal.rth_jc is not None else ("thermal.zth_jc",)
     if element.longest_s > impedance.reach_s:
         return (f"thermal.rth_jc, or a thermal.zth_jc beyond {impedance.reach_s:g} s",)
     if impedance.is_fitted and element.event.every is not None and impedance.foster.residual > FIT_WITHIN:

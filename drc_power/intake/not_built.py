@@ -11,8 +11,6 @@ from .values import Text
 
 NOT_BUILT: dict[str, dict[str, bool]] = {
     "annotations": {
-        "events.*.kind=stall": True,
-        "events.*.kind=overload": True,
         "copper": True,
         "parts.*.heat.copper": True,
         "surroundings.enclosure": True,

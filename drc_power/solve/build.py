@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from functools import partial
+
 from ..board import Mode
 from .branches import Linear, Resistive, Source, Switching
 from .circuit import Builder, Circuit
@@ -17,7 +19,7 @@ from .supply import add_loads, add_rails, is_active, reference_of
 from .system import temperature_dependent
 
 
-def build_circuit(mode: Mode) -> Circuit:
+def build_circuit(mode: Mode, events: bool = True) -> Circuit:
     """The circuit of a board in one mode. Raises InputError where an annotation contradicts the netlist."""
     builder = Builder(mode)
     add_ambient(builder)
@@ -28,7 +30,8 @@ def build_circuit(mode: Mode) -> Circuit:
     add_parts(builder)
     add_dividers(builder)
     add_heat_paths(builder, temperature_dependent(builder.branches))
-    add_events(builder)
+    if events:
+        add_events(builder, partial(build_circuit, events=False))
     return builder.finish(_references(builder))
 
 

@@ -292,3 +292,72 @@ def test_a_capture_that_is_none_is_refused_by_name(tmp_path, text, said):
     with pytest.raises(InputError) as refused:
         run(tmp_path, SCOPE)
     assert any(said in str(fault) for fault in refused.value.faults)
+
+
+Q2_FOSTER = [(0.4, 3e-3), (0.96, 90e-3)]
+SLOW_Q2 = ("zth_jc: [[10 us, 0.012 K/W], [100 us, 0.04 K/W], [1 ms, 0.13 K/W], [10 ms, 0.5 K/W], [100 ms, 1.2 K/W]]",
+           "foster: [[0.4 K/W, 3 ms], [0.96 K/W, 90 ms]]")
+
+
+def warmed(ohm, lasts_s):
+    """Q2's junction after its load has gone from 11.4 ohm to another for a while: network and heat integrated together."""
+    at = steady()
+    r, tau = np.array(Q2_FOSTER).T
+    sink_before = 50.0 + 8.0 * (at["p2"] + at["pu"])
+
+    def network(t2):
+        def equations(u):
+            v24, i, t1 = u
+            fuse = i + 0.065
+            return [v24 - (28.0 - fuse * (0.009 + 0.012 * scale_q1(t1))), i - v24 / (ohm + 0.008 * scale_q2(t2) + 0.010),
+                    t1 - (50.0 + 50.0 * fuse**2 * 0.012 * scale_q1(t1))]
+        return root(equations, [at["v24"], 4.0, at["t1"]], tol=1e-12).x
+
+    def heat(t, y):
+        junction = y[0] + 0.6 * loss(y) + y[1] + y[2]
+        return junction
+
+    def loss(y):
+        t2, p2 = y[0] + y[1] + y[2], 0.0
+        for _ in range(30):
+            v24, i, _t1 = network(t2)
+            p2 = i**2 * 0.008 * scale_q2(t2)
+            t2 = y[0] + y[1] + y[2] + 0.6 * p2
+        return p2
+
+    def slopes(t, y):
+        p2 = loss(y)
+        v24 = network(heat(t, y))[0]
+        pu = (v24 - 5.0) * 0.06 + v24 * 0.005
+        return [(50.0 + 8.0 * (p2 + pu) - y[0]) / (8.0 * 40.0), *((r * p2 - y[1:]) / tau)]
+
+    start = [sink_before, *(r * at["p2"])]
+    y = solve_ivp(slopes, (0.0, lasts_s), start, method="LSODA", rtol=1e-6, atol=1e-6).y[:, -1]
+    return heat(lasts_s, y)
+
+
+def test_a_stall_follows_network_and_heat_together(tmp_path):
+    result = run(tmp_path, "jam: {kind: stall, load: heater, resistance: 4 ohm, lasts: 40 s, part: Q2}", devices=DEVICES.replace(*SLOW_Q2))
+    assert found(result, "Q2", "junction.event", "jam").value == pytest.approx(warmed(4.0, 40.0), rel=2e-3)
+
+
+def test_an_overload_is_the_other_mode_for_a_while(tmp_path):
+    annotations = with_events("burst: {kind: overload, to: hard, lasts: 40 s, from: run, part: Q2}")
+    annotations += "modes: {run: {}, hard: {loads: {heater: 4 ohm}}}\n"
+    result = check(write_board(tmp_path, PARTS, annotations, DEVICES.replace(*SLOW_Q2)))
+    assert found(result, "Q2", "junction.event", "burst").value == pytest.approx(warmed(4.0, 40.0), rel=2e-3)
+
+
+def test_a_stall_asks_every_part_between_the_load_and_its_supply(tmp_path):
+    result = run(tmp_path, "jam: {kind: stall, load: heater, limit: 6 A, lasts: 500 ms}")
+    assert {f.ref for f in result.findings if f.event == "jam"} >= {"Q1", "Q2"}
+    assert found(result, "Q2", "envelope.event", "jam").value == pytest.approx(6.0)
+
+
+def test_without_a_capacity_an_overload_is_met_only_where_it_would_hold_for_good(tmp_path):
+    for ohm, verdict in (("10 ohm", "met"), ("1 ohm", "unproven")):
+        annotations = with_events("burst: {kind: overload, to: hard, lasts: 40 s, from: run, part: Q1}")
+        annotations += f"modes: {{run: {{}}, hard: {{loads: {{heater: {ohm}}}}}}}\n"
+        (tmp_path / verdict).mkdir()
+        result = check(write_board(tmp_path / verdict, PARTS, annotations, DEVICES))
+        assert found(result, "Q1", "junction.event", "burst").verdict == verdict

@@ -116,7 +116,7 @@ def test_what_is_not_built_is_named_and_nothing_else(project):
     faults = project.faults(lambda: read_annotations(project.write("a.power.yaml", ANNOTATIONS)))
     assert faults[:2] == [
         "a.power.yaml:23:38: 'copper' is not supported yet; leave it out",
-        "a.power.yaml:30:19: 'kind: stall' is not supported yet; leave it out",
+        "a.power.yaml:34:41: 'fins' is not supported yet; leave it out",
     ]
     assert all(fault.endswith(" is not supported yet; leave it out") for fault in faults)
 

@@ -7,13 +7,14 @@ from functools import partial
 
 import numpy as np
 
-from ...board import BoardPart, EventNote, Quantity, Span
+from ...board import BoardPart, EventNote, Mode, Quantity
 from ...physics.tables import interpolate_linear
 from ..branches import Linear, Source, Switching
-from ..circuit import Builder
+from ..circuit import Builder, Circuit
 from ..variables import Param
 from . import paths
 from .captured import captured_path
+from .elsewhere import OTHERS, elsewhere
 from .probe import EventProbe
 
 Inputs = dict[str, Param]
@@ -26,11 +27,16 @@ WAYS_TO_CHARGE: Mapping[tuple[str, ...], Callable] = {
 """What may hold an inrush back, and the path that it then takes."""
 
 
-def add_events(builder: Builder) -> None:
-    """A probe for every part of every event that this mode is the start of."""
+def add_events(builder: Builder, network_of: Callable[[Mode], Circuit]) -> None:
+    """A probe for every part of every event that this mode is the start of.
+
+    network_of: the circuit of another condition of the board, without events of its own.
+    """
     for name, event in builder.board.annotations.events.items():
         if event.kind in MAKERS and (not event.from_ or builder.mode.name in event.from_):
             builder.events += MAKERS[event.kind](builder, str(name), event)
+        elif event.kind in OTHERS and (not event.from_ or builder.mode.name in event.from_):
+            builder.events += elsewhere(builder, str(name), event, OTHERS[event.kind], network_of)
 
 
 def parts_of(event: EventNote) -> tuple[str, ...]:

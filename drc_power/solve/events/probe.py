@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
+from typing import Any
 
 import numpy as np
 
@@ -32,4 +33,6 @@ class EventProbe:
     share: float = 1.0
     every: Param | None = None
     role: str = "part"
+    network: Any = None
+    """The network in the other condition, of a stall or an overload."""
     memo: dict = field(default_factory=dict, compare=False, repr=False)
