@@ -21,18 +21,16 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from circuits import RDS_SCALE, P, link, own_heat, solve
+from circuits import RDS_SCALE, P, link, own_heat
 from draw import write_board
+from engines import engine_solution
 
 from drc_power.run import check
 from drc_power.solve.branches import (
     CurrentLoad, Curve, Drop, Efficiency, Linear, OneWay, PowerLoad, Resistive, Source, Switching,
 )
 from drc_power.solve.heat import HeatModel, HeatPath, Sink
-from drc_power.solve.newton import Solver
-from drc_power.solve.stability import climb, loop_gain
-from drc_power.solve.start import starting_point
-from drc_power.solve.system import System
+from drc_power.solve.solution import Solution
 
 FOLDER = Path(__file__).parent / "simulator"
 DECKS = sorted(FOLDER.glob("*.cir"))
@@ -123,22 +121,33 @@ HEAT = {
         {"sink": Sink("sink", P(2.6), P(45.0))}),
 }
 
-PREFIX = {"node": "", "current": "i_", "temperature": "t_", "power": "p_", "sink power": "p_"}
-
-
 def printed_name(kind: str, name: str) -> str:
-    """What the deck prints for one of our unknowns: `i_u1`, `iin_u1` for a regulator's input, `t_q1`, `b`."""
-    return f"iin_{name.removesuffix(' input')}" if name.endswith(" input") else PREFIX[kind] + name
+    """What the deck prints for one of our unknowns: `b`, `i_r1`, `iin_u1` for a regulator's input."""
+    return name if kind == "node" else f"iin_{name.removesuffix(' input')}" if name.endswith(" input") else f"i_{name}"
 
 
 @pytest.mark.parametrize("name", CIRCUITS)
-def test_every_unknown_is_what_the_simulator_printed(name):
-    """Every node voltage, branch current, loss and temperature; one that the deck does not print is an error."""
-    named, converged, _, _ = solve(CIRCUITS[name], heat=HEAT.get(name))
+def test_every_voltage_and_current_is_what_the_simulator_printed(name):
+    """Of every node and branch; one that the deck does not print is an error."""
+    solution = engine_solution(CIRCUITS[name], HEAT.get(name))
     printed, = kept(name)
-    assert converged.all()
-    ours = {printed_name(*unknown): values[0] for unknown, values in named.items()}
+    assert solution.converged.all()
+    ours = {printed_name(kind, key): solution.x[at, 0] for (kind, key), at in solution.system.layout.names.items()
+            if kind in ("node", "current")}
     assert ours == {key: near(printed[key]) for key in ours}
+
+
+def losses_and_junctions(solution: Solution) -> dict[str, float]:
+    """The loss and the junction temperature of every part with a heat path, by the deck's names."""
+    junctions = solution.temperatures.junction_c
+    return {f"p_{part}": solution.powers_w[part][0] for part in junctions} | {f"t_{part}": t[0] for part, t in junctions.items()}
+
+
+@pytest.mark.parametrize("name", HEAT)
+def test_every_loss_and_temperature_is_what_the_simulator_printed(name):
+    printed, = kept(name)
+    ours = losses_and_junctions(engine_solution(CIRCUITS[name], HEAT[name]))
+    assert ours == {key: near(value) for key, value in printed.items() if key.startswith(("p_", "t_"))}
 
 
 def test_every_deck_is_compared_and_has_its_numbers():
@@ -152,46 +161,38 @@ def test_every_deck_is_compared_and_has_its_numbers():
 RISING = Curve(np.array([25.0, 2025.0]), np.array([1.0, 11.0]))
 
 
-def heated_channel(i_load_a: float):
+def heated_channel(i_load_a: float) -> Solution:
     """The circuit of deck 11 at one current."""
     branches = [battery("s", "in", 24.0), Resistive("q1", "in", "b", P(0.004), "q1", RISING), current("load", "b", "0", i_load_a)]
-    system = System(branches, own_heat(("q1", 50.0, 130.0)), ("0",))
-    points = np.zeros((1, 0))
-    return Solver(system), starting_point(system, points), system.prepare(points)
+    return engine_solution(branches, own_heat(("q1", 50.0, 130.0)))
 
 
 @pytest.mark.parametrize("point", range(3))
 def test_below_a_gain_of_one_both_find_the_equilibrium(point):
     printed = kept("11-runaway")[point]
-    solver, x, prepared = heated_channel(printed["i_load"])
-    x, converged = solver.solve(x, prepared)
-    at = solver.system.layout.names
-    assert converged.all()
-    assert loop_gain(solver, x, prepared)[0] < 1.0
-    assert x[at["temperature", "q1"], 0] == near(printed["t_q1"])
-    assert x[at["power", "q1"], 0] == near(printed["p_q1"])
-    assert x[at["node", "b"], 0] == near(printed["b"])
+    solution = heated_channel(printed["i_load"])
+    assert solution.converged.all()
+    assert not solution.runaway
+    assert solution.gain[0] < 1.0
+    assert losses_and_junctions(solution) == {key: near(printed[key]) for key in ("p_q1", "t_q1")}
+    assert solution.node_v("b")[0] == near(printed["b"])
 
 
 def test_where_the_simulator_prints_no_temperature_ours_says_runaway():
     """At 20 A the simulator's searches all fail; its last resort, a transient, prints what is no temperature."""
     printed = kept("11-runaway")[3]
     assert printed["t_q1"] > NOT_A_TEMPERATURE_C
-    solver, x, prepared = heated_channel(printed["i_load"])
-    found, settled, ran = climb(solver, x, prepared)
-    assert not settled.any()
-    assert ran.all()
-    assert loop_gain(solver, found, prepared)[0] > 1.0
+    solution = heated_channel(printed["i_load"])
+    assert solution.runaway["q1"].all()
+    assert solution.gain[0] > 1.0
 
 
 def test_the_simulator_breaks_off_at_the_current_where_our_loop_gain_is_one():
     """Its source stepping towards 20 A gets to the printed share and no further; six digits are printed."""
     search = (FOLDER / "11-runaway.search.txt").read_text(encoding="ascii")
     last = re.findall(r"Supplies reduced to +([\d.]+)% Note: One successful source step", search)[-1]
-    i_limit_a = 20.0 * float(last) / 100.0
-    solver, x, prepared = heated_channel(i_limit_a)
-    found, _, _ = climb(solver, x, prepared)
-    assert loop_gain(solver, found, prepared)[0] == pytest.approx(1.0, abs=2.0 * 0.0001 / 98.0)
+    solution = heated_channel(20.0 * float(last) / 100.0)
+    assert solution.gain[0] == pytest.approx(1.0, abs=2.0 * 0.0001 / 98.0)
 
 
 # Whole boards: decks 12 to 14 against `check`
