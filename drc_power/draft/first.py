@@ -14,7 +14,7 @@ from drc_power.draft.loads import Consumer, consumers, load_entries, load_names
 from drc_power.draft.page import Page
 from drc_power.draft.parts import judged_elements, part_entries
 from drc_power.draft.rails import rail_entries
-from drc_power.draft.stages import stage_entries
+from drc_power.draft.stages import stage_entries, switched_parts
 from drc_power.draft.whole import Sections, added_text, whole_text
 from drc_power.draft.writing import Entry, free_name
 from drc_power.intake.tree import tree_of
@@ -64,8 +64,8 @@ def _sections(survey: Survey, netlist: Netlist, existing: Existing, library: Lib
     """What is new, section by section, and the parts of stages that switch."""
     names, new_loads = _loads(survey, existing)
     load_of = {consumer.ref: name for consumer, name in names.items()}
-    stages = [entry for entry in stage_entries(survey, load_of) if not existing.in_a_stage(entry.names)]
-    switching = _in_stages(existing, stages)
+    stages = [entry for entry in stage_entries(survey, netlist, load_of) if not existing.in_a_stage(entry.names)]
+    switching = switched_parts(survey) & _in_stages(existing, stages)
     new_parts = [e for ref, e in judged_elements(survey).items() if not existing.covers_part(ref)]
     return {
         "rails": list(rail_entries(survey, existing.has_rail, with_hints=existing.page is None)),
