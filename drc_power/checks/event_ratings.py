@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from ..physics.fuse import melting_current_a, melting_share
 from ..physics.surge import pulse_power_w, temperature_share
 from .event_view import EventView
 from .judgement import Judgement
@@ -35,6 +36,8 @@ def ratings(element: EventView) -> Iterator[Judgement]:
         if element.kind in row.kinds and (row.events is None or element.event.kind in row.events):
             if row.must or element.part.limit(row.key) is not None:
                 yield _rating(element, row)
+    if element.kind == "fuse":
+        yield from _fuse(element)
     if element.kind in CLAMPS and element.event.role != "switch":
         yield _pulse_power(element)
 
@@ -49,11 +52,11 @@ def _rating(element: EventView, row: EventStress) -> Judgement:
 
 
 def _peak_v(element: EventView) -> np.ndarray:
-    return element.per_sample(np.abs(element.response.path.v_v).max(axis=1))
+    return element.per_sample(element.response.path.peak_v)
 
 
 def _peak_a(element: EventView) -> np.ndarray:
-    return element.per_sample(np.abs(element.response.path.i_a).max(axis=1))
+    return element.per_sample(element.response.path.peak_a)
 
 
 def _energy_j(element: EventView) -> np.ndarray:
@@ -81,6 +84,44 @@ TOO_LONG = "the surge lasts longer than a pulse rating says anything about; give
 def _rated_pulse_w(element: EventView, table, tj_max_c: float) -> np.ndarray:
     rated_w = pulse_power_w(element.response.lasts_s, table.column(0), table.column(1))
     return rated_w * temperature_share(element.point.tj_c, tj_max_c)
+
+
+def _fuse(element: EventView) -> Iterator[Judgement]:
+    """A fuse in a short must clear it within its length; in any other event it must hold."""
+    table, rating, integral = (element.part.limit(key) for key in ("melts", "current", "i2t"))
+    lacking = (*element.event.lacking, *(f"limits.{key}" for key, given in (("melts", table), ("current", rating)) if given is None))
+    unknown = element.view.unknown()
+    known = element.response is not None and not lacking
+    peak = _peak_a(element) if element.response is not None else unknown
+    inputs = {"inputs": lambda: element.sources("limits.melts", "limits.i2t", "limits.current")}
+    if element.event.kind == "short":
+        melts_a = unknown
+        if known:
+            i2t = integral.max if integral is not None else None
+            melts_a = melting_current_a(element.response.lasts_s, table.column(0), table.column(1), i2t)
+        yield element.judgement("derating.melts", "current that clears the fuse", "A", peak, "clears", melts_a, sense="at_least",
+                                lacking=lacking, remedy="use a fuse that melts sooner, or let the part stand the fault for longer", **inputs)
+        return
+    rated = unknown
+    if known:
+        path = element.response.path
+        share = element.per_sample(melting_share(path.t_s, np.sqrt(path.square_a), table.column(0), table.column(1), rating.min))
+        with np.errstate(divide="ignore", invalid="ignore"):
+            rated = np.where(share > 0.0, peak / share, table.column(1)[-1])
+    yield element.judgement("derating.melts", "current that the fuse must hold", "A", peak, "melts", rated, lacking=lacking,
+                            remedy="use a slower or larger fuse, or lower the current of the event", **inputs)
+    if integral is not None and known:
+        yield _melting_integral(element, integral)
+
+
+def _melting_integral(element: EventView, integral) -> Judgement:
+    path = element.response.path
+    value = element.per_sample((np.diff(path.t_s, axis=1) * path.square_a).sum(axis=1))
+    # Past the shortest melting time heat leaves meanwhile: the curve decides there.
+    short = element.response.lasts_s <= element.part.limit("melts").column(0)[0]
+    return element.judgement("derating.i2t", "melting integral", "A² s", np.where(short, value, 0.0), "i2t",
+                             remedy="use a slower fuse, or lower the current of the event",
+                             inputs=lambda: element.sources("limits.i2t"))
 
 
 CLAMPS = frozenset({"zener", "tvs"})

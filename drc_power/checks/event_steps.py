@@ -16,10 +16,10 @@ Steps = tuple[Step, ...]
 def path_steps(element: EventView, k: int) -> Steps:
     """The path at one sample: its hardest ends, its length, its energy."""
     response = element.response
-    v, i = (x[response.row[k]] for x in (response.path.v_v, response.path.i_a))
+    v, i = (x[response.row[k]] for x in (response.path.peak_v, response.path.peak_a))
     said = f"event {element.name}, {element.event.kind}"
-    return (Step("V", f"highest voltage across {element.ref}", "", _number(v.max()), "V", said),
-            Step("I", f"highest current through {element.ref}", "", _number(i.max()), "A", said),
+    return (Step("V", f"highest voltage across {element.ref}", "", _number(v), "V", said),
+            Step("I", f"highest current through {element.ref}", "", _number(i), "A", said),
             Step("t", "length", "", _number(response.lasts_s[k]), "s", said),
             Step("E", "∫ v · i dt", "", _number(response.energy_j[k]), "J", said))
 

@@ -8,6 +8,7 @@ from functools import cached_property
 import numpy as np
 
 from ..board import Limit
+from ..solve.events.captured import CapturedPath
 from ..solve.events.impedance import JunctionImpedance, impedance_of
 from ..solve.events.other_mode import OtherResponse, respond_elsewhere
 from ..solve.events.probe import EventProbe
@@ -132,10 +133,17 @@ def deciding_share(element: EventView) -> np.ndarray:
 def deciding_point(element: EventView) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """Voltage, current and drawn safe current of each distinct path where one moment of it, held on, would use most."""
     path, area = element.response.path, element.area
-    lines = area.lines_a(path.v_v)
+    captured = isinstance(path, CapturedPath)
+    if captured and "point" in element.event.memo:
+        return element.event.memo["point"]
+    v_v, i_a = (path.raw_v_v[None], path.raw_i_a[None]) if captured else (path.v_v, path.i_a)
+    lines = area.lines_a(v_v)
     at_line = np.minimum(np.searchsorted(area.lengths_s, path.lasts_s), len(lines) - 1)
     allowed = np.take_along_axis(np.stack(lines, axis=-1), at_line[:, None, None], axis=-1)[..., 0]
     with np.errstate(divide="ignore", invalid="ignore"):
-        use = np.where(path.i_a > 0.0, path.i_a / allowed, 0.0)
+        use = np.where(i_a > 0.0, i_a / allowed, 0.0)
     at = np.argmax(np.where(np.isnan(use), -1.0, use), axis=1)[:, None]
-    return tuple(np.take_along_axis(x, at, axis=1)[:, 0] for x in (path.v_v, path.i_a, allowed))
+    found = tuple(np.take_along_axis(x, at, axis=1)[:, 0] for x in (v_v, i_a, allowed))
+    if captured:
+        element.event.memo["point"] = found
+    return found

@@ -361,3 +361,24 @@ def test_without_a_capacity_an_overload_is_met_only_where_it_would_hold_for_good
         (tmp_path / verdict).mkdir()
         result = check(write_board(tmp_path / verdict, PARTS, annotations, DEVICES))
         assert found(result, "Q1", "junction.event", "burst").verdict == verdict
+
+
+FUSE = ("limits: {current: 10 A, voltage: 63 V}", "limits: {current: 10 A, voltage: 63 V, i2t: 300 A²s, melts: [[0.05 s, 80 A], [0.5 s, 40 A], [10 s, 20 A]]}")
+
+
+def test_a_fuse_must_hold_the_inrush_and_clear_the_short(tmp_path):
+    result = run(tmp_path, "plug: {kind: pulse, parts: [F1], voltage: 1 V, current: 30 A, lasts: 158.11388 ms}",
+                 'dead: {kind: short, net: "+24V", parts: [F1, Q1], limit: 60 A, lasts: 158.11388 ms}',
+                 'slow: {kind: short, net: "+24V", parts: [F1], limit: 50 A, lasts: 158.11388 ms}',
+                 "brief: {kind: pulse, parts: [F1], voltage: 1 V, current: 60 A, lasts: 20 ms}", devices=DEVICES.replace(*FUSE))
+    midway = np.sqrt(80.0 * 40.0)
+    held = found(result, "F1", "derating.melts", "plug")
+    assert (held.value, held.rated) == pytest.approx((30.0, midway), rel=1e-5)
+    assert found(result, "F1", "derating.melts", "dead").margin == pytest.approx(60.0 / midway - 1.0, rel=1e-5)
+    assert found(result, "F1", "derating.melts", "slow").verdict == "exceeded"
+    assert found(result, "F1", "derating.i2t", "brief").value == pytest.approx(72.0)
+
+
+def test_a_fuse_without_a_melting_curve_is_unproven(tmp_path):
+    result = run(tmp_path, "plug: {kind: pulse, parts: [F1], voltage: 1 V, current: 30 A, lasts: 100 ms}")
+    assert found(result, "F1", "derating.melts", "plug").verdict == "unproven"

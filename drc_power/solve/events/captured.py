@@ -36,6 +36,19 @@ class CapturedPath(Path):
     def energy_j(self) -> float:
         return float(path_energy_j(self.raw_t_s, self.raw_v_v, self.raw_i_a))
 
+    @property
+    def peak_v(self) -> np.ndarray:
+        return np.abs(self.raw_v_v).max(keepdims=True)
+
+    @property
+    def peak_a(self) -> np.ndarray:
+        return np.abs(self.raw_i_a).max(keepdims=True)
+
+    @cached_property
+    def square_a(self) -> np.ndarray:
+        whole = np.interp(self.t_s[0], self.raw_t_s, _integral(self.raw_t_s, self.raw_i_a**2))
+        return (np.diff(whole) / np.maximum(np.diff(self.t_s[0]), 1e-300))[None]
+
     def rise_k(self, impedance: JunctionImpedance, period_s: np.ndarray | None = None) -> np.ndarray:
         """Highest rise of the junction up to each edge since the edge before [K], shape (1, edge)."""
         r_k_per_w, tau_s = impedance.foster.r_k_per_w, impedance.foster.tau_s

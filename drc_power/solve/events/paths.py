@@ -33,6 +33,22 @@ class Path:
         return self.v_v * self.i_a
 
     @property
+    def peak_v(self) -> np.ndarray:
+        """The highest voltage of each path, shape (event,)."""
+        return np.abs(self.v_v).max(axis=1)
+
+    @property
+    def peak_a(self) -> np.ndarray:
+        """The highest current of each path, shape (event,)."""
+        return np.abs(self.i_a).max(axis=1)
+
+    @property
+    def square_a(self) -> np.ndarray:
+        """The mean of i² in each slice [A²], exact for a straight current, shape (event, slice)."""
+        first, last = self.i_a[:, :-1], self.i_a[:, 1:]
+        return (first**2 + first * last + last**2) / 3.0
+
+    @property
     def lasts_s(self) -> np.ndarray:
         return self.t_s[:, -1]
 
