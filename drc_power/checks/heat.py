@@ -97,8 +97,7 @@ def temperature_steps(element: ElementView, k: int) -> tuple[Step, ...]:
     tj, p = element.point.tj_c[k], element.point.power_w[k]
     start, steps = solution.value(path.start_c)[k], []
     if path.sink:
-        sink, heat = solution.circuit.heat.sinks[path.sink], solution.circuit.heat.sink_power(solution.powers_w, solution.n_samples)
-        r, total = solution.value(sink.r_k_per_w)[k], heat[path.sink][k]
+        r, total = solution.sink_k_per_w(path.sink)[k], solution.temperatures.sink_w[path.sink][k]
         sink_c = solution.temperatures.sink_c[path.sink][k]
         steps.append(Step("T_sink", "T_a + R_sink · ΣP", f"{start:.6g} + {r:.6g} · {total:.6g}", _number(sink_c), "°C",
                           f"sink {path.sink}"))

@@ -60,7 +60,8 @@ def _to_sink(builder: Builder, part: BoardPart, rth_jc: Param | None) -> str | N
     resistance = builder.span(f"sink {name}", builder.board.annotations.sinks[name].resistance)
     if resistance is None:
         return f"sinks.{name}.resistance"
-    builder.sinks[name] = Sink(name, resistance, builder.ambient_c)
+    capacity = builder.board.annotations.sinks[name].capacity
+    builder.sinks[name] = Sink(name, resistance, builder.ambient_c, capacity_j_per_k=capacity.min if capacity else 0.0)
     needed = (("thermal.rth_jc", rth_jc), ("heat.interface", _interface(builder, part)))
     return _append(builder, part.ref, builder.ambient_c, needed, rth_jc, name)
 

@@ -52,6 +52,7 @@ class Solver:
             size = np.abs(step) / np.maximum(np.abs(x[:-1, active]), 1.0)
             done = (size.max(axis=0, initial=0.0) <= STEP_TOLERANCE) & (before == after).all(axis=0)
             converged[active[done]] = True
+            done |= self._is_hopeless(x[:, active])
             before = after
             if done.all():
                 break
@@ -59,6 +60,11 @@ class Solver:
                 active, before = active[~done], after[:, ~done]
                 part = take(prepared, active)
         return x, converged
+
+    def _is_hopeless(self, x: np.ndarray) -> np.ndarray:
+        """Where a temperature has left for where no equilibrium is, shape (sample,): that sample stops unconverged."""
+        at = self.system.thermal.kelvin_at
+        return (np.abs(x[at]) >= MAX_TEMPERATURE_C).any(axis=0) if len(at) else np.zeros(x.shape[1], dtype=bool)
 
     def polish(self, x: np.ndarray, prepared: Prepared) -> np.ndarray:
         """One step more from a solution: it takes the rounding of large currents out of small ones."""
@@ -69,7 +75,7 @@ class Solver:
         return x
 
     def _keep_in_bounds(self, x: np.ndarray, bound_v: float) -> None:
-        nodes, at = self.system.nodes, self.system.temperature_at
+        nodes, at = self.system.nodes, self.system.thermal.kelvin_at
         x[nodes] = np.clip(x[nodes], -bound_v, bound_v)
         if len(at):
             x[at] = np.clip(np.nan_to_num(x[at], nan=MAX_TEMPERATURE_C), -273.15, MAX_TEMPERATURE_C)
@@ -123,11 +129,16 @@ class Solver:
         return matrix
 
     def dense_solve(self, values: np.ndarray, right: np.ndarray) -> np.ndarray:
-        """The same step by dense least squares: for the few samples whose pivots vanish."""
-        out = np.empty_like(right)
-        for sample, matrix in enumerate(self.dense(values)):
-            finite = np.isfinite(matrix).all() and np.isfinite(right[:, sample]).all()
-            out[:, sample] = np.linalg.lstsq(matrix, right[:, sample], rcond=None)[0] if finite else 0.0
+        """The same step by a dense solver: for the few samples whose pivots vanish in the planned order."""
+        out = np.zeros_like(right)
+        matrices = self.dense(values)
+        finite = np.isfinite(matrices).all(axis=(1, 2)) & np.isfinite(right).all(axis=0)
+        if finite.any():
+            try:
+                out[:, finite] = np.linalg.solve(matrices[finite], right[:, finite].T[..., None])[..., 0].T
+            except np.linalg.LinAlgError:
+                for sample in np.flatnonzero(finite):
+                    out[:, sample] = np.linalg.lstsq(matrices[sample], right[:, sample], rcond=None)[0]
         return out
 
     def jacobian(self, x: np.ndarray, prepared: Prepared) -> np.ndarray:

@@ -121,7 +121,16 @@ class Solution:
     @cached_property
     def temperatures(self):
         """Steady temperatures of junctions, cases and sinks."""
-        return self.circuit.heat.temperatures(self.powers_w, self.points)
+        return self.system.thermal.temperatures(self.x, self.prepared.heat, self.powers_w, self.points)
+
+    def sink_k_per_w(self, name: str) -> np.ndarray:
+        """What a sink, a patch or the air of an enclosure warms by per watt that it carries [K/W], shape (sample,)."""
+        sink = self.circuit.heat.sinks[name]
+        if sink.surface is None:
+            return self.value(sink.r_k_per_w)
+        around_c = self.temperatures.sink_c[sink.into] if sink.into else self.value(sink.start_c)
+        rise_k, heat_w = self.temperatures.sink_c[name] - around_c, self.temperatures.sink_w[name]
+        return rise_k / np.maximum(heat_w, 1e-9)
 
     @cached_property
     def parts(self) -> Mapping[str, PartPoint]:

@@ -25,20 +25,16 @@ CHUNK = 256
 
 def gain_bound(system: System, x: np.ndarray, prepared: Prepared) -> np.ndarray:
     """An upper estimate of the loop gain at fixed currents, shape (sample,): the largest row sum of |R · dP/dT|."""
-    rise = np.zeros((len(system.paths), prepared.n_samples))
-    rows = {path.part: k for k, path in enumerate(system.paths)}
+    slopes_w_per_k = np.zeros((len(system.thermal.parts), prepared.n_samples))
+    rows = {part: k for k, part in enumerate(system.thermal.parts)}
     temperatures = set(system.temperature_at.tolist())
     for family, p in zip(system.families, prepared.families, strict=True):
         for parts, _, slopes in family.heats(x, p):
             for columns, value in slopes:
                 for part, column, per_k in zip(parts, columns.tolist(), value, strict=True):
                     if column in temperatures and part in rows:
-                        rise[rows[part]] += np.abs(per_k)
-    gain = prepared.heat["own"] * rise
-    for k, name in enumerate(system.sinks):
-        members = [row for row, path in enumerate(system.paths) if path.sink == name]
-        gain[members] += prepared.heat["sink"][k] * rise[members].sum(axis=0)
-    return gain.max(axis=0, initial=0.0)
+                        slopes_w_per_k[rows[part]] += np.abs(per_k)
+    return system.thermal.gain_bound(x, prepared.heat, slopes_w_per_k)
 
 
 def loop_gain(solver: Solver, x: np.ndarray, prepared: Prepared) -> np.ndarray:
@@ -70,7 +66,7 @@ def climb(solver: Solver, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray
     settled = np.zeros(prepared.n_samples, dtype=bool)
     for _ in range(MAX_ROUNDS):
         x, solved = solver.solve(x, replace(prepared, held_c=held_c))
-        target = _settling_c(system, x, prepared)
+        target = system.thermal.settling_c(x, prepared.heat)
         moved = np.abs(target - held_c).max(axis=0)
         settled |= solved & (moved < 1e-9 * (1.0 + np.abs(held_c).max(axis=0)))
         hopeless = held_c.max(axis=0) > HOPELESS_C
@@ -78,15 +74,3 @@ def climb(solver: Solver, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray
             break
         held_c = np.where(settled | hopeless, held_c, target)
     return x, settled, held_c > HOPELESS_C
-
-
-def _settling_c(system: System, x: np.ndarray, prepared: Prepared) -> np.ndarray:
-    """The temperatures that the present losses would settle at, shape (followed part, sample)."""
-    out = []
-    for row in system.followed:
-        t = prepared.heat["start"][row] + prepared.heat["own"][row] * x[system.power_at[row]]
-        if system.paths[row].sink:
-            k = system.sinks.index(system.paths[row].sink)
-            t = t + prepared.heat["sink"][k] * x[system.sink_at[k]]
-        out.append(t)
-    return np.array(out).reshape(len(system.followed), prepared.n_samples)

@@ -36,8 +36,7 @@ def starting_point(system: System, points: np.ndarray) -> np.ndarray:
     for group in (g for family in system.families if isinstance(family, Groups) for g in family.branches):
         for slot, amperes in group.start.items():
             x[currents[key_of(group, slot)]] = amperes
-    for row, at in zip(system.followed, system.temperature_at, strict=True):
-        x[at] = values_of((system.paths[row].start_c,), points)[0]
+    system.thermal.place_start(x, system.thermal.prepare(points), points)
     return x
 
 

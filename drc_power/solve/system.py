@@ -13,9 +13,9 @@ from .bridges import HalfBridge
 from .converters import Converter
 from .families import FAMILIES, Values
 from .groups import Groups
-from .heat import HeatModel
+from .heat import HeatModel, HeatPath
 from .layout import Layout
-from .variables import values_of
+from .thermal_network import ThermalNetwork
 
 LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups}
 """The family of each kind of branch and of group."""
@@ -45,32 +45,31 @@ class System:
         for branch in branches:
             by_kind[type(branch)].append(branch)
         self.families = [LAWS[kind](by_kind[kind], self.layout) for kind in LAWS if by_kind[kind]]
-        self._lay_out_heat()
+        watched = {part for family in self.families for part in temperature_dependent(family.branches)}
+        self.thermal = ThermalNetwork(heat, self.layout, watched)
         self.layout.sealed = True
         for family in self.families:
             family.follow_temperature(self.layout)
         self.nodes = np.array(list(self.layout.of_kind("node").values()), dtype=np.intp)
         self.n = len(self.layout)
 
-    def _lay_out_heat(self) -> None:
-        """Temperatures are unknowns only where a law depends on them; powers where such a temperature needs them."""
-        watched = {part for family in self.families for part in temperature_dependent(family.branches)}
-        known = {path.part for path in self.heat.paths}
-        coupled = self.heat.coupled_with(sorted(watched & known))
-        self.paths = [path for path in self.heat.paths if path.part in coupled]
-        self.sinks = sorted({path.sink for path in self.paths if path.sink})
-        self.power_at = self.layout.places("power", [path.part for path in self.paths])
-        self.followed = [row for row, path in enumerate(self.paths) if path.part in watched]
-        self.temperature_at = self.layout.places("temperature", [self.paths[r].part for r in self.followed])
-        self.sink_at = self.layout.places("sink power", self.sinks)
+    @property
+    def paths(self) -> list[HeatPath]:
+        """The heat paths that are part of the equations."""
+        return self.thermal.paths
+
+    @property
+    def followed(self) -> list[int]:
+        """The rows of `paths` whose temperature a law depends on."""
+        return self.thermal.followed
+
+    @property
+    def temperature_at(self) -> np.ndarray:
+        return self.thermal.temperature_at
 
     def prepare(self, points: np.ndarray) -> Prepared:
         """The numbers at the given points, shape (sample, variable)."""
-        model = HeatModel(tuple(self.paths), self.heat.sinks)
-        sinks = [self.heat.sinks[name] for name in self.sinks]
-        heat = {"own": model.own(points), "start": values_of([p.start_c for p in self.paths], points),
-                "sink": values_of([s.r_k_per_w for s in sinks], points)}
-        return Prepared(tuple(f.parameters(points) for f in self.families), heat, points.shape[0])
+        return Prepared(tuple(f.parameters(points) for f in self.families), self.thermal.prepare(points), points.shape[0])
 
     def evaluate(self, x: np.ndarray, prepared: Prepared):
         """Residual of shape (unknown, sample) and the entries of the derivative as (rows, columns, values)."""
@@ -90,37 +89,15 @@ class System:
         return residual[:-1], entries
 
     def _add_heat(self, x: np.ndarray, prepared: Prepared, residual: np.ndarray, entries: list) -> None:
-        """P − Σ dissipation = 0, ΣP of each sink, and T − T_start − R·P − R_sink·ΣP = 0."""
-        if not self.paths:
+        """What the parts dissipate, into the rows of the thermal network."""
+        self.thermal.add(x, prepared.heat, prepared.held_c, residual, entries)
+        if not len(self.thermal.power_at):
             return
-        one, heat = np.ones((1, prepared.n_samples)), prepared.heat
-        residual[self.power_at] += x[self.power_at]
-        entries.append((self.power_at, self.power_at, np.repeat(one, len(self.power_at), axis=0)))
         for family, p in zip(self.families, prepared.families, strict=True):
             for parts, power, slopes in family.heats(x, p):
                 at = self.layout.places("power", [part or "" for part in parts])
                 np.add.at(residual, at, -power)
                 entries += [(at, columns, -value) for columns, value in slopes]
-        for row, (name, at) in enumerate(zip(self.sinks, self.sink_at, strict=True)):
-            members = self.power_at[[k for k, path in enumerate(self.paths) if path.sink == name]]
-            residual[at] += x[at] - x[members].sum(axis=0)
-            entries.append((np.array([at]), np.array([at]), one))
-            entries += [(np.array([at]), np.array([m]), -one) for m in members]
-        held_c = prepared.held_c if prepared.held_c is not None else np.full((len(self.followed), prepared.n_samples), np.nan)
-        self._add_temperatures(x, heat, held_c, residual, entries)
-
-    def _add_temperatures(self, x, heat: Values, held_c: np.ndarray, residual, entries) -> None:
-        one = np.ones((1, held_c.shape[1]))
-        for row, at, held in zip(self.followed, self.temperature_at, held_c, strict=True):
-            power, own, free = self.power_at[row], heat["own"][row], np.isnan(held)
-            target, weight = heat["start"][row] + own * x[power], np.where(free, own, 0.0)
-            entries += [(np.array([at]), np.array([at]), one), (np.array([at]), np.array([power]), -weight[None])]
-            if self.paths[row].sink:
-                k = self.sinks.index(self.paths[row].sink)
-                sink = self.sink_at[k]
-                target = target + heat["sink"][k] * x[sink]
-                entries.append((np.array([at]), np.array([sink]), -np.where(free, heat["sink"][k], 0.0)[None]))
-            residual[at] += x[at] - np.where(free, target, held)
 
     def regime(self, x: np.ndarray, prepared: Prepared) -> np.ndarray:
         """Which straight line each branch stands on, booleans of shape (bit, sample)."""

@@ -208,14 +208,14 @@ def _beyond_case(solution: Solution, ref: str) -> tuple[np.ndarray, np.ndarray]:
     own = values_of(path.own_k_per_w, solution.points).sum(axis=0) - solution.value(path.case_k_per_w)
     if not path.sink:
         return np.zeros_like(own), np.maximum(own, 0.0)
-    return np.maximum(own, 0.0), solution.value(solution.circuit.heat.sinks[path.sink].r_k_per_w)
+    return np.maximum(own, 0.0), solution.sink_k_per_w(path.sink)
 
 
 def capacities(circuit: Circuit, ref: str) -> tuple[float, float]:
     """Heat capacity of the case and of what stands behind it [J/K]; 0 where nobody gave one."""
     part, path = circuit.mode.parts[ref], heat_path(circuit, ref)
     own = part.device.thermal.capacity if part.device else None
-    sink = circuit.mode.board.annotations.sinks[path.sink].capacity if path and path.sink else None
-    near_j, far_j = (quantity.min if quantity is not None else 0.0 for quantity in (own, sink))
+    near_j = own.min if own is not None else 0.0
+    far_j = circuit.heat.sinks[path.sink].capacity_j_per_k if path and path.sink else 0.0
     # Without a sink the case itself is the body behind which the whole resistance lies.
     return (near_j, far_j) if path and path.sink else (0.0, near_j)
