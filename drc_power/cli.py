@@ -67,6 +67,8 @@ def build_parser() -> argparse.ArgumentParser:
     _compare_arguments(commands)
     _workings_arguments(commands)
     _rules_arguments(commands)
+    _envelope_arguments(commands)
+    _size_arguments(commands)
     return parser
 
 
@@ -92,6 +94,10 @@ def _check_arguments(commands) -> None:
     command.add_argument("--markdown", metavar="FILE", help="write the findings as Markdown; - is standard output")
     command.add_argument("--confirm-netlist", action="store_true", help="read the netlist with a second, independent reader too")
     command.add_argument("--self-check", action="store_true", help="verify current and power balance of every solved point")
+    command.add_argument("--samples", metavar="N", type=_count, default=0, help="random samples of all spans in each mode")
+    command.add_argument("--seed", metavar="S", type=_count, default=0, help="the same seed gives the same samples")
+    command.add_argument("--distribution", choices=("uniform", "normal"), default="uniform",
+                         help="how samples fill a span; normal takes it as plus and minus three sigma")
     command.add_argument("--fails-from", choices=FAILING, help="the mildest verdict that fails the run")
     command.add_argument("--today", metavar="DATE", type=_date, help="the date that waivers are held against, YYYY-MM-DD")
 
@@ -109,9 +115,22 @@ def _workings_arguments(commands) -> None:
     command.add_argument("ref", metavar="REF")
 
 
+def _envelope_arguments(commands) -> None:
+    command = _command(commands, "envelope", envelope, "a part's safe-area chart with its operating points and events")
+    command.add_argument("file", metavar="FILE.power.yaml")
+    command.add_argument("ref", metavar="REF")
+    command.add_argument("-o", "--output", metavar="FILE.svg", type=_chart_file, required=True, help="a file that ends in .svg or .png")
+
+
 def _rules_arguments(commands) -> None:
     command = _command(commands, "rules", rules, "the rules in force and where each comes from")
     command.add_argument("file", metavar="FILE.power.yaml")
+
+
+def _size_arguments(commands) -> None:
+    command = _command(commands, "size", size, "what would make a part pass: sink, load current or ambient allowed")
+    command.add_argument("file", metavar="FILE.power.yaml")
+    command.add_argument("ref", metavar="REF")
 
 
 def _file(text: str) -> str:
@@ -120,11 +139,23 @@ def _file(text: str) -> str:
     return text
 
 
+def _chart_file(text: str) -> str:
+    if not text.lower().endswith((".svg", ".png")):
+        raise argparse.ArgumentTypeError(f"{text!r} does not say the kind of chart, end it in .svg or .png")
+    return text
+
+
 def _date(text: str) -> str:
     try:
         return datetime.date.fromisoformat(text).isoformat()
     except ValueError:
         raise argparse.ArgumentTypeError(f"{text!r} is no date, write YYYY-MM-DD") from None
+
+
+def _count(text: str) -> int:
+    if not text.isascii() or not text.isdigit() or len(text) > 9:
+        raise argparse.ArgumentTypeError(f"{text[:40]!r} is no count, write a whole number such as 10000")
+    return int(text)
 
 
 def survey(options) -> int:
@@ -188,7 +219,8 @@ def check(options) -> int:
     from .report.terminal import to_table
     from .run import Run, check as run_check
 
-    run = Run(options.today, _progress, options.confirm_netlist, options.self_check, options.fails_from)
+    run = Run(options.today, _progress, options.confirm_netlist, options.self_check, options.samples, options.seed,
+              options.distribution, options.fails_from)
     result = run_check(options.file, run)
     _progress("")
     sys.stderr.write("".join(f"{remark}\n" for remark in run.remarks))
@@ -219,12 +251,30 @@ def workings(options) -> int:
     from .run import check as run_check
 
     result = run_check(options.file)
-    if options.ref not in {f.ref for f in result.findings}:
+    _refuse_unknown(options.file, options.ref, sorted({f.ref for f in result.findings if f.ref}))
+    sys.stdout.write(workings_text(result, options.ref))
+    return OK
+
+
+def envelope(options) -> int:
+    """`drc-power envelope`."""
+    from .charting import safe_area_chart
+    from .report.charts.safe_area import draw
+    from .report.write import write_files
+    from .run import Run, read_board
+
+    board, _, _ = read_board(options.file, Run())
+    if options.ref not in board.elements:
         from .intake.suggest import nearest
 
-        known = sorted({f.ref for f in result.findings if f.ref})
-        raise InputError(Fault(Mark(options.file), f"there is no finding on a part {options.ref!r}", nearest(options.ref, known)))
-    sys.stdout.write(workings_text(result, options.ref))
+        raise InputError(Fault(Mark(options.file), f"there is no power element {options.ref!r}", nearest(options.ref, board.elements)))
+    chart = safe_area_chart(board, options.ref)
+    try:
+        drawn = draw(chart, options.output.rpartition(".")[2].lower())
+    except ImportError:
+        raise InputError(Fault(Mark(options.output), "charts need matplotlib, which is not installed",
+                               "install drc_power with its extra: report")) from None
+    write_files({options.output: drawn})
     return OK
 
 
@@ -235,6 +285,24 @@ def rules(options) -> int:
 
     sys.stdout.write(rules_text(rules_in_force(options.file)))
     return OK
+
+
+def size(options) -> int:
+    """`drc-power size`."""
+    from .run import Run, read_board
+    from .sizing import size_part, sizing_text
+
+    board, _, _ = read_board(options.file, Run())
+    _refuse_unknown(options.file, options.ref, board.elements)
+    sys.stdout.write(sizing_text(size_part(board, options.ref)))
+    return OK
+
+
+def _refuse_unknown(path: str, ref: str, known: Sequence[str]) -> None:
+    if ref not in known:
+        from .intake.suggest import nearest
+
+        raise InputError(Fault(Mark(path), f"no part {ref!r} is judged on this board", nearest(ref, known)))
 
 
 def _deliver(texts: dict[str, str], order: Sequence[str | None]) -> bool:

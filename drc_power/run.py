@@ -45,6 +45,9 @@ class Run:
     progress: Progress = lambda text: None
     confirm_netlist: bool = False
     self_check: bool = False
+    n_samples: int = 0
+    seed: int = 0
+    distribution: str = "uniform"
     fails_from: str | None = None
     remarks: list[str] = field(default_factory=list)
 
@@ -123,6 +126,7 @@ def _in_mode(board: Board, mode: Mode, house: House, run: Run) -> Iterator[tuple
         finding = make_finding(board, judgement, sample, _corner(circuit, worst, k, sample), gaps[k])
         if finding is not None:
             findings.append((k, finding))
+    findings = _with_samples(engine, house, run, findings)
     findings = _with_sensitivity(engine, house, worst, findings)
     yield findings, _points(final, worst, n_judged), _nets(final, worst, n_judged)
 
@@ -183,6 +187,20 @@ def _corner(circuit, worst: Worst, objective: int, sample: int) -> str:
     named = [f"{v.name} {format_quantity(worst.points[sample, k], v.dimension)}"
              for k in matter for v in (circuit.box.variables[k],)]
     return ", ".join(named) if named else "any corner"
+
+
+def _with_samples(engine: Engine, house: House, run: Run, findings: list[tuple[int, Finding]]) -> list[tuple[int, Finding]]:
+    """Each finding with what random samples of the mode's box say of it, where samples were asked for."""
+    if not run.n_samples:
+        return findings
+    from .checks.statistics import sampled
+    from .solve.sampling import sample_batches
+
+    mode = engine.circuit.mode
+    stream = mode.board.annotations.mode_names.index(mode.name)
+    batches = sample_batches(engine.circuit.box, run.n_samples, run.seed, stream, run.distribution)
+    tally = sampled(engine, house, batches, lambda done: run.progress(f"mode {mode.name}: {done} of {run.n_samples} samples"))
+    return [(k, replace(finding, samples=tally.row(k))) for k, finding in findings]
 
 
 N_SENSITIVITIES = 3

@@ -17,11 +17,15 @@ from .stage_pairs import add_chopped
 from .stages import add_stages
 from .supply import add_loads, add_rails, is_active, reference_of
 from .system import temperature_dependent
+from .variables import Box
 
 
-def build_circuit(mode: Mode, events: bool = True) -> Circuit:
-    """The circuit of a board in one mode. Raises InputError where an annotation contradicts the netlist."""
-    builder = Builder(mode)
+def build_circuit(mode: Mode, levers: frozenset[str] = frozenset(), events: bool = True) -> Circuit:
+    """The circuit of a board in one mode. Raises InputError where an annotation contradicts the netlist.
+
+    levers: names of quantities that get a side of the box even where they are exact, so that sizing can move them.
+    """
+    builder = Builder(mode, Box(levers=levers))
     add_ambient(builder)
     note_converters(builder)
     add_rails(builder)

@@ -333,12 +333,16 @@ class CurrentLoads(Family):
 
 
 class PowerLoads(CurrentLoads):
-    """i = P / v; below the floor i = P · v / floor², the resistor that takes P at the floor."""
+    """i = P / v; below the floor i = P · v / floor², the resistor that takes P at the floor.
+
+    `as_resistor_v`, NaN otherwise, makes the load the resistor that takes P at that voltage: a way to a starting point.
+    """
 
     def parameters(self, points: np.ndarray) -> Values:
         floor = np.array([b.floor_v for b in self.branches])[:, None]
         return {"power": values_of([b.power_w for b in self.branches], points), **self._duties(points),
-                "floor": np.broadcast_to(floor, (len(self.branches), points.shape[0]))}
+                "floor": np.broadcast_to(floor, (len(self.branches), points.shape[0])),
+                "as_resistor_v": np.full((len(self.branches), points.shape[0]), np.nan)}
 
     def collapsed(self, x: np.ndarray, p: Values) -> np.ndarray:
         """Where the load gets a voltage, but less than it can run at; shape (branch, sample)."""
@@ -347,9 +351,10 @@ class PowerLoads(CurrentLoads):
 
     def equations(self, x: np.ndarray, p: Values) -> tuple[Residuals, Entries]:
         v = x[self.a] - x[self.b]
-        low = v < p["floor"]
+        as_resistor = p["as_resistor_v"]
+        low = (v < p["floor"]) | ~np.isnan(as_resistor)
         safe = np.maximum(v, p["floor"])
-        conductance = p["power"] / p["floor"] ** 2
+        conductance = p["power"] / np.where(np.isnan(as_resistor), p["floor"], as_resistor) ** 2
         draw = np.where(low, conductance * np.maximum(v, 0.0), p["power"] / safe)
         slope = np.where(low, np.where(v > 0.0, conductance, 0.0), -p["power"] / safe**2)
         one = np.ones_like(v)

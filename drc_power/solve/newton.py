@@ -2,16 +2,20 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
 from .elimination import Plan, SingularPattern, plan_elimination, solve_planned
+from .families import PowerLoads
 from .system import Prepared, System
 
 MAX_ITERATIONS = 60
 STEP_TOLERANCE = 1e-12
 """Converged when no unknown moves by more than this share of itself (of 1 below 1) and no branch changes its line."""
+
+MILD_ROUNDS = 12
+"""How often the milder network is solved on the way to the real one."""
 
 SMALL_STEP = 1e-9
 """Polishing moves nothing by more than this: a larger step would be no rounding."""
@@ -36,7 +40,33 @@ class Solver:
     _slots: list[np.ndarray] = field(default_factory=list)
 
     def solve(self, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray, np.ndarray]:
-        """Iterate from x of shape (unknown + 1, sample). Returns the solution and where it converged, (sample,)."""
+        """Iterate from x of shape (unknown + 1, sample). Returns the solution and where it converged, (sample,).
+
+        Where that does not converge it is tried once more from a milder network's solution.
+        """
+        start = x
+        x, converged = self._iterate(start, prepared)
+        lost = np.flatnonzero(~converged)
+        if len(lost) and any(isinstance(f, PowerLoads) for f in self.system.families):
+            part = take(prepared, lost)
+            x[:, lost], converged[lost] = self._iterate(self._milder(start[:, lost], part), part)
+        return x, converged
+
+    def _milder(self, x: np.ndarray, prepared: Prepared) -> np.ndarray:
+        """A starting point with every constant-power load as a resistor, its voltage set to what it got in the last round."""
+        volts = [None] * len(self.system.families)
+        for _ in range(MILD_ROUNDS):
+            families = []
+            for k, (family, p) in enumerate(zip(self.system.families, prepared.families, strict=True)):
+                if isinstance(family, PowerLoads):
+                    reached = x[family.a] - x[family.b]
+                    volts[k] = np.maximum(reached, p["floor"]) if volts[k] is None else np.maximum(0.5 * (volts[k] + reached), p["floor"])
+                    p = {**p, "as_resistor_v": volts[k]}
+                families.append(p)
+            x, _ = self._iterate(x, replace(prepared, families=tuple(families)))
+        return x
+
+    def _iterate(self, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray, np.ndarray]:
         converged = np.zeros(prepared.n_samples, dtype=bool)
         x = x.copy()
         bound_v = VOLTAGE_ROOM * np.abs(x[self.system.nodes]).max(initial=1.0)

@@ -135,7 +135,7 @@ class _Search:
                 middle = point.copy()
                 middle[side] = (self.low[side] + self.high[side]) / 2.0
                 middles.append(middle)
-        self.evaluate(np.array(middles).reshape(-1, len(self.typical)))
+        self.evaluate(np.array(middles).reshape(len(middles), len(self.typical)))
 
     def _worst_points(self) -> np.ndarray:
         return self.points[self.values[: self.n_followed].argmin(axis=1)]
@@ -156,7 +156,7 @@ class _Search:
                     row = point.copy()
                     row[side] = end
                     rows.append(row)
-        return np.array(sides, dtype=int), np.array(rows).reshape(-1, len(point))
+        return np.array(sides, dtype=int), np.array(rows).reshape(len(rows), len(point))
 
     def _joined(self, objective: int, point: np.ndarray, sides: np.ndarray, rows: np.ndarray) -> np.ndarray:
         """The point with every move that alone made this objective worse; of two ends the worse one."""

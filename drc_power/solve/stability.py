@@ -19,7 +19,9 @@ CERTAIN_BELOW = 0.5
 HOPELESS_C = 2000.0
 """A temperature that only a diverging loop reaches."""
 
-MAX_ROUNDS = 300
+SETTLED_K = 1e-9
+HASTE = 8.0
+MAX_ROUNDS = 120
 CHUNK = 256
 
 
@@ -61,16 +63,34 @@ def climb(solver: Solver, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray
     Losses that rise with temperature make this climb to the lowest equilibrium, or without end where there is none.
     Returns the last unknowns, where an equilibrium was reached, and which followed parts ran away (part, sample).
     """
-    system, at = solver.system, solver.system.temperature_at
-    held_c = x[at].copy()
+    at, x = solver.system.temperature_at, x.copy()
     settled = np.zeros(prepared.n_samples, dtype=bool)
+    lost = np.zeros(prepared.n_samples, dtype=bool)
+    active, last = np.arange(prepared.n_samples), np.full(prepared.n_samples, np.inf)
     for _ in range(MAX_ROUNDS):
-        x, solved = solver.solve(x, replace(prepared, held_c=held_c))
-        target = system.thermal.settling_c(x, prepared.heat)
+        part, held_c = take(prepared, active), x[at][:, active]
+        found, solved = solver.solve(x[:, active], replace(part, held_c=held_c))
+        target = solver.system.thermal.settling_c(found, part.heat)
         moved = np.abs(target - held_c).max(axis=0)
-        settled |= solved & (moved < 1e-9 * (1.0 + np.abs(held_c).max(axis=0)))
-        hopeless = held_c.max(axis=0) > HOPELESS_C
-        if (settled | hopeless | ~solved).all():
+        x[:, active] = found
+        settled[active] = solved & (moved < SETTLED_K * (1.0 + np.abs(held_c).max(axis=0)))
+        lost[active] = ~solved
+        going = ~settled[active] & ~lost[active] & (held_c.max(axis=0) <= HOPELESS_C)
+        if not going.any():
             break
-        held_c = np.where(settled | hopeless, held_c, target)
-    return x, settled, held_c > HOPELESS_C
+        stride = _stride(moved[going] / last[active][going])
+        last[active] = moved
+        active = active[going]
+        x[np.ix_(at, active)] = held_c[:, going] + stride * (target - held_c)[:, going]
+    return x, settled, (x[at] > HOPELESS_C) & ~settled & ~lost
+
+
+def _stride(ratio: np.ndarray) -> np.ndarray:
+    """How many rounds' worth to climb at once, shape (sample,), from the ratio of one round's rise to the last one's.
+
+    A ratio r below 1 leaves 1/(1 − r) rounds' worth to climb if it stays, of which most is taken; above 1 the climb has
+    no end in sight and may be hastened.
+    """
+    with np.errstate(divide="ignore", invalid="ignore"):
+        rest = 0.9 / (1.0 - ratio)
+    return np.where(ratio >= 1.0, HASTE, np.where(ratio > 0.5, np.clip(rest, 1.0, HASTE**2), 1.0))

@@ -73,11 +73,17 @@ def _edges(system: System, points: np.ndarray) -> dict[str, list[tuple[str, floa
             edges[branch.a].append((branch.b, branch.r_ohm.value, 0.0))
             edges[branch.b].append((branch.a, branch.r_ohm.value, 0.0))
         elif isinstance(branch, OneWay):
-            knee = values_of((branch.drop.knee_v,), points)[0]
-            edges[branch.a].append((branch.b, DIODE_OHM, -knee))
+            edges[branch.a].append((branch.b, DIODE_OHM, -_first_drop(branch, points)))
         elif isinstance(branch, HalfBridge):
             edges[branch.main_node].append((branch.x, DIODE_OHM, 0.0))
         elif isinstance(branch, Converter):
             volts = values_of((branch.setpoint_v,), points)[0]
             edges[branch.ground] += [(branch.held, 1e-6, volts), (branch.b, 2e-6, volts)]
     return edges
+
+
+def _first_drop(branch: OneWay, points: np.ndarray) -> np.ndarray | float:
+    """The drop at the smallest current, or a little more, so that the diode starts as conducting."""
+    if branch.drop.lines:
+        return max(curve.ys[0] for _, curve in branch.drop.lines)
+    return values_of((branch.drop.knee_v,), points)[0]

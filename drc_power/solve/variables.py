@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
@@ -29,11 +29,12 @@ class Variable:
 
 @dataclass(frozen=True, slots=True)
 class Param:
-    """A number of the circuit: exact, or the box's side `index`, or 1 less that side."""
+    """A number of the circuit: exact, or the box's side `index`, or 1 less that side; and what is added to it."""
 
     value: float
     index: int | None = None
     complement: bool = False
+    plus: Param | None = None
 
 
 ONE = Param(1.0)
@@ -46,10 +47,12 @@ class Box:
 
     variables: list[Variable] = field(default_factory=list)
     _index: dict[str, int] = field(default_factory=dict)
+    levers: frozenset[str] | None = frozenset()
+    """Names that get a side even where they are exact, so that sizing can move them; None for every name."""
 
     def param(self, name: str, span: Span, dimension: str, mark: Mark) -> Param:
         """The parameter for a span; asking twice for one name gives the same side."""
-        if span.is_exact:
+        if span.is_exact and not (self.levers is None or name in self.levers):
             return Param(span.typ)
         if name not in self._index:
             self._index[name] = len(self.variables)
@@ -62,6 +65,16 @@ class Box:
             self._index[name] = len(self.variables)
             self.variables.append(Variable(name, dimension, Span.exact(at), mark, probe, why))
         return Param(at, self._index[name])
+
+    def index_of(self, name: str) -> int | None:
+        """The side of that name, if there is one."""
+        return self._index.get(name)
+
+    def fixed(self, index: int, value: float) -> Box:
+        """A box whose side `index` has shrunk to one value."""
+        variables = list(self.variables)
+        variables[index] = replace(variables[index], span=Span.exact(value))
+        return Box(variables, dict(self._index), self.levers)
 
     def typical(self) -> np.ndarray:
         """The point with every side at its typical value, shape (variable,)."""
@@ -80,4 +93,6 @@ def values_of(params: Sequence[Param], points: np.ndarray) -> np.ndarray:
     for row, param in enumerate(params):
         given = param.value if param.index is None else points[:, param.index]
         out[row] = 1.0 - given if param.complement and param.index is not None else given
+        if param.plus is not None:
+            out[row] += values_of((param.plus,), points)[0]
     return out
