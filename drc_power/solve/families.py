@@ -31,6 +31,9 @@ from .variables import values_of
 COLLAPSE_V = 0.5
 """Below this voltage a constant-current load or a quiescent current fades in proportion, so that an unpowered net rests at zero."""
 
+NO_CURRENT_A = 1e-13
+"""Below this a branch carries rounding, not current."""
+
 LINK_OHM = 1e-9
 """The resistance of an ideal link, so that parallel links share and a loop of links has a solution."""
 
@@ -143,7 +146,7 @@ class Resistives(Family):
 
 
 class OneWays(Family):
-    """Either v_a − v_b = drop(i, T) with i > 0, or i = 0: the smaller of both, a piecewise linear pair."""
+    """Either v_a − v_b = drop(i, T) with i > 0, or i = 0 with no more than the drop across it."""
 
     def __init__(self, branches: Sequence[OneWay], layout: Layout) -> None:
         super().__init__(branches, layout)
@@ -161,7 +164,9 @@ class OneWays(Family):
         forward = np.maximum(x[self.i], 0.0)
         volts, per_amp, per_k = drop_at(self.drops, p, forward, x[self.t])
         excess = x[self.a] - x[self.b] - volts
-        return x[self.i] + excess > 0.0, excess, volts, per_amp, per_k
+        # A diode that carries current conducts; one that carries none conducts once its voltage exceeds the drop.
+        on = (x[self.i] > NO_CURRENT_A) | ((x[self.i] > -NO_CURRENT_A) & (excess > 0.0))
+        return on, excess, volts, per_amp, per_k
 
     def regime(self, x: np.ndarray, p: Values) -> Iterator[np.ndarray]:
         yield self._law(x, p)[0]
