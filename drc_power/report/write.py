@@ -33,12 +33,12 @@ def write_file(path: str, text: str) -> None:
     write_files({path: text})
 
 
-def write_files(texts: Mapping[str, str]) -> None:
+def write_files(texts: Mapping[str, str | bytes]) -> None:
     """Writes several files, none before every one of them lies on the disk in full.
 
-    texts: the text of each path. Raises InputError, like `write_file`, also where two paths are one file.
+    texts: the text, or the bytes of a picture, of each path. Raises InputError, like `write_file`, also where two paths are one file.
     """
-    data = {path: text.encode() for path, text in texts.items()}
+    data = {path: text.encode() if isinstance(text, str) else text for path, text in texts.items()}
     _refuse_same_file(data)
     with contextlib.ExitStack() as undo:
         streams = [path for path in data if _is_stream(path)]

@@ -1,0 +1,1 @@
+"""Charts, each drawn from a record of `findings.charts` alone."""
