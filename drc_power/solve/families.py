@@ -34,6 +34,9 @@ COLLAPSE_V = 0.5
 NO_CURRENT_A = 1e-13
 """Below this a branch carries rounding, not current."""
 
+NO_VOLTAGE_V = 1e-9
+"""A net that only a diode feeds and nothing loads hangs at the drop to within rounding: that diode conducts."""
+
 LINK_OHM = 1e-9
 """The resistance of an ideal link, so that parallel links share and a loop of links has a solution."""
 
@@ -164,8 +167,8 @@ class OneWays(Family):
         forward = np.maximum(x[self.i], 0.0)
         volts, per_amp, per_k = drop_at(self.drops, p, forward, x[self.t])
         excess = x[self.a] - x[self.b] - volts
-        # A diode that carries current conducts; one that carries none conducts once its voltage exceeds the drop.
-        on = (x[self.i] > NO_CURRENT_A) | ((x[self.i] > -NO_CURRENT_A) & (excess > 0.0))
+        # A diode that carries current conducts; one that carries none conducts from where its voltage is the drop.
+        on = (x[self.i] > NO_CURRENT_A) | ((x[self.i] > -NO_CURRENT_A) & (excess > -NO_VOLTAGE_V))
         return on, excess, volts, per_amp, per_k
 
     def regime(self, x: np.ndarray, p: Values) -> Iterator[np.ndarray]:
