@@ -65,14 +65,15 @@ def _net(source: Source, clause: Clause) -> WrittenNet:
         raise InputError(source.fault(clause.at, "a net without a name", "export the netlist again"))
     name = name or f"N-00000{code}"  # the name that KiCad itself gives such a net
     connections = (_connection(source, name, node) for node in clause.each("node"))
-    of_parts = tuple(connection for connection in connections if not connection.ref.startswith("#"))
+    # Power symbols are no parts, and a pad without a number, as of a mounting hole, is no pin that anything could name.
+    of_parts = tuple(each for each in connections if not each.ref.startswith("#") and each.pin)
     return WrittenNet(name, code, clause.value("class"), of_parts, clause.at)
 
 
 def _connection(source: Source, net: str, node: Clause) -> Connection:
     value = dict(node.values)
     ref, pin = value.get("ref"), value.get("pin")
-    if not ref or not pin:
+    if not ref or pin is None:
         found = f"net {shown(net)} lists a node without a {'pin' if ref else 'part'}"
         raise InputError(source.fault(node.at, found, "export the netlist again"))
     return Connection(net, ref, pin, plain(value.get("pinfunction", "")), value.get("pintype", ""), node.at)

@@ -416,3 +416,15 @@ def test_heading_is_of_the_first_sheet():
     design = '(source "a.kicad_sch") (tool "Eeschema 9")' + sheet.format(2, "Two", "x") + sheet.format(1, "One", "C")
     netlist = netlist_of(design=design)
     assert (netlist.title, netlist.revision, netlist.tool) == ("One", "C", "Eeschema 9")
+
+
+def test_a_pad_without_a_number_is_no_pin():
+    """KiCad's own demo projects have mounting holes whose pads are numbered with the empty text."""
+    from drc_power.netlist.reader import parse_netlist
+
+    text = '''(export (version "E") (components (comp (ref "H1") (value "Hole")) (comp (ref "R1") (value "1k")))
+      (nets (net (code "1") (name "GND") (node (ref "H1") (pin "") (pintype "passive")) (node (ref "R1") (pin "1")))
+            (net (code "2") (name "A") (node (ref "H1") (pin "")) (node (ref "R1") (pin "2")))))'''
+    netlist = parse_netlist(text, "holes.net")
+    assert [node.ref for node in netlist.nets["GND"].nodes] == ["R1"]
+    assert netlist.parts["H1"].pins == ()
