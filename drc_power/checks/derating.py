@@ -13,6 +13,7 @@ import numpy as np
 
 from ..board import BoardPart
 from ..quantity import parse_value_field
+from ..solve.rectifier import Rectifier
 from .judgement import Judgement
 from .view import ElementView, View
 
@@ -58,10 +59,16 @@ def _judge(element: ElementView, row: Stress) -> Judgement:
 def _held_off(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
     """The voltage between a switch's terminals: while it blocks if it switches, ringing added."""
     if not element.probe.pulsed:
-        return np.abs(element.point.voltage_v), ()
+        return np.abs(element.point.voltage_v) + element.crest_v, ()
+    # A rectifier's diodes count the crest of its output already.
+    block_v = element.point.block_v + (0.0 if _rectifies(element) else element.crest_v)
     if element.probe.overshoot is None:
-        return element.point.block_v, (f"parts.{element.ref}.overshoot",)
-    return element.point.block_v + element.view.solution.value(element.probe.overshoot), ()
+        return block_v, (f"parts.{element.ref}.overshoot",)
+    return block_v + element.view.solution.value(element.probe.overshoot), ()
+
+
+def _rectifies(element: ElementView) -> bool:
+    return any(branch.key == element.probe.group and isinstance(branch, Rectifier) for branch in element.view.solution.circuit.branches)
 
 
 def _reverse(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
@@ -70,7 +77,8 @@ def _reverse(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
         return _held_off(element)
     if element.kind == "bridge":
         return np.maximum(element.point.voltage_v, 0.0), ()
-    return np.maximum(-element.point.voltage_v, 0.0), ()
+    reverse_v = np.maximum(-element.point.voltage_v, 0.0)
+    return np.where(reverse_v > 0.0, reverse_v + element.crest_v, 0.0), ()
 
 
 def _gate(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
@@ -100,7 +108,7 @@ def _peak(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
 def _across(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
     if element.probe.push_pull is not None and element.probe.push_pull.resistor_ohm is not None:
         return element.point.peak_a * element.view.solution.value(element.probe.push_pull.resistor_ohm), ()
-    return np.abs(element.point.voltage_v), ()
+    return np.abs(element.point.voltage_v) + element.crest_v, ()
 
 
 def _input(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
@@ -108,7 +116,8 @@ def _input(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
     solution, ground = element.view.solution, element.probe.ground
     if not element.probe.a or not solution.has_node(element.probe.a):
         return element.view.unknown(), (f"parts.{element.ref}.pins.input",)
-    return np.abs(solution.node_v(element.probe.a) - (solution.node_v(ground) if ground else 0.0)), ()
+    volts = np.abs(solution.node_v(element.probe.a) - (solution.node_v(ground) if ground else 0.0))
+    return volts + element.above_v(element.probe.a), ()
 
 
 def _to_ground(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
@@ -117,7 +126,7 @@ def _to_ground(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:
     nets = [net for net in (element.probe.a, element.probe.b) if net and solution.has_node(net)]
     if not nets:
         return element.view.unknown(), (f"parts.{element.ref}.pins",)
-    return np.max([np.abs(solution.node_v(net)) for net in nets], axis=0), ()
+    return np.max([np.abs(solution.node_v(net)) for net in nets], axis=0) + element.above_v(*nets), ()
 
 
 def _feeds(element: ElementView) -> tuple[np.ndarray, tuple[str, ...]]:

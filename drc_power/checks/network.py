@@ -23,7 +23,8 @@ def headroom(view: View) -> Iterator[Judgement]:
 def _headroom(element: ElementView) -> Judgement:
     solution = element.view.solution
     branch = next(b for b in solution.circuit.branches if b.key == element.ref)
-    value = solution.node_v(branch.a) - solution.node_v(branch.ground) - solution.value(branch.setpoint_v)
+    below_v = solution.ripple_voltages[branch.a][0] if branch.a in solution.ripple_voltages else 0.0  # a ripple's valley is the least it has
+    value = solution.node_v(branch.a) - below_v - solution.node_v(branch.ground) - solution.value(branch.setpoint_v)
     given = element.part.device.conduction.dropout if element.part.device else None
     rated = element.view.constant(given.max if given is not None else None)
     need, limit = element.required("headroom", rated)
@@ -43,6 +44,9 @@ def load_voltage(view: View) -> Iterator[Judgement]:
             continue
         value = solution.node_v(load.a) - solution.node_v(load.b)
         low, high = (solution.value(end) for end in load.needs)
+        if load.a in solution.ripple_voltages:
+            below_v, above_v = solution.ripple_voltages[load.a]
+            value = np.where(value - below_v - low < high - value - above_v, value - below_v, value + above_v)
         sense = "between" if load.needs[0].value < load.needs[1].value else "at_least"
         yield Judgement(
             "network.voltage", named_subject("load", load.name), f"voltage at {load.name}", "V", value,

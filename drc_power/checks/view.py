@@ -89,6 +89,25 @@ class ElementView:
                    if ref in solution.circuit.heat.coupled_with((self.ref,)) or ref == self.ref]
         return self.view.solved & ~np.any(running, axis=0) if running else self.view.solved
 
+    @cached_property
+    def crest_v(self) -> np.ndarray:
+        """What a rectifier's ripple adds to the mean voltage across the part [V], shape (sample,).
+
+        Nothing where both ends swing together; for a switch of a converter or bridge what swings anywhere in it.
+        """
+        solution, probe = self.view.solution, self.probe
+        group = next((b for b in solution.circuit.branches if b.key == probe.group and hasattr(b, "nodes")), None) if probe.pulsed else None
+        if group is not None:
+            return self.above_v(*group.nodes.values())
+        ends = [net for net in (probe.a, probe.b) if net in solution.ripple_voltages]
+        return self.above_v(*ends) if len(ends) == 1 else np.zeros(solution.n_samples)
+
+    def above_v(self, *nets: str) -> np.ndarray:
+        """How far the highest of the nets rises above its mean [V], shape (sample,)."""
+        found = self.view.solution.ripple_voltages
+        rises = [found[net][1] for net in nets if net in found]
+        return np.max(rises, axis=0) if rises else np.zeros(self.view.solution.n_samples)
+
     def rating(self, stress: str) -> np.ndarray:
         """The device's own limit at every sample; NaN where it is not given. A span counts by its lower end."""
         limit = self.part.limit(stress)

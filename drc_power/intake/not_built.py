@@ -16,10 +16,7 @@ NOT_BUILT: dict[str, dict[str, bool]] = {
         "surroundings.enclosure": True,
         "surroundings.air=!still": True,
         "surroundings.altitude": False,  # thermal resistances that the user gives hold as they stand at any altitude
-        "rails.*.ac": True,
-        "rails.*.frequency": True,
         "stages.*.kind=three-phase": True,
-        "stages.*.kind=rectifier": True,
         "sinks.*.fins": True,
         "sinks.*.height": True,
         "sinks.*.length": True,

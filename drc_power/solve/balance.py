@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from .families import Sources
+from .groups import Groups
 from .solution import Solution
 
 
@@ -30,6 +31,8 @@ def power_imbalance(solution: Solution) -> np.ndarray:
         x = solution.x
         if isinstance(family, Sources):
             given += ((x[family.a] - x[family.b]) * x[family.i]).sum(axis=0)
+        if isinstance(family, Groups):
+            given += family.given_w(x, p)
         for _, power, _ in family.heats(x, p):
             taken += power.sum(axis=0)
     return np.abs(given - taken) / np.maximum(np.abs(given), 1e-300)

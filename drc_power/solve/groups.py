@@ -79,11 +79,21 @@ class Ripple:
 
 
 @dataclass(frozen=True, slots=True)
+class RippleVoltage:
+    """How far the voltage of a net falls below and rises above its mean within a period [V], shape (sample,) each."""
+
+    net: str
+    below_v: np.ndarray
+    above_v: np.ndarray
+
+
+@dataclass(frozen=True, slots=True)
 class Reading:
     """What a group's parts carry, and what it asks of the capacitors around it."""
 
     parts: Mapping[str, PartReading]
     ripples: tuple[Ripple, ...] = ()
+    voltages: tuple[RippleVoltage, ...] = ()
 
 
 class Group(Protocol):

@@ -9,6 +9,7 @@ from functools import cached_property
 import numpy as np
 
 from ..physics.push_pull import class_b_worst_loss_w
+from .branches import Linear, OneWay, Resistive, Switching
 from .circuit import Circuit, Probe
 from .families import PowerLoads
 from .groups import Groups, Loss, PartReading, Ripple
@@ -108,6 +109,31 @@ class Solution:
     def ripples(self) -> tuple[Ripple, ...]:
         """What converters and bridges ask of the capacitors around them."""
         return tuple(ripple for _, reading in self._read_groups for ripple in reading.ripples)
+
+    @cached_property
+    def ripple_voltages(self) -> Mapping[str, tuple[np.ndarray, np.ndarray]]:
+        """How far nets fall below and rise above their mean [V], where a rectifier's ripple reaches them undiminished.
+
+        That is through everything that conducts by a resistance or a diode, up to the regulators.
+        """
+        found: dict[str, tuple[np.ndarray, np.ndarray]] = {}
+        for ripple in (ripple for _, reading in self._read_groups for ripple in reading.voltages):
+            found |= dict.fromkeys(self._linked_with(ripple.net) - found.keys(), (ripple.below_v, ripple.above_v))
+        return found
+
+    def _linked_with(self, net: str) -> set[str]:
+        links: dict[str, set[str]] = {}
+        for branch in self.circuit.branches:
+            if isinstance(branch, OneWay) or (isinstance(branch, Resistive) and branch.load is None):
+                links.setdefault(branch.a, set()).add(branch.b)
+                links.setdefault(branch.b, set()).add(branch.a)
+        stiff = set(self.system.layout.reference) | {b.b for b in self.circuit.branches if isinstance(b, (Linear, Switching))}
+        reached, queue = {net}, [net]
+        while queue:
+            new = links.get(queue.pop(), set()) - reached - stiff
+            reached |= new
+            queue += new
+        return reached
 
     @cached_property
     def losses(self) -> Mapping[str, tuple[Loss, ...]]:

@@ -14,6 +14,7 @@ from .parts import value_resistance
 from .stage_converters import add_converter, add_stopped_converter, is_running
 from .stage_pairs import add_half_bridge, add_single_switch
 from .stage_parts import conducting_nets
+from .stage_rectifier import add_rectifier
 from .variables import ZERO, Param
 
 
@@ -83,7 +84,7 @@ def _or_ing(builder: Builder, name: str, stage: StageNote) -> None:
 
 
 MAKERS = {"half-bridge": add_half_bridge, "low-side": add_single_switch, "high-side": add_single_switch,
-          "push-pull": _push_pull, "buck": add_converter, "boost": add_converter, "or-ing": _or_ing}
+          "push-pull": _push_pull, "buck": add_converter, "boost": add_converter, "or-ing": _or_ing, "rectifier": add_rectifier}
 """How each kind of stage enters the network while it runs. The others group parts that conduct by themselves; those of
 a linear-pass stage are in state linear already (see `Board.in_mode`)."""
 

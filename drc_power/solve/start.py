@@ -11,6 +11,7 @@ from .branches import Linear, OneWay, Resistive, Source, Switching
 from .bridges import HalfBridge
 from .converters import Converter
 from .groups import Groups, key_of
+from .rectifier import Rectifier
 from .system import System
 from .variables import values_of
 
@@ -74,6 +75,8 @@ def _edges(system: System, points: np.ndarray) -> dict[str, list[tuple[str, floa
             edges[branch.b].append((branch.a, branch.r_ohm.value, 0.0))
         elif isinstance(branch, OneWay):
             edges[branch.a].append((branch.b, DIODE_OHM, -_first_drop(branch, points)))
+        elif isinstance(branch, Rectifier):
+            edges[branch.a].append((branch.b, 1e-3, np.sqrt(2.0) * values_of((branch.rms_v,), points)[0]))
         elif isinstance(branch, HalfBridge):
             edges[branch.main_node].append((branch.x, DIODE_OHM, 0.0))
         elif isinstance(branch, Converter):

@@ -20,6 +20,8 @@ def add_rails(builder: Builder) -> None:
     """Sources of rails fed from outside; set voltages of the regulators that hold the others."""
     for name, rail in builder.mode.rails.items():
         net = builder.board.net(name)
+        if rail.ac is not None:
+            continue  # an alternating rail enters the network through its rectifier
         if rail.source:
             _add_source(builder, name, net, rail)
         elif rail.voltage is not None:
@@ -30,7 +32,7 @@ def add_rails(builder: Builder) -> None:
 def reference_of(builder: Builder) -> str:
     """The ground that all voltages are measured against: the return of the first rail fed from outside."""
     for rail in builder.mode.rails.values():
-        if rail.source:
+        if rail.source and rail.ac is None:
             return builder.board.net(rail.return_) if rail.return_ else _source_ground(builder, rail)
     return builder.board.grounds[0]
 

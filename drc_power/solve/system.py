@@ -15,9 +15,10 @@ from .families import FAMILIES, Values
 from .groups import Groups
 from .heat import HeatModel, HeatPath
 from .layout import Layout
+from .rectifier import Rectifier
 from .thermal_network import ThermalNetwork
 
-LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups}
+LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups, Rectifier: Groups}
 """The family of each kind of branch and of group."""
 
 LEAK_SIEMENS = 1e-18
