@@ -7,7 +7,7 @@ from collections.abc import Iterator
 import numpy as np
 
 from .board import Board, BoardPart, Mode
-from .checks import House, Judgement, judge
+from .checks import House, Judgement, judge_all
 from .checks.decide import make_finding, objective_of
 from .checks.event_view import EventView, deciding_point
 from .checks.safe_area import SafeArea, safe_area_of
@@ -50,12 +50,12 @@ def _worst(mode: Mode, ref: str, house: House) -> Iterator[tuple[Judgement, int,
     engine = Engine(circuit)
 
     def objectives(points: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
-        rows = [objective_of(j) for j in _shown(judge(engine.solve(points), house), ref)]
+        rows = [objective_of(j) for j in _shown(judge_all(engine.solve(points), house), ref)]
         return np.vstack(rows or [np.zeros((0, len(points)))]), np.zeros((0, len(points)))
 
     worst: Worst = worst_corners(circuit.box, objectives)
     final = engine.solve(worst.points)
-    for k, judgement in enumerate(_shown(judge(final, house), ref)):
+    for k, judgement in enumerate(_shown(judge_all(final, house), ref)):
         sample = int(worst.at[k])
         finding = make_finding(mode.board, judgement, sample, "", ())
         yield judgement, sample, final, finding.verdict if finding else "met"

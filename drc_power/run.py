@@ -9,7 +9,7 @@ from dataclasses import dataclass, field, replace
 import numpy as np
 
 from .board import Board, Mode, stage_parts
-from .checks import House, Judgement, judge
+from .checks import House, Judgement, judge, judge_all, judge_events
 from .checks.house import describe
 from .checks.decide import finite_or_zero, make_finding, objective_of
 from .findings.model import Coverage, Finding, InputFile, NetPoint, OperatingPoint, Outside, PartRow, Result, Sensitivity
@@ -21,10 +21,10 @@ from .intake.devices import read_devices
 from .intake.rules import read_rules
 from .intake.waivers import read_waivers
 from .netlist.model import Netlist
-from .netlist.reader import read_netlist
+from .netlist.schematic import read_board_netlist
 from .quantity import DIMENSIONS, format_quantity
 from .solve.build import build_circuit
-from .solve.search import Worst, worst_corners
+from .solve.search import Worst, joined, worst_corners
 from .solve.solution import Engine, Solution
 from .survey import survey_netlist
 
@@ -93,7 +93,7 @@ def read_board(path: str | os.PathLike[str], run: Run) -> tuple[Board, tuple[Inp
 
 
 def _read_netlist(annotations: Annotations) -> Netlist:
-    return read_netlist(os.path.join(annotations.folder, str(annotations.netlist)))
+    return read_board_netlist(os.path.join(annotations.folder, str(annotations.netlist)))
 
 
 def _waivers(found) -> tuple[Waiver, ...]:
@@ -108,16 +108,11 @@ def _in_mode(board: Board, mode: Mode, house: House, run: Run) -> Iterator[tuple
     circuit = build_circuit(mode)
     engine = Engine(circuit)
 
-    def objectives(points: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
-        solution = engine.solve(points)
-        return np.vstack([objective_of(j) for j in judge(solution, house)] or [np.zeros((0, len(points)))]), np.vstack(
-            [*_extremes(solution)] or [np.zeros((0, len(points)))])
-
-    worst = worst_corners(circuit.box, objectives)
+    worst = _worst(engine, house)
     final = engine.solve(worst.points, polish=True)
     if run.self_check:
         _self_check(final, run)
-    judgements = judge(final, house)
+    judgements = judge_all(final, house)
     n_judged = len(judgements)
     gaps = _gaps(engine, house, worst, judgements)
     findings = []
@@ -129,6 +124,30 @@ def _in_mode(board: Board, mode: Mode, house: House, run: Run) -> Iterator[tuple
     findings = _with_samples(engine, house, run, findings)
     findings = _with_sensitivity(engine, house, worst, findings)
     yield findings, _points(final, worst, n_judged), _nets(final, worst, n_judged)
+
+
+def _worst(engine: Engine, house: House) -> Worst:
+    """The worst corner of every steady judgement, of every event's, and of every extreme, in that order.
+
+    Events cost far more to judge and depend on fewer sides: they are searched by themselves, thriftily.
+    """
+    def steady(points: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        solution = engine.solve(points)
+        return _stacked(map(objective_of, judge(solution, house)), points), _stacked(_extremes(solution), points)
+
+    def of_events(points: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        return _stacked(map(objective_of, judge_events(engine.solve(points), house)), points), np.empty((0, len(points)))
+
+    box = engine.circuit.box
+    worst = worst_corners(box, steady)
+    if not engine.circuit.events:
+        return worst
+    n_steady = len(judge(engine.solve(worst.points[:1]), house))
+    return joined(worst, n_steady, worst_corners(box, of_events, thrifty=True))
+
+
+def _stacked(rows: Iterator[np.ndarray], points: np.ndarray) -> np.ndarray:
+    return np.vstack([np.empty((0, len(points))), *rows])
 
 
 BALANCED = 1e-9
@@ -168,7 +187,7 @@ def _gaps(engine: Engine, house: House, worst: Worst, judgements: list[Judgement
     tried = np.repeat(worst.points, len(missing), axis=0)
     columns = np.tile(missing, len(worst.points))
     tried[np.arange(len(tried)), columns] = [variables[k].probe for k in columns]
-    after = judge(engine.solve(tried), house)
+    after = judge_all(engine.solve(tried), house)
     for k, (judgement, other) in enumerate(zip(judgements, after, strict=True)):
         sample = worst.at[k]
         was, now = judgement.margins()[sample], other.margins()[sample * len(missing) + np.arange(len(missing))]
@@ -220,7 +239,7 @@ def _with_sensitivity(engine: Engine, house: House, worst: Worst, findings: list
         return [finding for _, finding in findings]
     points = worst.points[worst.at[[k for k, _, _ in asked]]].copy()
     points[np.arange(len(asked)), [v for _, v, _ in asked]] = [end for _, _, end in asked]
-    judged = judge(engine.solve(points), house)
+    judged = judge_all(engine.solve(points), house)
     rows: dict[int, list[Sensitivity]] = {}
     for row in range(0, len(asked), 2):
         k, v, _ = asked[row]

@@ -5,21 +5,34 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from ..solve.solution import Solution
-from . import coverage, derating, envelope, events, heat, linear, network
+from . import copper, coverage, derating, envelope, events, heat, linear, network
 from .house import House
 from .judgement import Judgement
 from .view import View
 
-RULES = (heat.dissipation, heat.junction, envelope.envelope, derating.derating, network.headroom,
-         network.load_voltage, network.source_limit, network.runaway, network.unsolved, coverage.rails, linear.steady, events.events)
+STEADY_RULES = (heat.dissipation, heat.junction, envelope.envelope, derating.derating, network.headroom,
+                network.load_voltage, network.source_limit, network.runaway, network.unsolved, coverage.rails,
+                copper.sinks, copper.patches, linear.steady)
+EVENT_RULES = (events.events,)
 
 
 def judge(solution: Solution, house: House, only: str | None = None) -> list[Judgement]:
-    """Every judgement of one mode, or of one part alone, in an order that depends on the board alone."""
+    """Every steady judgement of one mode, or of one part alone, in an order that depends on the board alone."""
     view = View(solution, house, only)
-    found = [judgement for rule in RULES for judgement in rule(view)]
+    found = [judgement for rule in STEADY_RULES for judgement in rule(view)]
     judged = {judgement.ref for judgement in found if judgement.ref and not judgement.only_if_exceeded}
     return [*found, *coverage.unjudged(view, judged)]
 
 
-__all__ = ["RULES", "House", "Judgement", "View", "judge"]
+def judge_events(solution: Solution, house: House, only: str | None = None) -> list[Judgement]:
+    """Every judgement of the events that start from one mode, in an order that depends on the board alone."""
+    view = View(solution, house, only)
+    return [judgement for rule in EVENT_RULES for judgement in rule(view)]
+
+
+def judge_all(solution: Solution, house: House, only: str | None = None) -> list[Judgement]:
+    """The steady judgements, then those of the events."""
+    return [*judge(solution, house, only), *judge_events(solution, house, only)]
+
+
+__all__ = ["EVENT_RULES", "STEADY_RULES", "House", "Judgement", "View", "judge", "judge_all", "judge_events"]

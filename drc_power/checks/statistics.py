@@ -9,7 +9,7 @@ import numpy as np
 
 from ..solve.sampling import share_with_interval
 from ..solve.solution import Engine
-from . import judge
+from . import judge_all
 from .house import House
 from .judgement import Judgement
 
@@ -50,7 +50,7 @@ def sampled(engine: Engine, house: House, batches: Iterator[np.ndarray], progres
     """Judge every batch of points."""
     tally, done = Tally(), 0
     for points in batches:
-        tally.add(judge(engine.solve(points), house))
+        tally.add(judge_all(engine.solve(points), house))
         done += len(points)
         progress(done)
     return tally

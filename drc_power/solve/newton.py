@@ -46,7 +46,7 @@ class Solver:
         """
         start = x
         x, converged = self._iterate(start, prepared)
-        lost = np.flatnonzero(~converged)
+        lost = np.flatnonzero(~converged & ~self._is_hopeless(x))
         if len(lost) and any(isinstance(f, PowerLoads) for f in self.system.families):
             part = take(prepared, lost)
             x[:, lost], converged[lost] = self._iterate(self._milder(start[:, lost], part), part)

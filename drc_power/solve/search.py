@@ -22,6 +22,10 @@ that are followed by flipping sides, and those that take the worst of what is fo
 WHOLE_BOX_SIDES = 7
 """A box of so many sides or fewer is searched at every corner."""
 
+THRIFTY_SIDES = 4
+NOTICEABLE = 2e-3
+"""In a thrifty search a side counts when it moves some objective by this share of what the strongest side does."""
+
 MAX_ROUNDS = 6
 N_SHRINKS = 14
 """How often the step inside the box is halved, from a quarter of a side: to some 1e-5 of it."""
@@ -45,9 +49,12 @@ class Worst:
     influence: np.ndarray
 
 
-def worst_corners(box: Box, objectives: Objectives) -> Worst:
-    """Search the box. The followed objectives come first in the result, then the others."""
-    search = _Search(box, objectives)
+def worst_corners(box: Box, objectives: Objectives, thrifty: bool = False) -> Worst:
+    """Search the box. The followed objectives come first in the result, then the others.
+
+    thrifty: for costly objectives; sides that move none of them noticeably around the typical point stay there.
+    """
+    search = _Search(box, objectives, thrifty)
     search.start()
     if search.n_free:
         for _ in range(MAX_ROUNDS):
@@ -61,9 +68,16 @@ def worst_corners(box: Box, objectives: Objectives) -> Worst:
     return search.result()
 
 
+def joined(first: Worst, n: int, second: Worst) -> Worst:
+    """Two searches of one box as one: the second's objectives stand after the first `n` of the first."""
+    at = np.concatenate([first.at[:n], second.at + len(first.points), first.at[n:]])
+    influence = np.vstack([first.influence[:n], second.influence, first.influence[n:]])
+    return Worst(np.vstack([first.points, second.points]), at, influence)
+
+
 class _Search:
-    def __init__(self, box: Box, objectives: Objectives) -> None:
-        self.objectives = objectives
+    def __init__(self, box: Box, objectives: Objectives, thrifty: bool) -> None:
+        self.objectives, self.thrifty = objectives, thrifty
         self.low, self.high = box.bounds()
         self.typical = box.typical()
         self.free = np.flatnonzero(self.high > self.low)
@@ -97,16 +111,29 @@ class _Search:
                 point[side] = end[side]
                 ends.append(point)
         self.evaluate(np.array(ends))
-        if self.n_free <= WHOLE_BOX_SIDES:
+        index = [self.seen[point.tobytes()] for point in ends]
+        if self.thrifty:
+            index = self._drop_idle_sides(index)
+        if self.n_free <= (THRIFTY_SIDES if self.thrifty else WHOLE_BOX_SIDES):
             self.evaluate(self._all_corners())
             return
-        index = [self.seen[point.tobytes()] for point in ends]
         at_low, at_high, inside = self.values[:, index[1::2]], self.values[:, index[2::2]], self.values[:, [index[0]]]
         corners = np.tile(self.typical, (self.values.shape[0], 1))
         ends = np.where(at_low < at_high, self.low[self.free], self.high[self.free])
         is_valley = inside < np.minimum(at_low, at_high) - SAME * np.maximum(1.0, np.abs(inside))
         corners[:, self.free] = np.where(is_valley, self.typical[self.free], ends)
         self.evaluate(np.vstack([corners, self._random()]))
+
+    def _drop_idle_sides(self, index: list[int]) -> list[int]:
+        """Leave the sides at typical that move no followed objective noticeably; the index without their ends."""
+        followed = self.values[: self.n_followed]
+        here = followed[:, [index[0]]]
+        moves = np.maximum(np.abs(followed[:, index[1::2]] - here), np.abs(followed[:, index[2::2]] - here))
+        largest = moves.max(axis=1, keepdims=True, initial=0.0)
+        counts = (moves > np.maximum(NOTICEABLE * largest, SAME)).any(axis=0)
+        self.free, self.n_free = self.free[counts], int(counts.sum())
+        kept = [k for side in np.flatnonzero(counts) for k in (index[1 + 2 * side], index[2 + 2 * side])]
+        return [index[0], *kept]
 
     def _all_corners(self) -> np.ndarray:
         bits = (np.arange(2**self.n_free)[:, None] >> np.arange(self.n_free)) & 1
@@ -201,8 +228,9 @@ class _Search:
 
     def _random(self) -> np.ndarray:
         """Random corners and random interior points."""
-        share = np.random.default_rng(SEED).random((2 * N_RANDOM, self.n_free))
-        share[:N_RANDOM] = np.round(share[:N_RANDOM])
+        n = N_RANDOM // 8 if self.thrifty else N_RANDOM
+        share = np.random.default_rng(SEED).random((2 * n, self.n_free))
+        share[:n] = np.round(share[:n])
         points = np.tile(self.typical, (len(share), 1))
         points[:, self.free] = self.low[self.free] + share * (self.high - self.low)[self.free]
         return points
