@@ -46,6 +46,26 @@ def read_board_netlist(path: str | os.PathLike[str]) -> Netlist:
     return _from_schematic(name) if is_schematic(name) else read_netlist(name)
 
 
+def confirm_board_netlist(netlist: Netlist) -> None:
+    """As `confirm_netlist`, also for what `read_board_netlist` made of a schematic, which is then exported once more."""
+    from drc_power.netlist.confirm import confirm_netlist
+
+    if not is_schematic(netlist.path):
+        confirm_netlist(netlist)
+        return
+    if read_source(netlist.path).sha256 != netlist.sha256:
+        raise InputError(Fault(Mark(netlist.path), "the file changed while it was read", "run the check again"))
+    text = export_netlist(netlist.path)
+    with tempfile.TemporaryDirectory(prefix="drc-power-") as folder:
+        exported = os.path.join(folder, "board.net")
+        with open(exported, "w", encoding="utf-8", newline="") as file:
+            file.write(text)
+        try:
+            confirm_netlist(replace(netlist, path=exported, sha256=read_source(exported).sha256))
+        except InputError as error:
+            raise InputError(*(replace(fault, mark=Mark(netlist.path)) for fault in error.faults)) from None
+
+
 def is_schematic(path: str) -> bool:
     """Whether a path names a KiCad schematic.
 

@@ -14,7 +14,7 @@ import pytest
 
 from drc_power.faults import InputError
 from drc_power.netlist import read_netlist, schematic
-from drc_power.netlist.schematic import is_schematic, read_board_netlist
+from drc_power.netlist.schematic import confirm_board_netlist, is_schematic, read_board_netlist
 
 DEMO = Path(__file__).parents[2] / "fixtures" / "frost-fan"
 EXPORT = DEMO / "rev-c.net"
@@ -152,6 +152,21 @@ def test_a_program_that_cannot_run_is_an_error_of_one_line(drawn, pretend):
     folder = pretend("pass")
     (folder / "programs" / "kicad-cli").write_text("#!/nowhere/at/all\n")
     assert "kicad-cli cannot be run (No such file or directory)" in refusal(drawn)
+
+
+def test_the_second_reader_confirms_the_export(drawn, pretend):
+    small = Path(__file__).parent / "formats" / "kicad-9.net"
+    pretend(f"open(out, 'w').write(open({str(small)!r}, encoding='utf-8').read())")
+    found = read_board_netlist(drawn)
+    confirm_board_netlist(found)
+    confirm_board_netlist(read_netlist(small))
+    other = replace(found, parts={**found.parts, "R2": replace(found.parts["R2"], value="wrong")})
+    with pytest.raises(InputError) as caught:
+        confirm_board_netlist(other)
+    assert str(caught.value).startswith(f"{drawn}: the second reader differs: the value of R2")
+    drawn.write_text("(kicad_sch changed)")
+    with pytest.raises(InputError, match="the file changed while it was read"):
+        confirm_board_netlist(found)
 
 
 @pytest.mark.skipif(not shutil.which("kicad-cli"), reason="kicad-cli is not installed")
