@@ -114,9 +114,9 @@ class Library:
         """Whether a match finds only parts of this kind that are this device, and none that another device claims."""
         if not match or not can_be_named(*(text for row in match for text in row)) or any(set(glob) & set("*?[") for _, glob in match):
             return False
-        row = Known("", kind, (dict(match),))
         others = [device for device in self._known.values() if device.matches]
-        claimed = [part for part in netlist.parts.values() if row.fits(part)]
+        claimed = [part for part in netlist.parts.values()
+                   if all((part.value if key == "value" else part.fields.get(key)) == text for key, text in match)]
         return all(survey.parts[part.ref].kind == kind and distinct(part, kind)[1] == match
                    and not any(other.fits(part) for other in others) for part in claimed)
 

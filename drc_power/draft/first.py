@@ -125,7 +125,7 @@ def _remarks(survey: Survey, netlist: Netlist, existing: Existing) -> Iterator[s
     there = existing.loads_of(usual)
     kept = [f"{c.ref} on {c.net}" for c in usual if c not in there and existing.keeps_out("loads", (c.ref, c.net))]
     if kept:
-        yield f"{printable(existing.path)}: loads that only a comment speaks of, and that count nowhere: {printable(', '.join(kept))}"
+        yield f"{printable(existing.path)}: loads that only a comment speaks of, and that count nowhere: {shorten(printable(', '.join(kept)), 200)}"
 
 
 def _about_netlist(netlist: Netlist, existing: Existing) -> Iterator[str]:

@@ -8,6 +8,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
+from functools import lru_cache
 
 import yaml
 
@@ -94,6 +95,7 @@ def _unquoted(text: str) -> str:
     return text[1:-1].replace("''", "'") if text.startswith("'") else text
 
 
+@lru_cache(maxsize=8192)
 def _word(name: str) -> re.Pattern[str]:
     written = "|".join(re.escape(each) for each in dict.fromkeys((printable(name), scalar(name).strip('"'))))
     return re.compile(rf"(?:^|[\s\"'(\[{{,:#])(?:{written})(?=$|[\s\"')\]}},:;]|\.(?:\s|$))")

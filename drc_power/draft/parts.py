@@ -16,7 +16,7 @@ _JUDGED = frozenset({"pass", "switch", "clamp"})
 _RINGING = frozenset({"mosfet", "bjt", "igbt", "diode"})
 _WHY_OUTSIDE = {"net-tie": "net tie, copper alone", "led": "indicator"}
 _UNSURE_BELOW = 0.6
-_MOST_VALUES = 3
+_MOST_VALUES, _MOST_REFS = 3, 12
 
 
 def judged_elements(survey: Survey) -> dict[str, Element]:
@@ -37,7 +37,9 @@ def part_entries(survey: Survey, netlist: Netlist, elements: Iterable[Element], 
         place = (e.from_net, e.to_net, e.control) if values and BLANK in values.values() else ()
         groups.setdefault((e.role, tuple(values.items()), place if values else e.ref), []).append(e)
     for (_, values, _), together in groups.items():
-        yield _entry(netlist, [e.ref for e in together], dict(values), together[0])
+        for start in range(0, len(together), _MOST_REFS):
+            some = together[start : start + _MOST_REFS]
+            yield _entry(netlist, [e.ref for e in some], dict(values), some[0])
 
 
 def _values(survey: Survey, netlist: Netlist, e: Element, library: Library, in_stages: frozenset[str]) -> dict[str, str]:

@@ -13,6 +13,7 @@ from drc_power.faults import Fault, InputError, Mark
 from drc_power.intake.tree import tree_of
 from drc_power.netlist.model import Netlist
 from drc_power.survey.model import Survey
+from drc_power.text import printable
 
 Sections = Mapping[str, Sequence[Entry]]
 """Entries to write, by section."""
@@ -44,8 +45,11 @@ def stem(path: str) -> str:
 
 
 def beside(path: str, named: str) -> str:
-    """A path as a file names it: from its own folder, with forward slashes."""
-    return os.path.relpath(named, os.path.dirname(path) or ".").replace(os.sep, "/")
+    """A path as a file names it: from its own folder, with forward slashes. Raises InputError if no file can name it."""
+    relative = os.path.relpath(named, os.path.dirname(path) or ".").replace(os.sep, "/")
+    if not relative.isprintable():
+        raise InputError(Fault(Mark(printable(named)), "a path that a file cannot hold", "rename it"))
+    return relative
 
 
 def whole_text(survey: Survey, netlist: Netlist, path: str, sections: Sections) -> str:

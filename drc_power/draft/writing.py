@@ -89,10 +89,10 @@ def remark(*texts: str) -> str:
 
 def entry(key: str, values: Mapping[str, str], *remarks: str, names: Iterable[str]) -> Entry:
     """An entry of one line; one without a body if no file can hold its names."""
-    known = frozenset(names)
-    if not can_be_named(key, *known):
+    known, written = frozenset(names), mapping(values)
+    if not can_be_named(key, *known) or not written.isprintable():
         return unwritable(known)
-    return Entry(f"{scalar(key)}: {mapping(values)}", key, known, remark(*remarks))
+    return Entry(f"{scalar(key)}: {written}", key, known, remark(*remarks))
 
 
 def commented(key: str, values: Mapping[str, str], *remarks: str, names: Iterable[str]) -> Entry:

@@ -350,6 +350,25 @@ def test_hostile_names_are_quoted_or_only_remarked_on(desk_for, element, survey_
     assert all(c.isprintable() or c == "\n" for c in text)
 
 
+def test_many_parts_of_one_device_fill_several_lines(desk_for, element, survey_of):
+    netlist = netlist_of(*(part(f"R{n}", "0R1", f"A{n}", f"B{n}", footprint="Resistor_SMD:R_2512_6332Metric") for n in range(100)))
+    desk = desk_for(survey_of(netlist, *(element(f"R{n}", "pass", "resistor", f"A{n}", f"B{n}") for n in range(100))), netlist)
+    desk.draft()
+    keys = list(desk.tree()["parts"])
+    assert [ref for key in keys for ref in key.split()] == [f"R{n}" for n in range(100)]
+    assert len(keys) == 9 and set(read(desk.devices)["devices"]) == {"resistor-2512"}
+
+
+def test_names_that_are_only_values_are_held_to_the_same(desk_for, element, survey_of):
+    netlist = netlist_of(part("U1", "CHIP", "V", "bad\x1bnet"), part("J1", "IN", "V", "also\nbad"))
+    survey = survey_of(netlist, element("U1", "load", "ic", "V", "bad\x1bnet"), element("J1", "source", "connector", "also\nbad", "V"),
+                       stages=(Stage("or-ing", {"parts": ("U1",), "controller": ("x\x00",)}, "V"),))
+    desk = desk_for(survey, netlist)
+    draft = desk.draft()
+    assert not desk.tree().get("loads") and not desk.tree().get("rails")
+    assert any("a file cannot hold every name" in note for note in draft.notes)
+
+
 def test_two_kinds_of_one_value_get_no_match_that_finds_both(desk_for, element, survey_of):
     netlist = netlist_of(part("Q1", "ABC123", "V", "A"), part("U9", "ABC123", "B", "C"))
     survey = survey_of(netlist, element("Q1", "pass", "mosfet", "V", "A", "g"))
