@@ -110,16 +110,15 @@ def _fuse(element: EventView) -> Iterator[Judgement]:
             rated = np.where(share > 0.0, peak / share, table.column(1)[-1])
     yield element.judgement("derating.melts", "current that the fuse must hold", "A", peak, "melts", rated, lacking=lacking,
                             remedy="use a slower or larger fuse, or lower the current of the event", **inputs)
-    if integral is not None and known:
-        yield _melting_integral(element, integral)
+    # Past the shortest melting time heat leaves meanwhile: the curve decides there.
+    if integral is not None and known and element.longest_s <= table.column(0)[0]:
+        yield _melting_integral(element)
 
 
-def _melting_integral(element: EventView, integral) -> Judgement:
+def _melting_integral(element: EventView) -> Judgement:
     path = element.response.path
     value = element.per_sample((np.diff(path.t_s, axis=1) * path.square_a).sum(axis=1))
-    # Past the shortest melting time heat leaves meanwhile: the curve decides there.
-    short = element.response.lasts_s <= element.part.limit("melts").column(0)[0]
-    return element.judgement("derating.i2t", "melting integral", "A² s", np.where(short, value, 0.0), "i2t",
+    return element.judgement("derating.i2t", "melting integral", "A² s", value, "i2t",
                              remedy="use a slower fuse, or lower the current of the event",
                              inputs=lambda: element.sources("limits.i2t"))
 

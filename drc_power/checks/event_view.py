@@ -70,7 +70,7 @@ class EventView(ElementView):
         if self.event.kind != "overload" or not self._capacity_missing:
             return self.solved, ""
         held = ~(value > allowed)
-        why = "" if held[self.solved].all() else f"it would not hold for good, and how slowly it warms is not given: {', '.join(self._capacity_missing)}"
+        why = "" if held[self.solved].all() else f"{self.ref} would not stand {self.event.note.to} for good, and how slowly it warms is not given: {', '.join(self._capacity_missing)}"
         return self.solved & held, why
 
     @cached_property

@@ -16,7 +16,7 @@ from .judgement import Judgement
 from .view import ElementView, View
 
 LINEAR_EVENTS = frozenset({"inrush", "short", "pulse", "waveform", "turn-off"})
-NO_GAIN = 1e-9
+NO_GAIN, NO_CURRENT_A = 1e-3, 1e-9
 """A gain at or below 0 damps itself: it is shown as a current that is out of reach, not as an infinite one."""
 
 
@@ -59,7 +59,7 @@ def _judged(element: ElementView, v_v, i_a, t_s, lacking, make) -> Iterator[Judg
         gain = np.where(i_a > 0.0, gain, 0.0)
     at = np.argmax(np.nan_to_num(gain, nan=-np.inf), axis=1)[:, None]
     worst, value = (np.take_along_axis(x, at, axis=1)[:, 0] for x in (gain, i_a))
-    rated = np.maximum(value, NO_GAIN) / np.maximum(worst, NO_GAIN)
+    rated = np.maximum(value, NO_CURRENT_A) / np.maximum(worst, NO_GAIN)
     volt, when = (np.take_along_axis(x, at, axis=1)[:, 0] for x in (v_v, t_s))
     more = {"lacking": lacking, "steps": lambda k: _steps(element, volt[k], value[k], when[k], worst[k], alpha, impedance, lacking),
             "remedy": "take voltage off it in linear mode, shorten the event, or use a part made for linear mode",
