@@ -11,7 +11,9 @@ from .faults import Fault, InputError, Mark
 from .intake.annotations import Annotations, ModeView, lay_file_over_fields, part_note_from_fields
 from .intake.captures import Capture
 from .intake.devices import Device, DeviceLibrary
-from .intake.notes import EventNote, InterfaceNote, LoadNote, PartNote, RailNote, StageNote
+from .intake.notes import (
+    EnclosureNote, EventNote, InterfaceNote, LoadNote, PartNote, PatchNote, RailNote, SinkNote, StageNote, Surroundings, TrackNote,
+)
 from .intake.rules import Limit, RulePack
 from .intake.suggest import nearest
 from .intake.values import Quantity, Table, Text

@@ -7,8 +7,10 @@ from collections.abc import Iterator
 import numpy as np
 
 from ..findings.model import Step
+from ..solve.heatpaths import source_area_m2
+from .copper import sink_steps
 from .judgement import Judgement
-from .view import ElementView, View
+from .view import ElementView, View, key_text
 
 HAS_POWER = frozenset({"mosfet", "bjt", "igbt", "diode", "bridge", "zener", "tvs", "linear-regulator",
                        "switching-regulator", "resistor", "thermistor", "potentiometer", "ic", "gate-driver",
@@ -53,7 +55,7 @@ def _junction(element: ElementView) -> Judgement:
         "junction.steady", element.subject, "junction temperature", "°C", element.point.tj_c, rated, allowed,
         element.view.board.where(element.part), "tj", element.ref, mode=element.view.mode.name, limit=limit,
         ambient_c=element.view.solution.ambient_c, proven=element.solved, lacking=lacking,
-        steps=lambda k: (*power_steps(element, k), *temperature_steps(element, k)),
+        why="" if lacking else element.beyond, steps=lambda k: (*power_steps(element, k), *temperature_steps(element, k)),
         remedy="lower its thermal resistance to the ambient, or its loss",
         inputs=lambda: element.sources("limits.tj", "thermal.rth_jc", "thermal.rth_ja"))
 
@@ -94,26 +96,34 @@ def temperature_steps(element: ElementView, k: int) -> tuple[Step, ...]:
     if path is None:
         return ()
     own = sum(solution.value(param)[k] for param in path.own_k_per_w)
-    tj, p = element.point.tj_c[k], element.point.power_w[k]
+    tj, p = element.point.tj_c[k], solution.temperatures.first_w[element.ref][k]
     start, steps = solution.value(path.start_c)[k], []
     if path.sink:
-        r, total = solution.sink_k_per_w(path.sink)[k], solution.temperatures.sink_w[path.sink][k]
-        sink_c = solution.temperatures.sink_c[path.sink][k]
-        steps.append(Step("T_sink", "T_a + R_sink · ΣP", f"{start:.6g} + {r:.6g} · {total:.6g}", _number(sink_c), "°C",
-                          f"sink {path.sink}"))
-        start = sink_c
+        steps += sink_steps(element.view, path.sink, k)
+        start = solution.temperatures.sink_c[path.sink][k]
+    if path.beside:
+        steps += sink_steps(element.view, path.beside.sink, k)
+        steps.append(Step("P₁", f"both ways lead to one Tj: what {key_text(path.sink)} takes", "", _number(p), "W", "parallel ways of heat"))
     steps.append(Step("Tj", "T + R_th · P", f"{start:.6g} + {own:.6g} · {p:.6g}", _number(tj), "°C",
                       "steady heat flow, " + _way(element)))
     return tuple(steps)
 
 
 def _way(element: ElementView) -> str:
-    heat = element.part.note.heat
+    heat, thermal = element.part.note.heat, element.part.device.thermal if element.part.device else None
     if heat is None:
         return "rth_ja to the ambient"
     if heat.sink:
-        return "rth_jc + interface to the sink"
+        note = element.view.board.annotations.sinks[str(heat.sink)]
+        return "rth_jc + interface to the sink" + ("" if note.resistance is not None else f" + spreading in its base {_source(element)}")
+    if heat.copper:
+        return f"{'rth_jb' if thermal and thermal.rth_jb else 'rth_jc'} to the copper"
     return "rth_jc to a case held at its temperature" if heat.case is not None else "the board's own figure to the ambient"
+
+
+def _source(element: ElementView) -> str:
+    area_m2, said = source_area_m2(element.part)
+    return f"(Lee, Song, Au and Moran 1995) from {area_m2 * 1e6:.3g} mm² ({said})"
 
 
 def _number(value: float) -> float | None:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -11,6 +11,7 @@ import numpy as np
 from ..board import Board, BoardPart, Limit, Mode, Quantity
 from ..findings.identity import Subject, part_subject
 from ..solve.circuit import Probe
+from ..solve.heat import AIR
 from ..solve.solution import PartPoint, Solution
 from .house import Conditions, House, Target, allowed, required
 
@@ -87,7 +88,18 @@ class ElementView:
         solution = self.view.solution
         running = [flags for ref, flags in solution.runaway.items()
                    if ref in solution.circuit.heat.coupled_with((self.ref,)) or ref == self.ref]
-        return self.view.solved & ~np.any(running, axis=0) if running else self.view.solved
+        solved = self.view.solved & ~np.any(running, axis=0) if running else self.view.solved
+        return solved & solution.in_range(self._stands_on)
+
+    @cached_property
+    def _stands_on(self) -> tuple[str, ...]:
+        """The sinks and patches on its ways of heat."""
+        return next((path.sinks for path in self.view.solution.circuit.heat.paths if path.part == self.ref), ())
+
+    @property
+    def beyond(self) -> str:
+        """The sentence for a part whose sink leaves the range of its laws somewhere; empty where none does."""
+        return beyond_text(self.view.solution, self._stands_on)
 
     @cached_property
     def crest_v(self) -> np.ndarray:
@@ -146,3 +158,14 @@ class ElementView:
     def _entry(self, section: str, key: str):
         record = getattr(self.part.device, section, None) if self.part.device else None
         return getattr(record, key, None) or None
+
+
+def beyond_text(solution: Solution, names: Iterable[str]) -> str:
+    """The sentence for sinks that leave the range of their laws somewhere; empty where they stay."""
+    gone = [name for name in dict.fromkeys((*names, AIR)) if name in solution.temperatures.beyond and not solution.in_range([name]).all()]
+    return f"{' and '.join(map(key_text, gone))} is hotter, or in other air, than the laws of its surface hold for" if gone else ""
+
+
+def key_text(key: str) -> str:
+    """A sink, patch or enclosure in words."""
+    return key if key == AIR or key.startswith("copper ") else f"sink {key}"

@@ -11,22 +11,9 @@ from .values import Text
 
 NOT_BUILT: dict[str, dict[str, bool]] = {
     "annotations": {
-        "copper": True,
-        "parts.*.heat.copper": True,
-        "surroundings.enclosure": True,
-        "surroundings.air=!still": True,
-        "surroundings.altitude": False,  # thermal resistances that the user gives hold as they stand at any altitude
+        "copper.board": True,
+        "copper.tracks": True,
         "stages.*.kind=three-phase": True,
-        "sinks.*.fins": True,
-        "sinks.*.height": True,
-        "sinks.*.length": True,
-        "sinks.*.thickness": True,
-        "sinks.*.spacing": True,
-        "sinks.*.base": True,
-        "sinks.*.width": True,
-        "sinks.*.material": True,
-        "sinks.*.emissivity": True,
-        "sinks.*.faces": True,
     },
     "devices": {},
     "rules": {},

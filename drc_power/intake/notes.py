@@ -26,6 +26,14 @@ class EnclosureNote(Record):
     faces: Area | None = None
     vents: Area | None = None
 
+    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
+        if self.rise is not None and (self.faces is not None or self.vents is not None or self.sealed):
+            yield complaint(self.source_of("rise"), "an enclosure with a rise and a description", "give one of them")
+        if self.sealed and self.vents is not None:
+            yield complaint(self.source_of("sealed"), "a sealed enclosure with vents", "leave one of them out")
+        if self.rise is None and self.faces is None and self.vents is None:
+            yield complaint(self.mark, "an enclosure that nothing leaves", "write rise: 10 K, or faces: 600 cm², or vents: 20 cm²")
+
 
 def _air(node: Any) -> Text | Quantity:
     return read_word(node) if node == "still" else reader("speed", above=0)(node)
@@ -147,6 +155,15 @@ class PartNote(Record):
     fitted: Flag | None = None
 
 
+MATERIALS = ("aluminium", "aluminum", "copper", "brass", "steel", "stainless steel", "zinc")
+
+GEOMETRY = ("fins", "height", "length", "thickness", "spacing", "base", "width", "material", "emissivity", "faces")
+"""The keys that say how a heat sink is made."""
+
+FITS_WITHIN = 0.02
+"""By how much of its width fins may outgrow their base, for rounded dimensions."""
+
+
 class SinkNote(Record):
     """A heat sink, by its resistance or by its geometry."""
 
@@ -160,9 +177,27 @@ class SinkNote(Record):
     spacing: Length | None = None
     base: Length | None = None
     width: Length | None = None
-    material: Word | None = None
+    material: Annotated[Text, one_of(*MATERIALS)] | None = None
     emissivity: Share | None = None
     faces: Annotated[Text, one_of("vertical", "horizontal", "up", "down")] | None = None
+
+    @property
+    def is_geometry(self) -> bool:
+        """Whether any key says how it is made."""
+        return any(getattr(self, key) is not None for key in GEOMETRY)
+
+    def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
+        if self.resistance is not None and self.is_geometry:
+            yield complaint(self.source_of("resistance"), "a sink with a resistance and a geometry", "give one of them")
+        if self.fins is not None and not self.fins.span.is_exact:
+            yield complaint(self.source_of("fins"), f"{self.fins.text!r} fins", "write one whole number")
+        elif self.fins is not None and self.fins.typ < 2:
+            yield complaint(self.source_of("fins"), "a sink of one fin", "two fins at least make a gap")
+        if None not in (self.fins, self.thickness, self.spacing, self.width):
+            n, fin, gap = self.fins.typ, self.thickness.min, self.spacing.min
+            if n * fin + (n - 1) * gap > self.width.max * (1 + FITS_WITHIN):
+                found = f"{n:g} fins and their gaps take {1e3 * (n * fin + (n - 1) * gap):.4g} mm of a base {self.width.text} wide"
+                yield complaint(self.source_of("width"), found, "check fins, thickness, spacing and width")
 
 
 class ViasNote(Record):

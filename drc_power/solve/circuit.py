@@ -128,6 +128,7 @@ class Builder:
     staged: set[str] = field(default_factory=set)
     events: list[EventProbe] = field(default_factory=list)
     ambient_c: Param = ZERO
+    inside: tuple[str, ...] = ()
 
     @property
     def board(self) -> Board:
@@ -176,7 +177,7 @@ class Builder:
 
     def finish(self, reference: tuple[str, ...]) -> Circuit:
         """The circuit as collected."""
-        return Circuit(self.mode, self.box, tuple(self.branches), reference, HeatModel(tuple(self.paths), self.sinks),
+        return Circuit(self.mode, self.box, tuple(self.branches), reference, HeatModel(tuple(self.paths), self.sinks, self.inside),
                        self.ambient_c, self.probes, tuple(self.loads), tuple(self.sources), tuple(self.unfed.values()),
                        {ref: tuple(data) for ref, data in self.missing.items()}, self.heat_missing,
                        tuple(self.events))

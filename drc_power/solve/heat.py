@@ -13,6 +13,9 @@ from .variables import Param, values_of
 AIR = "air of the enclosure"
 """The key of the air that an enclosure holds, which every part in it warms."""
 
+TRACKS = "tracks of the board"
+"""The key of what all annotated tracks dissipate."""
+
 
 @dataclass(frozen=True, slots=True)
 class Way:

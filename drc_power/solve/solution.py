@@ -2,20 +2,21 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
 
-from ..physics.push_pull import class_b_worst_loss_w
 from .branches import Linear, OneWay, Resistive, Switching
 from .circuit import Circuit, Probe
 from .families import PowerLoads
 from .groups import Groups, Loss, PartReading, Ripple
+from .heat import AIR
 from .newton import Solver, take
 from .stability import CERTAIN_BELOW, climb, gain_bound, loop_gain
 from .start import starting_point
+from .swings import swing_loss_w
 from .system import Prepared, System
 from .variables import Param, values_of
 
@@ -64,7 +65,9 @@ class Solution:
 
     @cached_property
     def ambient_c(self) -> np.ndarray:
-        return self.value(self.circuit.ambient_c)
+        """The air around the parts [°C], shape (sample,): inside the enclosure, where there is one."""
+        air = self.temperatures.sink_c.get(AIR) if AIR in self.circuit.heat.sinks else None
+        return self.value(self.circuit.ambient_c) if air is None else air
 
     def node_v(self, net: str) -> np.ndarray:
         """The voltage of a net against the reference [V], shape (sample,); NaN for a net outside the network."""
@@ -158,6 +161,12 @@ class Solution:
         rise_k, heat_w = self.temperatures.sink_c[name] - around_c, self.temperatures.sink_w[name]
         return rise_k / np.maximum(heat_w, 1e-9)
 
+    def in_range(self, names: Iterable[str]) -> np.ndarray:
+        """Where the laws of the given sinks' surfaces hold, and of the air that they stand in, shape (sample,)."""
+        beyond = self.temperatures.beyond
+        flags = [beyond[name] for name in (*names, AIR) if name in beyond]
+        return ~np.any(flags, axis=0) if flags else np.ones(self.n_samples, dtype=bool)
+
     @cached_property
     def parts(self) -> Mapping[str, PartPoint]:
         """Every part that has a probe, in the order of the circuit."""
@@ -210,10 +219,7 @@ class Solution:
         swing = probe.push_pull
         side_v, load_ohm = self._swing_v(probe) / 2.0, self.value(swing.load_ohm)
         peak = side_v / load_ohm
-        if swing.resistor_ohm is not None:
-            return peak / np.pi, peak / 2.0, peak, (peak / 2.0) ** 2 * self.value(swing.resistor_ohm)
-        loss = class_b_worst_loss_w(side_v, load_ohm, self.value(swing.phase_rad))
-        return peak / np.pi, peak / 2.0, peak, loss
+        return peak / np.pi, peak / 2.0, peak, swing_loss_w(swing, side_v, self.points)
 
     def unsolved(self) -> np.ndarray:
         """Where there is no operating point: not converged, or a load below the voltage it can run at."""
@@ -229,7 +235,7 @@ class Engine:
 
     def __init__(self, circuit: Circuit) -> None:
         self.circuit = circuit
-        self.system = System(circuit.branches, circuit.heat, circuit.reference)
+        self.system = System(circuit.branches, circuit.heat, circuit.reference, circuit.probes)
         self.solver = Solver(self.system)
 
     def solve(self, points: np.ndarray, polish: bool = False) -> Solution:

@@ -10,12 +10,14 @@ import numpy as np
 
 from .branches import Branch
 from .bridges import HalfBridge
+from .circuit import Probe
 from .converters import Converter
 from .families import FAMILIES, Values
 from .groups import Groups
 from .heat import HeatModel, HeatPath
 from .layout import Layout
 from .rectifier import Rectifier
+from .swings import Swings
 from .thermal_network import ThermalNetwork
 
 LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups, Rectifier: Groups}
@@ -39,7 +41,8 @@ class Prepared:
 class System:
     """Square equations F(x) = 0 for unknowns x of shape (unknown + 1, sample); the last row is the zero row."""
 
-    def __init__(self, branches: Sequence[Branch], heat: HeatModel, reference: Sequence[str]) -> None:
+    def __init__(self, branches: Sequence[Branch], heat: HeatModel, reference: Sequence[str],
+                 probes: Mapping[str, Probe] | None = None) -> None:
         self.branches, self.heat = tuple(branches), heat
         self.layout = Layout(frozenset(reference))
         by_kind = defaultdict(list)
@@ -47,6 +50,7 @@ class System:
             by_kind[type(branch)].append(branch)
         self.families = [LAWS[kind](by_kind[kind], self.layout) for kind in LAWS if by_kind[kind]]
         watched = {part for family in self.families for part in temperature_dependent(family.branches)}
+        self.swings = Swings(probes or {}, self.layout)
         self.thermal = ThermalNetwork(heat, self.layout, watched)
         self.layout.sealed = True
         for family in self.families:
@@ -70,7 +74,8 @@ class System:
 
     def prepare(self, points: np.ndarray) -> Prepared:
         """The numbers at the given points, shape (sample, variable)."""
-        return Prepared(tuple(f.parameters(points) for f in self.families), self.thermal.prepare(points), points.shape[0])
+        heat = {**self.thermal.prepare(points), **self.swings.parameters(points)}
+        return Prepared(tuple(f.parameters(points) for f in self.families), heat, points.shape[0])
 
     def evaluate(self, x: np.ndarray, prepared: Prepared):
         """Residual of shape (unknown, sample) and the entries of the derivative as (rows, columns, values)."""
@@ -94,7 +99,7 @@ class System:
         self.thermal.add(x, prepared.heat, prepared.held_c, residual, entries)
         if not len(self.thermal.power_at):
             return
-        for family, p in zip(self.families, prepared.families, strict=True):
+        for family, p in zip((*self.families, self.swings), (*prepared.families, prepared.heat), strict=True):
             for parts, power, slopes in family.heats(x, p):
                 at = self.layout.places("power", [part or "" for part in parts])
                 np.add.at(residual, at, -power)

@@ -209,8 +209,9 @@ class ThermalNetwork:
             sink_c[name], heat[name] = x[at], inflow
         if self.surfaces:
             around = prepared["air"] + x[self.air_at]
-            for k in self.by_surface:
-                beyond[self.sinks[k]] = Surfaces.beyond(x[self.sink_at[k]], around[k])
+            k = self.by_surface
+            flags = self.surfaces.beyond(x[self.sink_at[k]], around[k])
+            beyond = {self.sinks[row]: flag for row, flag in zip(k, flags, strict=True)}
         flows = {self.paths[r].part: x[at] for r, at in zip(self.beside, self.flow_at, strict=True)}
         own, junction_c, case_c, first_w = self.heat.own(points), {}, {}, {}
         for row, path in enumerate(self.heat.paths):
