@@ -67,6 +67,12 @@ _DIODE = (
     Part("conduction", "figure: forward characteristics", (Row("forward", "{25 °C: [[1 A, 0.42 V], ...], 125 °C: ...}, or knee: and slope: instead"),)),
     Part("charge", "dynamic characteristics", (Row("recovery", "Qrr; 0 nC for a Schottky diode", switching=True),)),
 )
+_BRIDGE = (
+    _limits(Row("vr", "repetitive peak reverse voltage", "V"), Row("if", "mean forward current", "A"), _POWER, _TJ),
+    _thermal("rth_jc", "rth_ja"),
+    Part("conduction", "forward characteristics of one diode", (
+        Row("knee", "its line is knee + slope · I, drawn through the charging peak"), Row("slope", "20 mohm, say", aside=True))),
+)
 _CLAMP = (
     _limits(_POWER, _TJ),
     _thermal("rth_ja"),
@@ -82,7 +88,7 @@ _VALUED = (_limits(Row("power", "at 70 °C, by size", "W")),)
 
 SHEETS: Mapping[str, tuple[Part, ...]] = {
     "mosfet": _MOSFET, "bjt": _TRANSISTOR, "igbt": _TRANSISTOR,
-    "diode": _DIODE, "bridge": _DIODE, "zener": _CLAMP, "tvs": _CLAMP,
+    "diode": _DIODE, "bridge": _BRIDGE, "zener": _CLAMP, "tvs": _CLAMP,
     "linear-regulator": (_REGULATOR_LIMITS, _thermal("rth_jc", "rth_ja"),
                          Part("conduction", "electrical characteristics", (Row("dropout", "at the current on this board"), Row("quiescent")))),
     "switching-regulator": (_REGULATOR_LIMITS, _thermal("rth_jc", "rth_ja"),

@@ -68,7 +68,7 @@ def _sections(survey: Survey, netlist: Netlist, existing: Existing, library: Lib
     switching = switched_parts(survey) & _in_stages(existing, stages)
     new_parts = [e for ref, e in judged_elements(survey).items() if not existing.covers_part(ref)]
     return {
-        "rails": list(rail_entries(survey, existing.has_rail, with_hints=existing.page is None)),
+        "rails": list(rail_entries(survey, netlist, existing.has_rail, with_hints=existing.page is None)),
         "loads": list(load_entries(survey, netlist, new_loads)),
         "stages": stages,
         "parts": list(part_entries(survey, netlist, new_parts, library, switching)),

@@ -4,29 +4,41 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator
 
+from drc_power.draft.alternating import AlternatingRail, alternating_rails, feeds_a_transformer
 from drc_power.draft.loads import chip_rails
 from drc_power.draft.writing import BLANK, Entry, commented, entry, listed, scalar
 from drc_power.intake.not_built import NOT_BUILT
+from drc_power.netlist.model import Netlist
 from drc_power.survey.model import Rail, Survey
 
 REGULATORS = frozenset({"linear-regulator", "switching-regulator"})
-_ALTERNATING = frozenset({"transformer", "bridge"})
 
 
-def rail_entries(survey: Survey, is_known: Callable[[str], bool], with_hints: bool) -> Iterator[Entry]:
-    """An entry for each net that a source feeds, then for each rail that the survey found, without those that are known.
+def rail_entries(survey: Survey, netlist: Netlist, is_known: Callable[[str], bool], with_hints: bool) -> Iterator[Entry]:
+    """An entry for each net that a source feeds, for each that alternates, then for each rail that the survey found.
 
-    `with_hints`: with comments on the rails that need no entry.
+    Those that are known are left out. `with_hints`: with comments on the rails that need no entry.
     """
+    made = {rail.net: _alternating(rail) for rail in alternating_rails(survey, netlist)}
     sources: dict[str, list[str]] = {}
     for e in survey.elements:
         if e.group == "source" and e.ref not in sources.setdefault(e.to_net, []):
             sources[e.to_net].append(e.ref)
     rails = {rail.net: rail for rail in survey.rails}
-    for net in dict.fromkeys((*sources, *rails)):
-        made = _from_outside(survey, net, sources[net], rails.get(net)) if net in sources else _held(survey, rails[net])
-        if not is_known(net) and (with_hints or not made.is_comment or not made.can_be_written):
-            yield made
+    alternating = {net for rail in alternating_rails(survey, netlist) for net in (rail.net, rail.back)}
+    made |= {net: _from_outside(survey, net, refs, rails.get(net)) for net, refs in sources.items() if net not in alternating}
+    made |= {net: _held(survey, rail) for net, rail in rails.items() if net not in made and net not in alternating}
+    for net, each in made.items():
+        if not is_known(net) and (with_hints or not each.is_comment or not each.can_be_written):
+            yield each
+
+
+def _alternating(rail: AlternatingRail) -> Entry:
+    values = {"ac": BLANK, "frequency": BLANK} | ({"source": scalar(rail.source)} if rail.source else {})
+    values |= {"return": scalar(rail.back)} if rail.back else {}
+    if NOT_BUILT["annotations"].get("rails.*.ac"):
+        return commented(rail.net, values, "alternating voltage is not supported yet", names={rail.net})
+    return entry(rail.net, values, "rms voltage", names={rail.net})
 
 
 def _from_outside(survey: Survey, net: str, refs: list[str], rail: Rail | None) -> Entry:
@@ -34,10 +46,8 @@ def _from_outside(survey: Survey, net: str, refs: list[str], rail: Rail | None) 
     values = {"voltage": BLANK, "source": listed(refs)}
     if len(back) == 1:
         values["return"] = scalar(back.pop())
-    if any(e.role in _ALTERNATING and e.from_net == net for e in survey.elements):
-        values = {"ac": BLANK, "frequency": BLANK} | {key: value for key, value in values.items() if key != "voltage"}
-        if NOT_BUILT["annotations"].get("rails.*.ac"):
-            return commented(net, values, "alternating voltage is not supported yet", names={net})
+    if transformer := feeds_a_transformer(survey, net):
+        return commented(net, values, f"feeds {transformer.ref}: give the voltage of its secondary instead", names={net})
     return entry(net, values, _guess(rail), names={net})
 
 

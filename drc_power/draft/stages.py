@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
+from drc_power.draft.alternating import rectified_nets
 from drc_power.draft.writing import BLANK, Entry, commented, entry, listed, scalar, slug
 from drc_power.intake.not_built import NOT_BUILT
 from drc_power.netlist.model import Netlist
@@ -42,7 +43,7 @@ SHAPES: Mapping[str, Shape] = {
     "half-bridge": _shape("high low shunts", "high low", "frequency duty", "high low load"),
     "three-phase": _shape("high low shunts", "", "frequency modulation power_factor current", "high low load"),
     "push-pull": _shape("pair", needs="pair load"),
-    "rectifier": _shape("bridge reservoir", "", "frequency", "bridge"),
+    "rectifier": _shape("bridge reservoir", needs="bridge"),
     "or-ing": _GROUP, "hot-plug": _GROUP, "linear-pass": _GROUP, "load-switch": _GROUP,
 }
 
@@ -88,6 +89,8 @@ def _problem(stage: Stage, shape: Shape, values: Mapping[str, str], wiring: _Wir
         return "a side is switches in parallel with at most one diode"
     if shape is _SWITCH and not stage.parts.get("clamp") and len(stage.parts["switch"]) > 1:
         return "several switches without a clamp are not supported yet"
+    if stage.kind == "rectifier":
+        return "" if wiring.is_rectifier(stage) else "a bridge with its pins known, or four diodes that make one, is due"
     return _converter_problem(stage, wiring) if shape is _CONVERTER else _meeting_problem(sides, wiring)
 
 
@@ -123,6 +126,10 @@ class _Wiring:
     def switches(self, refs: Sequence[str]) -> list[str]:
         """Those of some parts that switch."""
         return self.of(refs, _SWITCHES)
+
+    def is_rectifier(self, stage: Stage) -> bool:
+        """Whether the alternating nets of a rectifier are known."""
+        return bool(rectified_nets(stage, self._survey, self._netlist))
 
     def nets(self, ref: str) -> frozenset[str]:
         """The nets at the ends of a part, all of them where nothing says which pins they are."""

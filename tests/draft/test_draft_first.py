@@ -330,6 +330,44 @@ def test_rails_by_what_feeds_them(desk_for, element, survey_of):
     assert set(tree["loads"]) == {"u4"}
 
 
+def bridge_board(element, survey_of, *elements, terminals=("1", "2", "3", "4")):
+    """A transformer or a source, a bridge from A and B to P and GND, and a reservoir."""
+    netlist = netlist_of(part("BR1", "BR4A", "P", "GND", "A", "B"), part("C1", "1000u", "P", "GND"), part("T1", "TRAFO 12", "M", "N", "A", "B"),
+                         part("J1", "MAINS", "M", "N"), part("F1", "1A", "M", "A"))
+    found = survey_of(netlist, element("BR1", "switch", "bridge", "A", "P"), *elements, rails=(Rail("P", None, "output of a rectifier", ("BR1",)),),
+                      stages=(Stage("rectifier", {"bridge": ("BR1",), "reservoir": ("C1",)}, "P"),))
+    names = dict(zip(("plus", "minus", "ac1", "ac2"), ((pin,) for pin in terminals), strict=False))
+    return replace(found, parts={**found.parts, "BR1": replace(found.parts["BR1"], terminals=names)}), netlist
+
+
+@pytest.fixture
+def built(monkeypatch):
+    """As if alternating rails and rectifiers were supported, whatever this version does."""
+    for row in ("rails.*.ac", "rails.*.frequency", "stages.*.kind=rectifier"):
+        monkeypatch.delitem(NOT_BUILT["annotations"], row, raising=False)
+
+
+def test_a_rectifier_behind_a_transformer_is_fed_by_its_secondary(desk_for, element, survey_of, built):
+    desk = desk_for(*bridge_board(element, survey_of, element("J1", "source", "connector", "N", "M"), element("T1", "pass", "transformer", "M", "A")))
+    desk.draft()
+    assert desk.tree()["rails"] == {"A": {"ac": "", "frequency": "", "source": "T1", "return": "B"}}
+    assert '# M: {voltage: , source: J1, return: "N"}   # feeds T1: give the voltage of its secondary instead' in desk.path.read_text()
+    assert desk.tree()["stages"] == {"br1-rectifier": {"kind": "rectifier", "bridge": "BR1", "reservoir": "C1"}}
+    assert desk.draft().files == {}
+
+
+def test_a_rectifier_behind_a_fuse_is_fed_by_the_source(desk_for, element, survey_of, built):
+    desk = desk_for(*bridge_board(element, survey_of, element("J1", "source", "connector", "B", "M"), element("F1", "pass", "fuse", "M", "A")))
+    desk.draft()
+    assert desk.tree()["rails"] == {"M": {"ac": "", "frequency": "", "source": "J1", "return": "B"}}
+
+
+def test_a_rectifier_whose_pins_nobody_knows_is_a_comment(desk_for, element, survey_of, built):
+    desk = desk_for(*bridge_board(element, survey_of, terminals=("1", "2")))
+    desk.draft()
+    assert not desk.tree()["stages"] and "a bridge with its pins known, or four diodes that make one, is due" in desk.path.read_text()
+
+
 HOSTILE = ["Q 1", "Q*", "Q[1]", 'Q"1', "Q#1", "Q: 1", "no", "", "\n", "\x1b[2J", "\u202eQ", "x" * 3000, "{a}", "- a", "&a", "*a", "!!python/object:os.system", "<<", "~", "'", "\\", "日本", "a # b", "Q1, Q2", "?", "|", "@", "`", "%"]
 
 
