@@ -5,14 +5,14 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from ..solve.solution import Solution
-from . import copper, coverage, derating, envelope, events, heat, linear, network
+from . import copper, coverage, derating, envelope, events, heat, linear, network, second_breakdown
 from .house import House
 from .judgement import Judgement
 from .view import View
 
 STEADY_RULES = (heat.dissipation, heat.junction, envelope.envelope, derating.derating, network.headroom,
                 network.load_voltage, network.source_limit, network.runaway, network.unsolved, coverage.rails,
-                copper.sinks, copper.patches, linear.steady)
+                copper.sinks, copper.patches, linear.steady, second_breakdown.steady)
 EVENT_RULES = (events.events,)
 
 

@@ -11,7 +11,7 @@ from ..solve.events.impedance import FIT_WITHIN
 from ..solve.events.probe import EventProbe
 from .envelope import HAS_ENVELOPE
 from .event_ratings import ratings
-from . import linear
+from . import linear, second_breakdown
 from .event_steps import avalanche_steps, envelope_steps, junction_steps
 from .event_view import EventView, deciding_point, deciding_share
 from .heat import HAS_JUNCTION
@@ -133,4 +133,4 @@ def returning(element: EventView) -> Iterator[Judgement]:
                      inputs=lambda: element.sources("limits.power"))
 
 
-RULES = (junction, envelope, linear.event, avalanche, returning, ratings)
+RULES = (junction, envelope, linear.event, second_breakdown.event, avalanche, returning, ratings)
