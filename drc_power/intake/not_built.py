@@ -13,7 +13,6 @@ NOT_BUILT: dict[str, dict[str, bool]] = {
     "annotations": {
         "copper.board": True,
         "copper.tracks": True,
-        "stages.*.kind=three-phase": True,
     },
     "devices": {},
     "rules": {},

@@ -134,6 +134,15 @@ class Carrying:
             drop_v = value_of(volts)
             yield leg.part, PartReading((on + dead) * i, np.sqrt(on + dead) * rms_a, peak_a, drop_v, drop_v)
 
+    def dead_for(self, share, mean_a, square_a2, line) -> Iterator[Loss]:
+        """The dead times' loss for a current of any shape: its mean and mean square while it is that diode's."""
+        knee, slope = line
+        owners = [(self.position.free.part, constant(1.0))] if self.has_diode else [
+            (leg.part, part) for leg, part in zip(self.position.legs, self.shares, strict=True)]
+        for ref, part in owners:
+            yield Loss(ref, "P_dead", share * part * (knee * mean_a + slope * square_a2), "2 · δ · (V_F0 · Î/π + r · Î²/4) · share",
+                       "{} · ({} · {} + {} · {}) · {}", (share, knee, mean_a, slope, square_a2, part), "diode conduction in both dead times")
+
     @property
     def has_diode(self) -> bool:
         """Whether a part of its own carries the dead times, not the switches' body diodes."""

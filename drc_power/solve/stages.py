@@ -15,6 +15,8 @@ from .stage_converters import add_converter, add_stopped_converter, is_running
 from .stage_pairs import add_half_bridge, add_single_switch
 from .stage_parts import conducting_nets
 from .stage_rectifier import add_rectifier
+from .stage_sine import add_sine_bridge
+from .supply import is_sinusoidal
 from .variables import ZERO, Param
 
 
@@ -83,8 +85,13 @@ def _or_ing(builder: Builder, name: str, stage: StageNote) -> None:
     builder.ideal_diodes |= {str(ref) for ref in stage.parts}
 
 
-MAKERS = {"half-bridge": add_half_bridge, "low-side": add_single_switch, "high-side": add_single_switch,
-          "push-pull": _push_pull, "buck": add_converter, "boost": add_converter, "or-ing": _or_ing, "rectifier": add_rectifier}
+def _half_bridge(builder: Builder, name: str, stage: StageNote) -> None:
+    """A half bridge with a steady duty, or one whose duty follows a sine."""
+    (add_sine_bridge if is_sinusoidal(stage) else add_half_bridge)(builder, name, stage)
+
+
+MAKERS = {"half-bridge": _half_bridge, "low-side": add_single_switch, "high-side": add_single_switch,
+          "three-phase": add_sine_bridge, "push-pull": _push_pull, "buck": add_converter, "boost": add_converter, "or-ing": _or_ing, "rectifier": add_rectifier}
 """How each kind of stage enters the network while it runs. The others group parts that conduct by themselves; those of
 a linear-pass stage are in state linear already (see `Board.in_mode`)."""
 

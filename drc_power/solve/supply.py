@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from ..board import BoardPart, LoadNote, RailNote
+from ..board import BoardPart, LoadNote, RailNote, StageNote
+from ..faults import Fault, InputError
 from .branches import CurrentLoad, PowerLoad, Resistive, Source
 from .circuit import Builder, LoadProbe, SourceProbe, Unfed
 from .parts import GAP_A, state_of, supply_nets
@@ -94,10 +95,13 @@ def drivers_of(builder: Builder, net: str) -> Iterator[str]:
         if not is_active(builder, part):
             continue
         outputs = {part.terminals.get(name) for name in ("output", "source", "drain", "collector", "emitter")}
-        if part.kind in REGULATORS and (part.terminals.get("output") == net or ref in fed_by):
+        if part.kind in REGULATORS and (part.terminals.get("output") == net or ref in fed_by) or state_of(part) == "linear" and part.kind not in REGULATORS and net in outputs:
             yield ref
-        elif state_of(part) == "linear" and part.kind not in REGULATORS and net in outputs:
-            yield ref
+
+
+def is_sinusoidal(stage: StageNote) -> bool:
+    """A stage whose duty follows a sine: three phases, or one with a modulation. Its load is its own affair."""
+    return str(stage.kind) == "three-phase" or (stage.duty is None and stage.modulation is not None)
 
 
 def is_active(builder: Builder, part: BoardPart) -> bool:
@@ -131,8 +135,13 @@ def _guess(builder: Builder, net: str) -> str:
 def add_loads(builder: Builder) -> None:
     """The annotated loads, and the parts that draw a current of their own."""
     floor_v = FLOOR_SHARE * max([abs(rail.voltage.max) for rail in builder.mode.rails.values() if rail.voltage] or [1.0])
+    sinusoidal = {str(stage.load) for stage in builder.mode.view.stages.values() if is_sinusoidal(stage)}
     for name, load in builder.mode.loads.items():
-        _add_load(builder, name, load, floor_v)
+        if load.between and name not in sinusoidal:
+            raise InputError(Fault(load.mark, f"load {name} lies between several nets, and no three-phase stage names it",
+                                   f"write stages: {{NAME: {{kind: three-phase, load: {name}, ...}}}}"))
+        if name not in sinusoidal:
+            _add_load(builder, name, load, floor_v)
     for ref, part in builder.parts.items():
         if is_active(builder, part):
             _add_own_draw(builder, ref, part)

@@ -17,10 +17,11 @@ from .groups import Groups
 from .heat import HeatModel, HeatPath
 from .layout import Layout
 from .rectifier import Rectifier
+from .sine_bridge import SineBridge
 from .swings import Swings
 from .thermal_network import ThermalNetwork
 
-LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups, Rectifier: Groups}
+LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups, Rectifier: Groups, SineBridge: Groups}
 """The family of each kind of branch and of group."""
 
 LEAK_SIEMENS = 1e-18

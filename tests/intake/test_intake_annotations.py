@@ -79,7 +79,6 @@ WRONG = [
 
 NOT_SUPPORTED = [
     ("copper: {board: b.kicad_pcb}", "3:10: 'board' is not supported yet; leave it out"),
-    ("stages: {s: {kind: three-phase}}", "3:20: 'kind: three-phase' is not supported yet; leave it out"),
 ]
 
 
