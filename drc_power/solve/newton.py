@@ -14,7 +14,8 @@ MAX_ITERATIONS = 60
 STEP_TOLERANCE = 1e-12
 """Converged when no unknown moves by more than this share of itself (of 1 below 1) and no branch changes its line."""
 
-MILD_ROUNDS = 12
+MILD_ITERATIONS = 8
+MILD_ROUNDS = 8
 """How often the milder network is solved on the way to the real one."""
 
 SMALL_STEP = 1e-9
@@ -63,16 +64,16 @@ class Solver:
                     volts[k] = np.maximum(reached, p["floor"]) if volts[k] is None else np.maximum(0.5 * (volts[k] + reached), p["floor"])
                     p = {**p, "as_resistor_v": volts[k]}
                 families.append(p)
-            x, _ = self._iterate(x, replace(prepared, families=tuple(families)))
+            x, _ = self._iterate(x, replace(prepared, families=tuple(families)), MILD_ITERATIONS)
         return x
 
-    def _iterate(self, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray, np.ndarray]:
+    def _iterate(self, x: np.ndarray, prepared: Prepared, most: int = MAX_ITERATIONS) -> tuple[np.ndarray, np.ndarray]:
         converged = np.zeros(prepared.n_samples, dtype=bool)
         x = x.copy()
         bound_v = VOLTAGE_ROOM * np.abs(x[self.system.nodes]).max(initial=1.0)
         active, part = np.arange(prepared.n_samples), prepared
         before = self.system.regime(x, part)
-        for iteration in range(MAX_ITERATIONS):
+        for iteration in range(most):
             residual, entries = self.system.evaluate(x[:, active], part)
             step = self._step(before, residual, entries)
             damping = next(share for limit, share in DAMPING if iteration < limit)

@@ -24,7 +24,7 @@ def scale_q2(t):
     return 1.0 if t < 25 else 1 + 0.45 * (t - 25) / 75 if t < 100 else 1.45 + 0.4 * (t - 100) / 50
 
 
-def reference(v_bat=28.0, i_load=0.06, r_heater=11.4, rds2=0.008, ambient=50.0):
+def reference(v_bat=28.0, i_load=0.06, r_heater=11.4, rds2=0.008, ambient=50.0, r_sink=8.0):
     """Every operating point at one corner, from Kirchhoff's and Ohm's laws written out."""
     def equations(u):
         v24, i_heat, t1, t2, tu = u
@@ -34,8 +34,8 @@ def reference(v_bat=28.0, i_load=0.06, r_heater=11.4, rds2=0.008, ambient=50.0):
         return [v24 - (v_bat - i_fuse * (0.009 + 0.012 * scale_q1(t1))),
                 i_heat - v24 / (r_heater + rds2 * scale_q2(t2) + 0.010),
                 t1 - (ambient + 50.0 * p1),
-                t2 - (ambient + 8.0 * (p2 + pu) + (1.36 + 0.6) * p2),
-                tu - (ambient + 8.0 * (p2 + pu) + (3.0 + 1.0) * pu)]
+                t2 - (ambient + r_sink * (p2 + pu) + (1.36 + 0.6) * p2),
+                tu - (ambient + r_sink * (p2 + pu) + (3.0 + 1.0) * pu)]
 
     v24, i_heat, t1, t2, tu = root(equations, [24.0, 2.0, 60.0, 80.0, 90.0], tol=1e-13).x
     i_fuse = i_heat + i_load + 0.005
