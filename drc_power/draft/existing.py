@@ -68,7 +68,7 @@ class Existing:
         entries = [s for s in self.statements("loads") if not s.is_comment]
         names = {}
         for consumer, usual in found.items():
-            there = [s for s in entries if s.scalars & set(self._names_of(consumer.net))]
+            there = [s for s in entries if all(s.scalars & set(self._names_of(net)) for net in consumer.nets)]
             own = [s.key for s in there if s.speaks_of(consumer.ref)]
             named = [s.key for s in there if s.key == usual]
             names |= {consumer: key for key in [*own, *named][:1]}

@@ -81,7 +81,7 @@ def _loads(survey: Survey, existing: Existing) -> tuple[Mapping[Consumer, str], 
     names, new = existing.loads_of(usual), {}
     taken = {statement.key for statement in existing.statements("loads")}
     for consumer in [each for each in usual if each not in names]:
-        if not existing.keeps_out("loads", (consumer.ref, consumer.net)):
+        if not existing.keeps_out("loads", (consumer.ref, *consumer.nets)):
             names[consumer] = new[consumer] = free_name(usual[consumer], taken)
     return names, new
 
@@ -123,7 +123,7 @@ def _remarks(survey: Survey, netlist: Netlist, existing: Existing) -> Iterator[s
     yield from (f"{mark}: {said}" for mark, said in gone(root, netlist))
     usual = load_names(consumers(survey))
     there = existing.loads_of(usual)
-    kept = [f"{c.ref} on {c.net}" for c in usual if c not in there and existing.keeps_out("loads", (c.ref, c.net))]
+    kept = [f"{c.ref} on {c.net}" for c in usual if c not in there and existing.keeps_out("loads", (c.ref, *c.nets))]
     if kept:
         yield f"{printable(existing.path)}: loads that only a comment speaks of, and that count nowhere: {shorten(printable(', '.join(kept)), 200)}"
 

@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
-from drc_power.draft.writing import BLANK, Entry, entry, scalar, slug
+from drc_power.draft.writing import BLANK, Entry, entry, listed, scalar, slug
 from drc_power.netlist.model import Netlist
-from drc_power.survey.model import Survey
+from drc_power.survey.model import Stage, Survey
 from drc_power.survey.voltages import leaf
 
 JUDGED_AS_PARTS = frozenset({"resistor", "thermistor", "potentiometer"})
@@ -16,13 +16,31 @@ JUDGED_AS_PARTS = frozenset({"resistor", "thermistor", "potentiometer"})
 
 @dataclass(frozen=True, slots=True)
 class Consumer:
-    """A part that draws from a net; `back` is where the current returns, "" if nobody knows."""
+    """A part that draws from a net; `back` is where the current returns, "" if nobody knows.
+
+    `between`: all the phases, of a load on a three-phase bridge.
+    """
 
     ref: str
     net: str
     back: str
     role: str
     because: str
+    between: tuple[str, ...] = ()
+
+    @property
+    def nets(self) -> tuple[str, ...]:
+        """The nets that a load for it names in any case."""
+        return self.between or (self.net,)
+
+
+def phases_of(stage: Stage, survey: Survey) -> tuple[str, ...]:
+    """The nets where high and low parts of a three-phase bridge meet, () unless there are three."""
+    starts, ends = ({(e.ref, net) for e in survey.elements for net in (e.from_net, e.to_net) if e.ref in stage.parts.get(side, ())}
+                    for side in ("high", "low"))
+    both = dict.fromkeys(net for _, net in sorted(starts) if net in {other for _, other in ends})
+    found = tuple(net for net in both if net not in survey.grounds)
+    return found if len(found) == 3 else ()
 
 
 def consumers(survey: Survey) -> list[Consumer]:
@@ -38,7 +56,18 @@ def consumers(survey: Survey) -> list[Consumer]:
             key = e.ref, frozenset((e.from_net, e.to_net))
             if key not in chosen or e.from_net in rails and chosen[key].net not in rails:
                 chosen[key] = Consumer(e.ref, e.from_net, e.to_net, e.role, e.because[0] if e.because else e.role)
-    return list(chosen.values())
+    return _with_phases_together(survey, list(chosen.values()))
+
+
+def _with_phases_together(survey: Survey, found: list[Consumer]) -> list[Consumer]:
+    """The consumers, with what hangs on the phases of a three-phase bridge as one."""
+    for stage in survey.stages:
+        phases = phases_of(stage, survey) if stage.kind == "three-phase" else ()
+        on_them = [consumer for consumer in found if consumer.net in phases]
+        if on_them:
+            first = replace(on_them[0], net=phases[0], back="", between=phases)
+            found = [first if each is on_them[0] else each for each in found if each not in on_them[1:]]
+    return found
 
 
 def chip_rails(survey: Survey) -> dict[str, str]:
@@ -63,10 +92,11 @@ def _short(net: str) -> str:
 def load_entries(survey: Survey, netlist: Netlist, names: Mapping[Consumer, str]) -> Iterator[Entry]:
     """The entries of loads under their names."""
     for consumer, name in names.items():
-        values = {"net": scalar(consumer.net)}
+        values = {"between": listed(consumer.between)} if consumer.between else {"net": scalar(consumer.net)}
         if consumer.back and (consumer.back not in survey.grounds or len(survey.grounds) > 1):
             values["return"] = scalar(consumer.back)
         if consumer.role == "motor":
             values["kind"] = "motor"
         value = netlist.parts[consumer.ref].value
-        yield entry(name, values | {"draws": BLANK}, f"{consumer.ref} {value}: {consumer.because}", names={consumer.ref, consumer.net})
+        told = f"{consumer.ref} {value}: {consumer.because}" + ("; the current of a phase, as A rms" if consumer.between else "")
+        yield entry(name, values | {"draws": BLANK}, told, names={consumer.ref, *consumer.nets})

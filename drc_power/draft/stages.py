@@ -6,12 +6,14 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from drc_power.draft.alternating import rectified_nets
+from drc_power.draft.loads import phases_of
 from drc_power.draft.writing import BLANK, Entry, commented, entry, listed, scalar, slug
 from drc_power.intake.not_built import NOT_BUILT
 from drc_power.netlist.model import Netlist
 from drc_power.survey.model import Stage, Survey
 
 _SWITCHES = frozenset({"mosfet", "bjt", "igbt"})
+_MOSFETS = frozenset({"mosfet"})
 _DIODES = frozenset({"diode", "led"})
 _ENDS = ("drain", "source", "collector", "emitter", "anode", "cathode", "a", "b")
 
@@ -41,7 +43,7 @@ _GROUP = _shape("parts controller", needs="parts")
 SHAPES: Mapping[str, Shape] = {
     "buck": _CONVERTER, "boost": _CONVERTER, "low-side": _SWITCH, "high-side": _SWITCH,
     "half-bridge": _shape("high low shunts", "high low", "frequency duty", "high low load"),
-    "three-phase": _shape("high low shunts", "", "frequency modulation power_factor current", "high low load"),
+    "three-phase": _shape("high low shunts", "high low", "frequency modulation power_factor", "high low load"),
     "push-pull": _shape("pair", needs="pair load"),
     "rectifier": _shape("bridge reservoir", needs="bridge"),
     "or-ing": _GROUP, "hot-plug": _GROUP, "linear-pass": _GROUP, "load-switch": _GROUP,
@@ -84,6 +86,8 @@ def _problem(stage: Stage, shape: Shape, values: Mapping[str, str], wiring: _Wir
         return f"{stage.kind} stages are not supported yet"
     if missing := [key for key in shape.needs if key not in values]:
         return f"give {' and '.join(missing)} and take out the #"
+    if stage.kind == "three-phase":
+        return _three_phase_problem(stage, wiring)
     sides = [stage.parts.get(side, ()) for side in shape.sides]
     if any(len(wiring.of(refs, _DIODES)) > 1 or len(wiring.of(refs, _SWITCHES | _DIODES)) < len(refs) for refs in sides):
         return "a side is switches in parallel with at most one diode"
@@ -92,6 +96,15 @@ def _problem(stage: Stage, shape: Shape, values: Mapping[str, str], wiring: _Wir
     if stage.kind == "rectifier":
         return "" if wiring.is_rectifier(stage) else "a bridge with its pins known, or four diodes that make one, is due"
     return _converter_problem(stage, wiring) if shape is _CONVERTER else _meeting_problem(sides, wiring)
+
+
+def _three_phase_problem(stage: Stage, wiring: _Wiring) -> str:
+    """Three legs of MOSFETs, whose low parts lead to one net or have a shunt each."""
+    high, low, shunts = (stage.parts.get(key, ()) for key in ("high", "low", "shunts"))
+    if not wiring.phases(stage) or len(wiring.of((*high, *low), _MOSFETS)) < len((*high, *low)):
+        return "write high: [Q1, Q3, Q5], low: [Q2, Q4, Q6] with the diode beside each transistor that is no MOSFET"
+    feet = {net for ref in low for net in wiring.nets(ref)} - set(wiring.phases(stage))
+    return "name the shunt in each foot as shunts" if len(feet) > 1 and len(shunts) < len(feet) else ""
 
 
 def _converter_problem(stage: Stage, wiring: _Wiring) -> str:
@@ -126,6 +139,10 @@ class _Wiring:
     def switches(self, refs: Sequence[str]) -> list[str]:
         """Those of some parts that switch."""
         return self.of(refs, _SWITCHES)
+
+    def phases(self, stage: Stage) -> tuple[str, ...]:
+        """The three nets that a three-phase bridge drives."""
+        return phases_of(stage, self._survey)
 
     def is_rectifier(self, stage: Stage) -> bool:
         """Whether the alternating nets of a rectifier are known."""

@@ -368,6 +368,26 @@ def test_a_rectifier_whose_pins_nobody_knows_is_a_comment(desk_for, element, sur
     assert not desk.tree()["stages"] and "a bridge with its pins known, or four diodes that make one, is due" in desk.path.read_text()
 
 
+def test_what_hangs_on_three_phases_is_one_load_between_them(desk_for, element, survey_of, monkeypatch):
+    monkeypatch.delitem(NOT_BUILT["annotations"], "stages.*.kind=three-phase", raising=False)
+    high = [part(f"Q{2 * k + 1}", "NF6008", "VBUS", phase) for k, phase in enumerate("UVW")]
+    low = [part(f"Q{2 * k + 2}", "NF6008", phase, "GND") for k, phase in enumerate("UVW")]
+    netlist = netlist_of(*high, *low, part("J2", "MOTOR", "U", "V", "W"))
+    switches = [element(p.ref, "switch", "mosfet", *p.nets_of(), f"g{p.ref}") for p in (*high, *low)]
+    survey = survey_of(netlist, *switches, *(element("J2", "load", "connector", phase, "GND") for phase in "UVW"),
+                       stages=(Stage("three-phase", {"high": ("Q1", "Q3", "Q5"), "low": ("Q2", "Q4", "Q6"), "load": ("J2",)}, None),))
+    desk = desk_for(survey, netlist)
+    desk.draft()
+    tree = desk.tree()
+    assert tree["loads"] == {"j2": {"between": ["U", "V", "W"], "draws": ""}}
+    assert tree["stages"]["q1-three-phase"] == {
+        "kind": "three-phase", "high": ["Q1", "Q3", "Q5"], "low": ["Q2", "Q4", "Q6"], "load": "j2", "frequency": "", "modulation": "",
+        "power_factor": "", "dead_time": ""}
+    assert desk.draft().files == {}
+    desk.write(desk.path.read_text().replace("j2: {between", "motor: {between").replace("load: j2", "load: motor"))
+    assert desk.draft().files == {}
+
+
 HOSTILE = ["Q 1", "Q*", "Q[1]", 'Q"1', "Q#1", "Q: 1", "no", "", "\n", "\x1b[2J", "\u202eQ", "x" * 3000, "{a}", "- a", "&a", "*a", "!!python/object:os.system", "<<", "~", "'", "\\", "日本", "a # b", "Q1, Q2", "?", "|", "@", "`", "%"]
 
 
