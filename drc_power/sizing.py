@@ -16,8 +16,8 @@ from .solve.search import worst_corners
 from .solve.sizing import NOT_MET, Boundary, Lever, boundary
 from .solve.solution import Engine
 
-REACH = 20.0
-"""A resistance, a current or a power is tried from a twentieth to twenty times its present value."""
+REACH = 5.0
+"""A resistance, a current or a power is tried from a fifth to five times its present value."""
 
 MATTERS = 1e-3
 NUDGE = 0.9

@@ -27,7 +27,7 @@ DAMPING = ((10, 1.0), (25, 0.5), (MAX_ITERATIONS, 0.2))
 VOLTAGE_ROOM = 3.0
 """No node strays further than this many times the highest voltage of the starting point on the way."""
 
-MAX_TEMPERATURE_C = 1e5
+MAX_TEMPERATURE_C = 1e6
 """A temperature past this is no equilibrium; it only keeps the numbers finite while runaway is being shown."""
 
 

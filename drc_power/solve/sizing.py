@@ -76,10 +76,10 @@ def boundary(box: Box, margins: Margins, lever: Lever, worst: np.ndarray) -> Bou
             break
         flipped = _flipped(box, points, lever, value)
         found = margins(flipped)
-        worse = flipped[np.where(np.isnan(found), NOT_MET, found) < -AGREES]
-        if not len(worse):
+        found = np.where(np.isnan(found), NOT_MET, found)
+        if found.min() >= -AGREES:
             return Boundary(lever, value, passes)
-        points = np.vstack([points, worse])
+        points = np.vstack([points, flipped[found.argmin()]])
     return Boundary(lever, None, passes)
 
 

@@ -17,10 +17,13 @@ CERTAIN_BELOW = 0.5
 """Where a bound on the loop gain lies below this, the gain itself is not computed."""
 
 HOPELESS_C = 2000.0
-"""A temperature that only a diverging loop reaches."""
+"""Past this a loop that still feeds itself is diverging; one that no longer does is followed, to END_C."""
+
+END_C = 1e5
 
 SETTLED_K = 1e-9
-HASTE = 8.0
+HASTE = 4.0
+MOST_AT_ONCE = 1e3
 MAX_ROUNDS = 120
 CHUNK = 256
 
@@ -66,7 +69,9 @@ def climb(solver: Solver, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray
     at, x = solver.system.temperature_at, x.copy()
     settled = np.zeros(prepared.n_samples, dtype=bool)
     lost = np.zeros(prepared.n_samples, dtype=bool)
-    active, last = np.arange(prepared.n_samples), np.full(prepared.n_samples, np.inf)
+    active, last = np.arange(prepared.n_samples), np.full(prepared.n_samples, 1e300)
+    stride = np.ones(prepared.n_samples)
+    ran = np.zeros((len(at), prepared.n_samples), dtype=bool)
     for _ in range(MAX_ROUNDS):
         part, held_c = take(prepared, active), x[at][:, active]
         found, solved = solver.solve(x[:, active], replace(part, held_c=held_c))
@@ -75,22 +80,26 @@ def climb(solver: Solver, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray
         x[:, active] = found
         settled[active] = solved & (moved < SETTLED_K * (1.0 + np.abs(held_c).max(axis=0)))
         lost[active] = ~solved
-        going = ~settled[active] & ~lost[active] & (held_c.max(axis=0) <= HOPELESS_C)
+        gain = 1.0 + (moved / last[active] - 1.0) / stride[active]
+        feeds_itself = (gain >= 1.0 - 1e-9) | (held_c.max(axis=0) > END_C)
+        ran[:, active] = (held_c > HOPELESS_C) & (target > held_c) & feeds_itself
+        going = ~settled[active] & ~lost[active] & ~ran[:, active].any(axis=0)
         if not going.any():
             break
-        stride = _stride(moved[going] / last[active][going])
+        stride[active] = _stride(gain, stride[active])
         last[active] = moved
         active = active[going]
-        x[np.ix_(at, active)] = held_c[:, going] + stride * (target - held_c)[:, going]
-    return x, settled, (x[at] > HOPELESS_C) & ~settled & ~lost
+        x[np.ix_(at, active)] = held_c[:, going] + stride[active] * (target - held_c)[:, going]
+    return x, settled, ran & ~settled & ~lost
 
 
-def _stride(ratio: np.ndarray) -> np.ndarray:
-    """How many rounds' worth to climb at once, shape (sample,), from the ratio of one round's rise to the last one's.
+def _stride(gain: np.ndarray, stride: np.ndarray) -> np.ndarray:
+    """How many rounds' worth to climb at once, shape (sample,).
 
-    A ratio r below 1 leaves 1/(1 − r) rounds' worth to climb if it stays, of which most is taken; above 1 the climb has
-    no end in sight and may be hastened.
+    gain: of the loop, read off the last stride, since a loop of gain g changes the distance to the settling temperature
+    by 1 + (g − 1) · stride. With g below 1 there are 1/(1 − g) rounds' worth left if it stays, of which most is taken;
+    from 1 on the climb has no end in sight and is hastened.
     """
     with np.errstate(divide="ignore", invalid="ignore"):
-        rest = 0.9 / (1.0 - ratio)
-    return np.where(ratio >= 1.0, HASTE, np.where(ratio > 0.5, np.clip(rest, 1.0, HASTE**2), 1.0))
+        rest = np.clip(0.9 / (1.0 - gain), 1.0, MOST_AT_ONCE)
+    return np.where(~np.isfinite(gain), 1.0, np.where(gain >= 1.0, np.minimum(HASTE * stride, MOST_AT_ONCE), rest))
