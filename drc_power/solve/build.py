@@ -13,6 +13,7 @@ from .events.build import add_events
 from .heatpaths import add_ambient, add_heat_paths
 from .parts import MAKERS
 from .stage_converters import note_converters
+from .stage_cycles import add_gate_drives, add_snubbers
 from .stage_pairs import add_chopped
 from .stages import add_stages
 from .supply import add_loads, add_rails, is_active, reference_of
@@ -31,6 +32,8 @@ def build_circuit(mode: Mode, levers: frozenset[str] = frozenset(), events: bool
     add_rails(builder)
     add_stages(builder)
     add_loads(builder)
+    add_snubbers(builder)
+    add_gate_drives(builder)
     add_parts(builder)
     add_dividers(builder)
     add_heat_paths(builder, temperature_dependent(builder.branches))

@@ -123,6 +123,8 @@ class Builder:
     load_duties: dict[str, Param] = field(default_factory=dict)
     chopped: dict[str, tuple[Param, Param | None]] = field(default_factory=dict)
     ideal_diodes: set[str] = field(default_factory=set)
+    driven: dict[str, Param] = field(default_factory=dict)
+    switched: list[tuple[str, str, str, Param]] = field(default_factory=list)
     stage_rails: dict[str, str] = field(default_factory=dict)
     stage_setpoints: dict[str, Param] = field(default_factory=dict)
     staged: set[str] = field(default_factory=set)

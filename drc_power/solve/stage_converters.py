@@ -160,7 +160,8 @@ def add_converter(builder: Builder, name: str, stage: StageNote) -> None:
         ports.inductor.ref if ports.inductor else None, resistance(builder, ports.inductor) if ports.inductor else ZERO,
         _inductance(builder, name, ports, owner), ripple_hz, edge_hz, dead_time_of(builder, name, stage, free, owner),
         edges_of(builder, switches, frees) if outside else Edges(), _chip(builder, ports, outside)))
-    add_switch_probes(builder, key, [*ports.main, *ports.free], ports.x)
+    add_switch_probes(builder, key, [*ports.main, *ports.free], ports.x,
+                      (ports.a if str(stage.kind) == "buck" else ports.b, ports.ground), edge_hz)
     if ports.inductor is not None:
         add_group_probe(builder, key, ports.inductor)
     if ports.chip is not None:

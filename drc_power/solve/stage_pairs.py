@@ -101,7 +101,7 @@ def _add_pair(builder: Builder, name: str, stage: StageNote, x: str, main: list[
     dead = dead_time_of(builder, name, stage, positions[1], owner)
     switches, frees = [p for p in main if is_switch(p)], free if positions[1].free else [p for p in free if p.kind in DIODES]
     builder.add(HalfBridge(key, x, *ends, *positions, duty, outward, frequency, dead, edges_of(builder, switches, frees)))
-    add_switch_probes(builder, key, [*main, *free], x)
+    add_switch_probes(builder, key, [*main, *free], x, tuple(ends if outward > 0 else ends[::-1]), frequency)
     for leg in (leg for position in positions for leg in position.shunts):
         add_group_probe(builder, key, builder.parts[leg.part])
     return ends[1]

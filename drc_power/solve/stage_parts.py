@@ -134,9 +134,15 @@ def shunt_leg(builder: Builder, part: BoardPart) -> Leg:
     return Leg(part.ref, resistance(builder, part))
 
 
-def add_switch_probes(builder: Builder, key: str, parts: Iterable[BoardPart], x: str) -> None:
-    """Probes of the switches and diodes of a group; they are then in no branch of their own."""
+def add_switch_probes(builder: Builder, key: str, parts: Iterable[BoardPart], x: str, ends: tuple[str, str], hertz: Param) -> None:
+    """Probes of the switches and diodes of a group at its switched net, which then are in no branch of their own.
+
+    ends: the nets between which that net is switched, at a frequency [Hz].
+    """
+    builder.switched.append((x, *ends, hertz))
     for part in parts:
+        if part.kind == "mosfet":
+            builder.driven[part.ref] = hertz
         builder.probes[part.ref] = Probe(
             part.ref, part.kind, "switching", x, other_net(part, x), group=key, pulsed=True,
             gate=gate_of(builder, part) if part.kind == "mosfet" else None,

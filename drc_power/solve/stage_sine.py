@@ -49,12 +49,13 @@ def add_sine_bridge(builder: Builder, name: str, stage: StageNote) -> None:
              for side, parts in groups.items()}
     first = next(iter(positions.values()))
     drive, demand, load_part = _demand(builder, name, stage)
+    frequency = frequency_of(builder, name, stage, owner)
     builder.add(SineBridge(
         key, a, b, positions, edges, drive, demand, _factor(builder, name, stage, "modulation", owner),
-        _factor(builder, name, stage, "power_factor", owner), frequency_of(builder, name, stage, owner),
+        _factor(builder, name, stage, "power_factor", owner), frequency,
         dead_time_of(builder, name, stage, first, owner), load_part, shunt))
     for x, (highs, lows) in legs.items():
-        add_switch_probes(builder, key, [*highs, *lows], x)
+        add_switch_probes(builder, key, [*highs, *lows], x, (a, b), frequency)
     shunts = [leg for position in positions.values() for leg in position.shunts] + ([shunt] if shunt else [])
     for leg in shunts:
         add_group_probe(builder, key, builder.parts[leg.part])

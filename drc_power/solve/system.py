@@ -12,6 +12,7 @@ from .branches import Branch
 from .bridges import HalfBridge
 from .circuit import Probe
 from .converters import Converter
+from .cycles import Cycled
 from .families import FAMILIES, Values
 from .groups import Groups
 from .heat import HeatModel, HeatPath
@@ -21,7 +22,7 @@ from .sine_bridge import SineBridge
 from .swings import Swings
 from .thermal_network import ThermalNetwork
 
-LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups, Rectifier: Groups, SineBridge: Groups}
+LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups, Rectifier: Groups, SineBridge: Groups, Cycled: Groups}
 """The family of each kind of branch and of group."""
 
 LEAK_SIEMENS = 1e-18

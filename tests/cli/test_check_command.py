@@ -117,7 +117,7 @@ def test_what_is_no_netlist_is_said_to_be_none(board, capsys):
 
 
 def test_a_key_that_is_not_built_yet_is_refused(board, capsys):
-    assert main(["check", edited(board, "rails:", "rails:\n  X: {ac: 24 V, frequency: 50 Hz, source: J1}")]) == 2
+    assert main(["check", edited(board, "rails:", "copper: {board: b.kicad_pcb}\nrails:")]) == 2
     assert "not supported yet" in capsys.readouterr().err
 
 

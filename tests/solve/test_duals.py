@@ -17,6 +17,7 @@ from drc_power.solve.solution import Engine
 sys.path.insert(0, str(Path(__file__).parents[1] / "boards"))
 import converter_boards as boards
 import test_bridge_boards as bridge
+import test_gates_and_snubbers as cycles
 import test_rectifier_board as rectifier
 import test_sine_board as sine
 from draw import write_board
@@ -41,6 +42,7 @@ BOARDS = {"buck": (boards.BUCK_PARTS, boards.BUCK_ANNOTATIONS, boards.BUCK_DEVIC
           "boost": (boards.BOOST_PARTS, boards.BOOST_ANNOTATIONS, boards.BUCK_DEVICES),
           "bridge": (bridge.PARTS, bridge.ANNOTATIONS, bridge.DEVICES), "sine": (sine.PARTS, sine.ANNOTATIONS, sine.DEVICES),
           "sine by power": (sine.PARTS, sine.ANNOTATIONS.replace("draws: 14 A rms", "power: 300 W"), sine.DEVICES),
+          "gates and snubber": (cycles.PARTS, cycles.ANNOTATIONS, cycles.DEVICES),
           "rectifier": (rectifier.PARTS, rectifier.ANNOTATIONS, rectifier.DEVICES)}
 
 
