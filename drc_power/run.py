@@ -267,6 +267,8 @@ def _nets(solution: Solution, worst: Worst, first: int) -> list[NetPoint]:
     rows, start = [], first + 2 * len(solution.parts)
     inflow = solution.inflow_a()
     for k, net in enumerate(solution.system.layout.of_kind("node")):
+        if net not in solution.circuit.mode.board.netlist.nets:
+            continue  # the other end of an annotated track
         for objective in (start + 2 * k, start + 2 * k + 1):
             s = int(worst.at[objective])
             rows.append(NetPoint(solution.circuit.mode.name, _corner(solution.circuit, worst, objective, s), net,

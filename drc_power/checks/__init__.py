@@ -12,7 +12,7 @@ from .view import View
 
 STEADY_RULES = (heat.dissipation, heat.junction, envelope.envelope, derating.derating, network.headroom,
                 network.load_voltage, network.source_limit, network.runaway, network.unsolved, coverage.rails,
-                copper.sinks, copper.patches, linear.steady, second_breakdown.steady)
+                copper.sinks, copper.patches, copper.tracks, copper.vias, linear.steady, second_breakdown.steady)
 EVENT_RULES = (events.events,)
 
 

@@ -12,7 +12,6 @@ from .values import Text
 NOT_BUILT: dict[str, dict[str, bool]] = {
     "annotations": {
         "copper.board": True,
-        "copper.tracks": True,
     },
     "devices": {},
     "rules": {},

@@ -223,6 +223,7 @@ class TrackNote(Record):
     """One stretch of copper of a net; `to` is the part it leads to where a net has several."""
 
     IS: ClassVar[str] = "a track"
+    NEEDS: ClassVar[tuple[str, ...]] = ("width",)
     width: Length | None = None
     thickness: Length | None = None
     layer: Annotated[Text, one_of("outer", "inner")] | None = None

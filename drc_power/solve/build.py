@@ -18,6 +18,7 @@ from .stage_pairs import add_chopped
 from .stages import add_stages
 from .supply import add_loads, add_rails, is_active, reference_of
 from .system import temperature_dependent
+from .tracks import add_tracks
 from .variables import Box
 
 
@@ -36,6 +37,7 @@ def build_circuit(mode: Mode, levers: frozenset[str] = frozenset(), events: bool
     add_gate_drives(builder)
     add_parts(builder)
     add_dividers(builder)
+    add_tracks(builder)
     add_heat_paths(builder, temperature_dependent(builder.branches))
     if events:
         add_events(builder, partial(build_circuit, events=False))

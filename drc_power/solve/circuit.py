@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
 
 from ..board import Board, BoardPart, Mode, Quantity
 from ..faults import Mark
@@ -11,6 +12,9 @@ from .branches import Branch
 from .events.probe import EventProbe
 from .heat import HeatModel, HeatPath, Sink
 from .variables import ONE, ZERO, Box, Param
+
+if TYPE_CHECKING:
+    from .tracks import TrackProbe
 
 
 @dataclass(frozen=True, slots=True)
@@ -101,6 +105,7 @@ class Circuit:
     missing: Mapping[str, tuple[str, ...]]
     heat_missing: Mapping[str, str]
     events: tuple[EventProbe, ...] = ()
+    tracks: tuple[TrackProbe, ...] = ()
 
 
 @dataclass(slots=True)
@@ -131,6 +136,7 @@ class Builder:
     events: list[EventProbe] = field(default_factory=list)
     ambient_c: Param = ZERO
     inside: tuple[str, ...] = ()
+    tracks: list[TrackProbe] = field(default_factory=list)
 
     @property
     def board(self) -> Board:
@@ -182,4 +188,4 @@ class Builder:
         return Circuit(self.mode, self.box, tuple(self.branches), reference, HeatModel(tuple(self.paths), self.sinks, self.inside),
                        self.ambient_c, self.probes, tuple(self.loads), tuple(self.sources), tuple(self.unfed.values()),
                        {ref: tuple(data) for ref, data in self.missing.items()}, self.heat_missing,
-                       tuple(self.events))
+                       tuple(self.events), tuple(self.tracks))

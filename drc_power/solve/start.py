@@ -13,6 +13,7 @@ from .converters import Converter
 from .groups import Groups, key_of
 from .rectifier import Rectifier
 from .system import System
+from .track_family import Track
 from .variables import values_of
 
 STARTING_A = 1e-3
@@ -20,6 +21,8 @@ STARTING_A = 1e-3
 
 DIODE_OHM = 0.1
 """How far a diode is from its neighbour in this search; a resistor is as far as its resistance."""
+
+TRACK_OHM = 1e-3
 
 
 def starting_point(system: System, points: np.ndarray) -> np.ndarray:

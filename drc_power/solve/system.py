@@ -21,8 +21,9 @@ from .rectifier import Rectifier
 from .sine_bridge import SineBridge
 from .swings import Swings
 from .thermal_network import ThermalNetwork
+from .track_family import Track, Tracks
 
-LAWS = {**FAMILIES, HalfBridge: Groups, Converter: Groups, Rectifier: Groups, SineBridge: Groups, Cycled: Groups}
+LAWS = {**FAMILIES, Track: Tracks, HalfBridge: Groups, Converter: Groups, Rectifier: Groups, SineBridge: Groups, Cycled: Groups}
 """The family of each kind of branch and of group."""
 
 LEAK_SIEMENS = 1e-18
