@@ -12,7 +12,8 @@ as its age, so old current counts by how much more a longer pulse uses. A rectan
 For an area that heat alone limits, u is the junction's rise over its allowed rise (Duhamel's superposition); within the
 shortest line, where the area says less than that, the hardest moment counts in full, so u is never below it. The step
 to the line for any length falls on what has been sustained, not on a moment long gone. u grows with every current and
-with every length, and never lies above the rectangle of equal energy at the peak where lines go as a · t^m.
+with every length of a pulse, and where lines go as a · t^m it lies above the rectangle of equal energy at the peak by a
+slice's share at most.
 """
 
 from __future__ import annotations
@@ -44,26 +45,58 @@ def window_use(t_s, use, peak_use, lengths_s, beyond_use=None):
     if not lengths_s.size:
         return np.maximum.accumulate(np.asarray(beyond_use, dtype=float), axis=-1)
     use = np.maximum.accumulate(use, axis=-1)
-    old_s = t_s[:, 1:, None] - t_s[:, None, :-1]
-    young_s = np.maximum(t_s[:, 1:, None] - t_s[:, None, 1:], 0.0)
+    peak_use = np.maximum(peak_use, use[..., 0])
+    more = None if beyond_use is None else _step_up(use[..., -1], np.asarray(beyond_use, dtype=float))
+    share = _share_at(t_s[:, 1:], t_s, use, peak_use, lengths_s, more)
+    if use.shape[1] > FOLLOWED_SLICES:
+        return share
+    # The worst moment is where a slice ends, or where one comes of the age of a line.
+    for length_s in lengths_s:
+        at_s = np.minimum(t_s[:, :-1] + length_s, t_s[:, -1:])
+        there = _share_at(at_s, t_s, use, peak_use, lengths_s, more)
+        ends = (t_s[:, None, 1:] < at_s[..., None]).sum(axis=-1)
+        np.maximum.at(share, (np.arange(len(share))[:, None], np.minimum(ends, share.shape[1] - 1)), there)
+    return share
+
+
+FOLLOWED_SLICES = 200
+"""Up to so many slices every moment that may decide is looked at; the finer slices of a capture are their own moments."""
+
+
+def _step_up(last_use, beyond_use):
+    """What the line for any length uses more than the last pulse line; nothing where that has ended already."""
+    finite = np.isfinite(last_use)
+    return np.where(finite, np.maximum(beyond_use - np.where(finite, last_use, 0.0), 0.0), 0.0)
+
+
+def _share_at(at_s, t_s, use, peak_use, lengths_s, more):
+    """u at some moments of each trajectory, shape (trajectory, moment)."""
+    old_s = at_s[:, :, None] - t_s[:, None, :-1]
+    young_s = np.maximum(at_s[:, :, None] - t_s[:, None, 1:], 0.0)
     happened = old_s > 0.0
-    recent = happened & (young_s < lengths_s[0])
-    hardest = np.where(recent, np.maximum(peak_use, use[..., 0])[:, None, :], 0.0).max(axis=-1)
+    recent = happened & (young_s <= lengths_s[0] * (1.0 + 1e-12))
+    total = np.where(recent, peak_use[:, None, :], 0.0).max(axis=-1)
     within = _grown(use, old_s, lengths_s) - _grown(use, young_s, lengths_s)
-    flowed = use[..., 0] > 0.0
-    total = hardest + np.where(happened & flowed[:, None, :], within, 0.0).sum(axis=-1)
+    flowed = happened & (use[..., 0] > 0.0)[:, None, :]
+    total = total + np.where(flowed, within, 0.0).sum(axis=-1)
     total = np.where(_meets_end(use, old_s, happened, lengths_s), np.inf, total)
-    older = happened & flowed[:, None, :] & (old_s > lengths_s[-1] * (1.0 + 1e-12))
-    if beyond_use is None:
-        return np.where(older.any(axis=-1), np.nan, total)
-    beyond_use = np.asarray(beyond_use, dtype=float)
-    finite = np.isfinite(use[..., -1])
-    more = np.where(finite, np.maximum(beyond_use - np.where(finite, use[..., -1], 0.0), 0.0), 0.0)
-    reach_s = lengths_s[-1]
-    inside_s = np.where(happened, np.minimum(old_s, reach_s) - np.minimum(young_s, reach_s), 0.0)
-    with np.errstate(invalid="ignore"):
-        sustained = np.where(inside_s > 0.0, more[:, None, :] * inside_s / reach_s, 0.0).sum(axis=-1)
-    return total + np.where(older.any(axis=-1), np.maximum.accumulate(sustained, axis=-1), 0.0)
+    older = (flowed & (old_s > lengths_s[-1] * (1.0 + 1e-12))).any(axis=-1)
+    if more is None:
+        return np.where(older, np.nan, total)
+    return total + np.where(older, _sustained(at_s, t_s, more, lengths_s[-1]), 0.0)
+
+
+def _sustained(at_s, t_s, more, window_s):
+    """Highest mean over any window of a length so far, shape (trajectory, moment): it begins or ends where a slice does."""
+    best = np.zeros(at_s.shape)
+    for begins_s, known_s in ((t_s[:, 1:] - window_s, t_s[:, 1:]), (t_s[:, :-1], t_s[:, :-1] + window_s)):
+        starts_s, stops_s = (t_s[:, None, part] for part in (slice(0, -1), slice(1, None)))
+        inside_s = np.minimum(stops_s, begins_s[..., None] + window_s) - np.maximum(starts_s, begins_s[..., None])
+        with np.errstate(invalid="ignore"):
+            mean = np.where(inside_s > 0.0, more[:, None, :] * inside_s / window_s, 0.0).sum(axis=-1)
+        done = known_s[:, None, :] <= at_s[:, :, None] * (1.0 + 1e-12)
+        best = np.maximum(best, np.where(done, mean[:, None, :], 0.0).max(axis=-1))
+    return best
 
 
 def _grown(use, age_s, lengths_s):
