@@ -62,8 +62,8 @@ def draft_notes(survey: Survey, netlist: Netlist, path: str) -> list[str]:
 
 def _sections(survey: Survey, netlist: Netlist, existing: Existing, library: Library) -> tuple[Sections, frozenset[str]]:
     """What is new, section by section, and the parts of stages that switch."""
-    names, new_loads = _loads(survey, existing)
-    load_of = {consumer.ref: name for consumer, name in names.items()}
+    names, new_loads = _loads(survey, netlist, existing)
+    load_of = {bearer: name for consumer, name in names.items() for bearer in (consumer.ref, consumer.between) if bearer}
     stages = [entry for entry in stage_entries(survey, netlist, load_of) if not existing.in_a_stage(entry.names)]
     switching = switched_parts(survey) & _in_stages(existing, stages)
     new_parts = [e for ref, e in judged_elements(survey).items() if not existing.covers_part(ref)]
@@ -75,9 +75,9 @@ def _sections(survey: Survey, netlist: Netlist, existing: Existing, library: Lib
     }, switching
 
 
-def _loads(survey: Survey, existing: Existing) -> tuple[Mapping[Consumer, str], Mapping[Consumer, str]]:
+def _loads(survey: Survey, netlist: Netlist, existing: Existing) -> tuple[Mapping[Consumer, str], Mapping[Consumer, str]]:
     """The load that stands for each consumer, and those of them that the file does not have."""
-    usual = load_names(consumers(survey))
+    usual = load_names(consumers(survey, netlist))
     names, new = existing.loads_of(usual), {}
     taken = {statement.key for statement in existing.statements("loads")}
     for consumer in [each for each in usual if each not in names]:
@@ -121,7 +121,7 @@ def _remarks(survey: Survey, netlist: Netlist, existing: Existing) -> Iterator[s
                     if net not in known)
     root, _ = tree_of(existing.page.text.encode(), existing.path)
     yield from (f"{mark}: {said}" for mark, said in gone(root, netlist))
-    usual = load_names(consumers(survey))
+    usual = load_names(consumers(survey, netlist))
     there = existing.loads_of(usual)
     kept = [f"{c.ref} on {c.net}" for c in usual if c not in there and existing.keeps_out("loads", (c.ref, *c.nets))]
     if kept:

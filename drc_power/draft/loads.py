@@ -5,9 +5,10 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass, replace
 
+from drc_power.draft.wiring import Wiring
 from drc_power.draft.writing import BLANK, Entry, entry, listed, scalar, slug
 from drc_power.netlist.model import Netlist
-from drc_power.survey.model import Stage, Survey
+from drc_power.survey.model import Survey
 from drc_power.survey.voltages import leaf
 
 JUDGED_AS_PARTS = frozenset({"resistor", "thermistor", "potentiometer"})
@@ -34,16 +35,7 @@ class Consumer:
         return self.between or (self.net,)
 
 
-def phases_of(stage: Stage, survey: Survey) -> tuple[str, ...]:
-    """The nets where high and low parts of a three-phase bridge meet, () unless there are three."""
-    starts, ends = ({(e.ref, net) for e in survey.elements for net in (e.from_net, e.to_net) if e.ref in stage.parts.get(side, ())}
-                    for side in ("high", "low"))
-    both = dict.fromkeys(net for _, net in sorted(starts) if net in {other for _, other in ends})
-    found = tuple(net for net in both if net not in survey.grounds)
-    return found if len(found) == 3 else ()
-
-
-def consumers(survey: Survey) -> list[Consumer]:
+def consumers(survey: Survey, netlist: Netlist) -> list[Consumer]:
     """Who draws from which net. What hangs between two power nets counts once, from the rail if one of them is.
 
     What a chip draws from a rail that it makes itself is in what it draws from its own supply.
@@ -56,13 +48,13 @@ def consumers(survey: Survey) -> list[Consumer]:
             key = e.ref, frozenset((e.from_net, e.to_net))
             if key not in chosen or e.from_net in rails and chosen[key].net not in rails:
                 chosen[key] = Consumer(e.ref, e.from_net, e.to_net, e.role, e.because[0] if e.because else e.role)
-    return _with_phases_together(survey, list(chosen.values()))
+    return _with_phases_together(survey, netlist, list(chosen.values()))
 
 
-def _with_phases_together(survey: Survey, found: list[Consumer]) -> list[Consumer]:
+def _with_phases_together(survey: Survey, netlist: Netlist, found: list[Consumer]) -> list[Consumer]:
     """The consumers, with what hangs on the phases of a three-phase bridge as one."""
     for stage in survey.stages:
-        phases = phases_of(stage, survey) if stage.kind == "three-phase" else ()
+        phases = Wiring(survey, netlist).phases(stage) if stage.kind == "three-phase" else ()
         on_them = [consumer for consumer in found if consumer.net in phases]
         if on_them:
             first = replace(on_them[0], net=phases[0], back="", between=phases)
