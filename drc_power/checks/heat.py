@@ -29,7 +29,7 @@ def dissipation(view: View) -> Iterator[Judgement]:
 def _dissipation(element: ElementView) -> Judgement:
     rated = element.rating("power")
     allowed, limit = element.allowed("power", rated)
-    lacking = element.missing + (() if element.part.limit("power") is not None else ("limits.power",))
+    lacking = element.missing + _contradiction(element) + (() if element.part.limit("power") is not None else ("limits.power",))
     return Judgement(
         "dissipation.part", element.subject, "dissipation", "W", element.point.power_w, rated, allowed,
         element.view.board.where(element.part), "power", element.ref, mode=element.view.mode.name, limit=limit,
@@ -37,6 +37,13 @@ def _dissipation(element: ElementView) -> Judgement:
         remedy="use a part with a higher power rating, or take voltage or current off this one",
         inputs=lambda: element.sources("limits.power", "conduction.rds", "conduction.rds_scale", "conduction.knee",
                                "conduction.slope", "conduction.quiescent", "conduction.efficiency"))
+
+
+def _contradiction(element: ElementView) -> tuple[str, ...]:
+    """A converter chip that would lose less than nothing: its efficiency and the parts outside do not fit together."""
+    if np.nanmin(element.point.power_w, initial=0.0) < -1e-9:
+        return (f"an efficiency of {element.ref} that leaves room for the losses of the parts outside it",)
+    return ()
 
 
 def junction(view: View) -> Iterator[Judgement]:
@@ -49,7 +56,7 @@ def junction(view: View) -> Iterator[Judgement]:
 def _junction(element: ElementView) -> Judgement:
     rated = element.rating("tj")
     allowed, limit = element.allowed("tj", rated)
-    lacking = (*element.missing, *element.heat_missing,
+    lacking = (*element.missing, *_contradiction(element), *element.heat_missing,
                *(() if element.part.limit("tj") is not None else ("limits.tj",)))
     return Judgement(
         "junction.steady", element.subject, "junction temperature", "°C", element.point.tj_c, rated, allowed,

@@ -20,17 +20,18 @@ PINS = {
     "Q_PMOS_GDS": [("1", "G", "input"), ("2", "D", "passive"), ("3", "S", "passive")],
     "REG": [("1", "VI", "power_in"), ("2", "GND", "power_in"), ("3", "VO", "power_out")],
     "D_Bridge": [("1", "+", "passive"), ("2", "-", "passive"), ("3", "~", "passive"), ("4", "~", "passive")],
+    "BOOST": [("1", "VIN", "power_in"), ("2", "GND", "power_in"), ("3", "SW", "passive"), ("4", "FB", "input")],
     "PWM": [("1", "VIN", "power_in"), ("2", "GND", "power_in"), ("3", "HO", "output"), ("4", "LO", "output"), ("5", "FB", "input")],
     "MCU": [("1", "VDD", "power_in"), ("2", "VSS", "power_in"), ("3", "PA0", "bidirectional"), ("4", "PA1", "bidirectional")],
 }
 
-LIBRARIES = {"Conn_01x02": "Connector_Generic", "REG": "Regulator_Linear", "PWM": "Regulator_Controller", "MCU": "MCU_Generic"}
+LIBRARIES = {"Conn_01x02": "Connector_Generic", "REG": "Regulator_Linear", "PWM": "Regulator_Controller", "BOOST": "Regulator_Switching", "MCU": "MCU_Generic"}
 
 DESCRIPTIONS = {
     "Fuse": "Fuse", "R": "Resistor", "C": "Unpolarized capacitor", "L": "Inductor", "D": "Diode", "D_Schottky": "Schottky diode",
     "D_Bridge": "Diode bridge rectifier",
     "Q_NMOS_GDS": "N-MOSFET transistor, gate/drain/source", "Q_PMOS_GDS": "P-MOSFET transistor, gate/drain/source",
-    "REG": "Positive 800mA fixed linear regulator", "PWM": "Synchronous PWM controller, external switches", "MCU": "Microcontroller",
+    "REG": "Positive 800mA fixed linear regulator", "BOOST": "Boost converter, adjustable output", "PWM": "Synchronous PWM controller, external switches", "MCU": "Microcontroller",
     "Conn_01x02": "Generic connector, single row, 01x02",
 }
 
