@@ -156,15 +156,16 @@ BALANCED = 1e-9
 
 def _self_check(solution: Solution, run: Run) -> None:
     """Hold current and power balance of every solved point against `BALANCED`."""
-    from .solve.balance import current_imbalance, power_imbalance
+    from .solve.balance import current_imbalance, heat_imbalance, power_imbalance
 
     solved = ~solution.unsolved()
-    worst_i, worst_p = (float(f(solution)[solved].max(initial=0.0)) for f in (current_imbalance, power_imbalance))
+    worst_i, worst_p, worst_q = (float(f(solution)[solved].max(initial=0.0))
+                                 for f in (current_imbalance, power_imbalance, heat_imbalance))
     mode = solution.circuit.mode.name
     run.remarks.append(f"Self-check, mode {mode}: current in and out differ by {worst_i:.1e} of themselves, power by {worst_p:.1e}, "
-                       f"at {int(solved.sum())} corners.")
-    if max(worst_i, worst_p) > BALANCED:
-        raise ArithmeticError(f"mode {mode} does not balance: current {worst_i:.1e}, power {worst_p:.1e}")
+                       f"heat by {worst_q:.1e}, at {int(solved.sum())} corners.")
+    if max(worst_i, worst_p, worst_q) > BALANCED:
+        raise ArithmeticError(f"mode {mode} does not balance: current {worst_i:.1e}, power {worst_p:.1e}, heat {worst_q:.1e}")
 
 
 def _extremes(solution: Solution) -> Iterator[np.ndarray]:

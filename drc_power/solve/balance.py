@@ -1,4 +1,5 @@
-"""The self-check of a solution: current in equals current out at every net, power in equals power out of the network."""
+"""The self-check of a solution: current in equals current out at every net, power in equals power out of the network,
+heat in equals heat out at every sink, patch and enclosure."""
 
 from __future__ import annotations
 
@@ -36,3 +37,9 @@ def power_imbalance(solution: Solution) -> np.ndarray:
         for _, power, _ in family.heats(x, p):
             taken += power.sum(axis=0)
     return np.abs(given - taken) / np.maximum(np.abs(given), 1e-300)
+
+
+def heat_imbalance(solution: Solution) -> np.ndarray:
+    """Largest |heat given off − heat taken in| over the heat taken in, of all computed surfaces, shape (sample,)."""
+    rows = [share for _, share in solution.system.thermal.imbalance(solution.x, solution.prepared.heat)]
+    return np.max(rows, axis=0) if rows else np.zeros(solution.n_samples)

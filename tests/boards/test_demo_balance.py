@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from drc_power.run import Run, read_board
-from drc_power.solve.balance import current_imbalance, power_imbalance
+from drc_power.solve.balance import current_imbalance, heat_imbalance, power_imbalance
 from drc_power.solve.build import build_circuit
 from drc_power.solve.solution import Engine
 
@@ -26,6 +26,7 @@ def test_every_point_balances(revision):
         assert not solution.unsolved().any()
         assert current_imbalance(solution).max() < 1e-9
         assert power_imbalance(solution).max() < 1e-9
+        assert heat_imbalance(solution).max() < 1e-9
 
 
 def test_junction_case_and_ambient_are_in_order():
