@@ -73,14 +73,16 @@ def dot(text):
         box = re.fullmatch(r'  (n\d+) \[label="((?:[^"\\]|\\.)*)", [^"]*\];', line)
         arrow = re.fullmatch(r'  (n\d+) -> (n\d+)(?: \[(?:label="((?:[^"\\]|\\.)*)")?(?:, )?(style=dotted)?\])?;', line)
         if box:
-            boxes[box[1]] = tuple(undone(part) for part in re.split(r"(?<!\\)(?:\\\\)*\\n", box[2]))
+            boxes[box[1]] = tuple(undone(box[2]).split("\n"))
         elif arrow:
             arrows.append((arrow[1], arrow[2], undone(arrow[3] or ""), bool(arrow[4])))
     return boxes, arrows
 
 
 def undone(text):
-    return re.sub(r"\\(.)", r"\1", text).replace("&amp;", "&")
+    """A DOT string without its escapes; `\\n` ends a line."""
+    plain = re.sub(r"\\(.)", lambda m: "\n" if m[1] == "n" else m[1], text)
+    return plain.replace("&amp;", "&")
 
 
 def test_power_runs_from_the_source_through_elements_and_rails_to_the_loads():
@@ -143,7 +145,7 @@ def test_a_list_sign_in_front_is_no_list():
     assert not re.search(r'"(- |1\. )', text)
 
 
-HOSTILE = ['"]; n1 -> n2; a["', "end", "a\\", "\\N", "<b>x</b>", "&lt;", "#quot;", "```\n# x", "|x|", "a;b", "subgraph x", "‮rtl", "\x1b[2J", "%%{init}%%",
+HOSTILE = ["\\", "\\\\", '"]; n1 -> n2; a["', "end", "a\\", "\\N", "<b>x</b>", "&lt;", "#quot;", "```\n# x", "|x|", "a;b", "subgraph x", "‮rtl", "\x1b[2J", "%%{init}%%",
            "x" * 5000, "日本", "click n1 href", "`tick`", "a\nb", "_x_ *y*", "%s {0} {}"]
 
 
