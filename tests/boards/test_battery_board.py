@@ -155,3 +155,33 @@ def test_a_rail_without_a_voltage_is_unproven_and_so_is_what_hangs_on_it(tmp_pat
     assert [f.verdict for f in result.findings if f.rule == "coverage.rail"] == ["unproven"]
     assert not [f for f in result.findings if f.ref == "U1" and f.rule in ("junction.steady", "dissipation.part") and f.verdict == "met"]
     assert finding(result, "F1", "derating.current").verdict == "unproven"
+
+
+ABOUT_OPERATION = ("dissipation.part", "junction.steady", "envelope.steady", "derating.vds", "derating.id", "derating.vin",
+                   "derating.current", "network.voltage", "network.headroom")
+
+
+@pytest.mark.parametrize("rail", ["  VBAT: {source: J1, limit: 10 A}\n", ""], ids=["no voltage", "no rail at all"])
+def test_behind_a_supply_that_nobody_gave_nothing_is_met(tmp_path, rail):
+    """At zero volt every part would look safe: the worst kind of pass."""
+    annotations = ANNOTATIONS.replace("  VBAT: {voltage: 20 V .. 24 V .. 28 V, source: J1, limit: 10 A}\n", rail)
+    assert annotations != ANNOTATIONS
+    annotations = annotations.replace('  "+5V": {voltage: 5 V}\n', "")
+    if not rail:
+        annotations = annotations.replace("rails:\n", "rails: {}\n")
+    result = check(write_board(tmp_path, PARTS, annotations, DEVICES))
+    assert [(f.ref or f.net, f.rule) for f in result.findings if f.rule in ABOUT_OPERATION and f.verdict in ("met", "close")] == []
+    assert {f.ref for f in result.findings if f.verdict == "unproven"} >= {"F1", "Q1", "Q2", "R3"}
+
+
+def test_a_second_supply_that_nobody_annotated_is_not_met_at_zero_volt(tmp_path):
+    """A FET that switches a second battery's load, on a board whose first battery is annotated in full."""
+    parts = PARTS | {"J3": ("Conn_01x02", "SECOND", "VB2", "GND"), "Q3": ("Q_NMOS_GDS", "NF6008", "/G3", "/LAMP-", "GND"),
+                     "J4": ("Conn_01x02", "LAMP", "VB2", "/LAMP-")}
+    annotations = ANNOTATIONS.replace("  R3: {device: shunt-2512}", "  R3: {device: shunt-2512}\n  Q3: {device: nfet-60v, gate: 10 V}")
+    annotations = annotations.replace("sinks:", '  lamp: {net: VB2, return: "/LAMP-", draws: 2 A}\nsinks:')
+    result = check(write_board(tmp_path, parts, annotations, DEVICES))
+    of_q3 = [f for f in result.findings if f.ref == "Q3" and f.rule in ABOUT_OPERATION]
+    assert of_q3
+    assert {f.verdict for f in of_q3} == {"unproven"}
+    assert finding(result, "Q2", "junction.steady").verdict == "met"
