@@ -82,7 +82,8 @@ class EventView(ElementView):
         found = () if path.case_k_per_w is not None else ("thermal.rth_jc",)
         if any(capacities(self.view.solution.circuit, self.ref)):
             return found
-        return (*found, f"sinks.{path.sink}.capacity" if path.sink else "thermal.capacity")
+        named = path.sink in self.view.board.annotations.sinks
+        return (*found, f"sinks.{path.sink}.capacity" if named else "thermal.capacity")
 
     @cached_property
     def split_missing(self) -> tuple[str, ...]:

@@ -129,6 +129,12 @@ def ring_patch(note: PatchNote, pad_m2: float) -> rings.RingPatch:
     return rings.RingPatch((pad_m2 / np.pi) ** 0.5, radius_m, radius_m + BARE_M, foil_m, (layers - 1) * foil_m, vias_w_per_k(note))
 
 
+def patch_capacity_j_per_k(note: PatchNote) -> float:
+    """Heat capacity of the copper alone, at least: the laminate under it takes up heat more slowly."""
+    layers = note.layers.span.min if note.layers is not None else 1.0
+    return MATERIALS["copper"][1] * least(note.area) * least(note.thickness, FOIL_M) * layers
+
+
 def vias_w_per_k(note: PatchNote) -> float:
     """Conductance of the vias through the board."""
     if note.vias is None:

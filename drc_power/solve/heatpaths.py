@@ -164,7 +164,8 @@ def _patch(builder: Builder, name: str, note: PatchNote) -> Sink:
             raise _Missing(f"copper.patches.{name}.vias.{key}")
     pad_m2, said = smallest_pad(builder, name)
     surface = _made(lambda: cooling.patch_surface(note, pad_m2, said, _around(builder)), note.mark)
-    return Sink(copper_key(name), ZERO, builder.ambient_c, surface, AIR if AIR in builder.sinks else None)
+    into = AIR if AIR in builder.sinks else None
+    return Sink(copper_key(name), ZERO, builder.ambient_c, surface, into, cooling.patch_capacity_j_per_k(note))
 
 
 def smallest_pad(builder: Builder, patch: str) -> tuple[float, str]:

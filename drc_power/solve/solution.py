@@ -18,6 +18,7 @@ from .stability import CERTAIN_BELOW, climb, gain_bound, loop_gain
 from .start import starting_point
 from .swings import swing_loss_w
 from .system import Prepared, System
+from .track_family import Track
 from .variables import Param, values_of
 
 RUNAWAY_HELD_C = 150.0
@@ -127,7 +128,7 @@ class Solution:
     def _linked_with(self, net: str) -> set[str]:
         links: dict[str, set[str]] = {}
         for branch in self.circuit.branches:
-            if isinstance(branch, OneWay) or (isinstance(branch, Resistive) and branch.load is None):
+            if isinstance(branch, (OneWay, Track)) or (isinstance(branch, Resistive) and branch.load is None):
                 links.setdefault(branch.a, set()).add(branch.b)
                 links.setdefault(branch.b, set()).add(branch.a)
         stiff = set(self.system.layout.reference) | {b.b for b in self.circuit.branches if isinstance(b, (Linear, Switching))}
@@ -157,9 +158,7 @@ class Solution:
         sink = self.circuit.heat.sinks[name]
         if sink.surface is None:
             return self.value(sink.r_k_per_w)
-        around_c = self.temperatures.sink_c[sink.into] if sink.into else self.value(sink.start_c)
-        rise_k, heat_w = self.temperatures.sink_c[name] - around_c, self.temperatures.sink_w[name]
-        return rise_k / np.maximum(heat_w, 1e-9)
+        return self.system.thermal.sink_k_per_w(name, self.x, self.prepared.heat)
 
     def in_range(self, names: Iterable[str]) -> np.ndarray:
         """Where the laws of the given sinks' surfaces hold, and of the air that they stand in, shape (sample,)."""

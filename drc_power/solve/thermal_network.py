@@ -19,7 +19,7 @@ import numpy as np
 
 from .heat import AIR, HeatModel, HeatPath, Temperatures, own_of
 from .layout import Layout
-from .surfaces import Surfaces
+from .surfaces import LEAST_RISE_K, Surfaces
 from .variables import values_of
 
 Values = Mapping[str, np.ndarray]
@@ -197,6 +197,15 @@ class ThermalNetwork:
             around = prepared["air"] + x[self.air_at]
             r[k] = 1.0 / self.surfaces.heat(x[self.sink_at[k]], around[k])[1]
         return r
+
+    def sink_k_per_w(self, name: str, x: np.ndarray, prepared: Values) -> np.ndarray:
+        """Rise over heat of one computed surface where it stands [K/W]; without heat, that of its smallest rise."""
+        k, row = self.sinks.index(name), self.by_surface.tolist().index(self.sinks.index(name))
+        around = (prepared["air"] + x[self.air_at])[self.by_surface]
+        rise = np.maximum(x[self.sink_at[k]] - around[row], LEAST_RISE_K)
+        surface_c = x[self.sink_at[self.by_surface]].copy()
+        surface_c[row] = around[row] + rise
+        return rise / self.surfaces.heat(surface_c, around)[0][row]
 
     def temperatures(self, x: np.ndarray, prepared: Values, power_w: Values, points: np.ndarray) -> Temperatures:
         """Steady temperatures of junctions, cases and sinks: unknowns read off x, the rest by their resistances."""

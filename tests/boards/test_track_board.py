@@ -224,3 +224,15 @@ def test_the_melting_current_of_the_thinnest_copper(tmp_path):
     circular_mils = least_m2 / (np.pi / 4 * MIL**2)
     by_hand = circular_mils * np.sqrt(np.log10(1 + (1083 - 60) / (234 + 60)) / 33 / 0.5)
     assert probe.melts_at_a(np.array([0.5]), np.array([60.0]))[0] == pytest.approx(by_hand, rel=1e-9)
+
+
+@pytest.mark.parametrize("event", ["kind: overload, to: busy", "kind: stall, load: heater, limit: 6 A"])
+def test_an_event_still_reaches_the_fuse_behind_a_track(tmp_path, event):
+    events = f"events:\n  more: {{{event}, lasts: 2 s, from: run}}\nmodes:\n  run: {{}}\n  busy: {{loads: {{heater: 4 ohm}}}}\n"
+    plain = check(write_board(tmp_path, PARTS, EXACT + events, DEVICES, RULES))
+    folder = tmp_path / "tracked"
+    folder.mkdir()
+    tracked = check(write_board(folder, PARTS, EXACT + TRACKS + events, DEVICES, RULES))
+    about = [{(f.ref, f.rule, f.stress) for f in result.findings if f.event and f.ref} for result in (plain, tracked)]
+    assert about[0] == about[1]
+    assert {ref for ref, _, _ in about[0]} >= ({"F1", "Q1"} if "stall" in event else {"Q1"})

@@ -10,6 +10,8 @@ import numpy as np
 from ...board import EventNote, LoadNote, Mode, Span, StageNote, stage_parts
 from ..branches import OneWay, Resistive
 from ..circuit import Builder, Circuit
+from ..heat import TRACKS
+from ..track_family import Track
 from ..variables import Box, Variable
 from .other_mode import OtherNetwork
 from .paths import rectangle
@@ -117,10 +119,10 @@ def _way(builder: Builder, nets: set[str], ends: set[str], closed: set[str], ups
     """The parts on the shortest way from the nets to one of the ends, against the current or with it."""
     links: dict[str, list[tuple[str, str]]] = {}
     for branch in builder.branches:
-        if not isinstance(branch, (Resistive, OneWay)) or branch.part is None or getattr(branch, "load", None) is not None:
+        if not isinstance(branch, (Resistive, OneWay, Track)) or branch.part is None or getattr(branch, "load", None) is not None:
             continue
         links.setdefault(branch.b if upstream else branch.a, []).append((branch.a if upstream else branch.b, branch.part))
-        if isinstance(branch, Resistive):
+        if isinstance(branch, (Resistive, Track)):
             links.setdefault(branch.a if upstream else branch.b, []).append((branch.b if upstream else branch.a, branch.part))
     came: dict[str, tuple[str, str] | None] = dict.fromkeys(sorted(nets - closed))
     queue = list(came)
@@ -130,7 +132,7 @@ def _way(builder: Builder, nets: set[str], ends: set[str], closed: set[str], ups
             while came[net] is not None:
                 net, part = came[net]
                 found.append(part)
-            return found
+            return [part for part in found if part != TRACKS]
         for other, part in links.get(net, ()):
             if other not in came and other not in closed:
                 came[other] = (net, part)

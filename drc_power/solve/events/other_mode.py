@@ -132,10 +132,9 @@ def _beyond_k(before: Solution, after: Solution, ref: str, losses, extra_w: np.n
     if not path.sink:
         fixed = before.circuit.mode.parts[ref].note.heat is not None and before.circuit.mode.parts[ref].note.heat.case is not None
         return 0.0 * t_s if fixed else _slow_k(own, near_j or far_j, extra_w, moved_c, t_s)
-    sink = before.circuit.heat.sinks[path.sink]
     members = [p.part for p in before.circuit.heat.paths if p.sink == path.sink and p.part in losses]
     all_w = sum(losses[member] - before.powers_w[member][:, None] for member in members)
-    return own[:, None] * extra_w + _slow_k(before.value(sink.r_k_per_w), far_j, all_w, moved_c, t_s)
+    return own[:, None] * extra_w + _slow_k(before.sink_k_per_w(path.sink), far_j, all_w, moved_c, t_s)
 
 
 def _slow_k(r: np.ndarray, c_j_per_k: float, extra_w: np.ndarray, moved_c: np.ndarray, t_s: np.ndarray) -> np.ndarray:
