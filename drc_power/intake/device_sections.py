@@ -87,6 +87,10 @@ class Conduction(Section):
     """
 
     IS: ClassVar[str] = "conduction"
+    # Not rds_scale, at_gate, slope, tempco, knee_tempco: left out they have a meaning, for which a blank must not pass.
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset(
+        "rds saturation knee forward clamp standoff dropout quiescent reference efficiency resistance winding primary secondary "
+        "esr source".split())
     rds: Annotated[Mapping[float | None, Quantity], Reads(_by_gate_voltage)] = {}
     rds_scale: Annotated[Table, table(TEMPERATURE, reader("number", above=0))] | None = None
     at_gate: VoltageRating | None = None
@@ -123,6 +127,7 @@ class Gate(Section):
     """Gate of a mosfet: total charge, threshold, edge times."""
 
     IS: ClassVar[str] = "gate"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"charge", "threshold", "rise", "fall", "source"})
     charge: Charge | None = None
     threshold: Voltage | None = None
     rise: EdgeTime | None = None
@@ -133,6 +138,7 @@ class Switching(Section):
     """Edge times of a bjt or igbt."""
 
     IS: ClassVar[str] = "switching"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"rise", "fall", "source"})
     rise: EdgeTime | None = None
     fall: EdgeTime | None = None
 
@@ -141,6 +147,7 @@ class StoredCharge(Section):
     """Charges that every switching cycle moves: output and reverse recovery, at a voltage."""
 
     IS: ClassVar[str] = "charge"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"output", "recovery", "source"})
     output: Charge | None = None
     recovery: Charge | None = None
     at: VoltageRating | None = None
@@ -150,6 +157,7 @@ class Body(Section):
     """Body diode: V = knee + slope · I."""
 
     IS: ClassVar[str] = "body"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"knee", "source"})
     knee: VoltageMagnitude | None = None
     slope: Resistance | None = None
 
@@ -158,6 +166,7 @@ class Transfer(Section):
     """`alpha`: temperature coefficient of the drain current [A/K] over drain current [A], at constant gate voltage."""
 
     IS: ClassVar[str] = "transfer"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"alpha", "source"})
     alpha: Annotated[Table, table(FROM_ZERO["current"], reader("current_tempco"))] | None = None
 
 
@@ -165,6 +174,7 @@ class Thermal(Section):
     """From junction to case (bottom, top), board and ambient. `zth_jc` is (s, K/W), `foster` (K/W, s), `cauer` (K/W, J/K)."""
 
     IS: ClassVar[str] = "thermal"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"rth_jc", "rth_jc_top", "rth_jb", "rth_ja", "zth_jc", "foster", "cauer", "source"})
     rth_jc: ThermalResistanceAboveZero | None = None
     rth_jc_top: ThermalResistanceAboveZero | None = None
     rth_jb: ThermalResistanceAboveZero | None = None
@@ -175,7 +185,7 @@ class Thermal(Section):
     cauer: Annotated[Table, table(POSITIVE["thermal_resistance"], POSITIVE["thermal_capacity"], rising=False)] | None = None
 
     def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
-        given = [key for key in ("zth_jc", "foster", "cauer") if key in self.written]
+        given = [key for key in ("zth_jc", "foster", "cauer") if key in self.written and key not in self.blank]
         if len(given) > 1:
             yield complaint(self.source_of(given[1]), f"{' and '.join(given)} in one device", "keep one of them")
 
@@ -200,5 +210,6 @@ class Envelope(Section):
     """Digitised safe-area curves, case at 25 °C, as (V, A). `pulses` runs from the shortest length [s]."""
 
     IS: ClassVar[str] = "an envelope"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"dc", "source"})
     dc: Annotated[Table, table(POSITIVE["voltage"], POSITIVE["current"])] | None = None
     pulses: Annotated[tuple[tuple[float, Table], ...], Reads(_by_length)] = ()

@@ -18,20 +18,29 @@ from .documents import record_from, refuse
 from .fields import Named, Word, as_branch, collected, each, one_of, read_word, table
 from .files import inside, read_file
 from .record import Reads, Record, complaint, shorten, together, unknown_keys
-from .tree import Branch, Row
+from .tree import Blank, Branch, Row
 from .values import Quantity, SourceFile, Table, Text
 
 
-def _limits(node: Any) -> dict[str, Quantity | Table]:
-    """The limits by name. A `source` among them is handed to each that has none of its own."""
+class Limits(dict):
+    """The limits by name; `blank` names those that are left to be filled in."""
+
+    def __init__(self, values: Mapping[str, Quantity | Table], blank: Iterable[str] = ()) -> None:
+        super().__init__(values)
+        self.blank = frozenset(blank)
+
+
+def _limits(node: Any) -> Limits:
+    """The limits of a device. A `source` among them is handed to each that has none of its own."""
     branch = as_branch(node)
-    known = [key for key in branch if key in LIMITS]
+    blank = [str(key) for key, value in branch.items() if key in LIMITS and isinstance(value, Blank)]
+    known = [key for key in branch if key in LIMITS and key not in blank]
     values, complaints = collected(lambda key: LIMITS[key](branch[key]), known)
     complaints += unknown_keys(branch, (*LIMITS, "source"), "limits")
     if complaints:
         raise together(complaints)
-    source = read_word(branch["source"]) if "source" in branch else None
-    return {str(key): _sourced(value, source) for key, value in zip(known, values, strict=True)}
+    source = read_word(branch["source"]) if branch.get("source") else None
+    return Limits({str(key): _sourced(value, source) for key, value in zip(known, values, strict=True)}, blank)
 
 
 def _sourced(value: Quantity | Table, source: Text | None) -> Quantity | Table:
@@ -55,6 +64,7 @@ class Device(Record):
     """One device. `limits` holds magnitudes, as `Quantity` or, where the contract has a curve, `Table`."""
 
     IS: ClassVar[str] = "a device"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"source", "leakage"})
     NEEDS: ClassVar[tuple[str, ...]] = ("kind",)
     kind: Annotated[Text, one_of(*KINDS)] | None = None
     channel: Annotated[Text, one_of("n", "p", "npn", "pnp")] | None = None
@@ -81,7 +91,12 @@ class Device(Record):
     def complaints_about_keys(cls, branch: Branch) -> list[PydanticCustomError]:
         general = super().complaints_about_keys(branch)
         kind = KINDS.get(str(branch.get("kind", "")))
-        return general + list(_foreign_keys(branch, kind)) if kind else general
+        return [*general, *_foreign_keys(branch, kind), *_idle_current_left_blank(branch)] if kind else general
+
+    @property
+    def blank_limits(self) -> frozenset[str]:
+        """The limits that are left to be filled in."""
+        return getattr(self.limits, "blank", frozenset())
 
     def entry(self, path: str) -> Mark:
         """Where one entry was written, such as `entry("limits.vds")`; the device's own mark if it is not there."""
@@ -105,6 +120,13 @@ class Device(Record):
         """Whether `matches` names a part of this value and these fields; `value` among its keys is the part's value."""
         known = {**fields, "value": value}
         return any(all(fnmatch.fnmatchcase(known.get(key, ""), glob) for key, glob in row.items()) for row in self.matches)
+
+
+def _idle_current_left_blank(branch: Branch) -> Iterator[PydanticCustomError]:
+    """A switching regulator's current without load counts as none where it is left out, so a blank must not pass for it."""
+    conduction = branch.get("conduction")
+    if branch["kind"] == "switching-regulator" and isinstance(conduction, Branch) and isinstance(conduction.get("quiescent"), Blank):
+        yield complaint(conduction["quiescent"].mark, "quiescent is left blank", "give it, or leave the key out for none")
 
 
 def _foreign_keys(branch: Branch, kind: Kind) -> Iterator[PydanticCustomError]:

@@ -106,7 +106,7 @@ def _incomplete(view: ModeView, file: AnnotationFile) -> Iterator[Fault]:
     for name, load in view.loads.items():
         if not load.net and not load.between:
             yield _lacking("load", name, load, "net", file.loads)
-        elif not load.demands:
+        elif not load.demands and not load.lacks_demand:
             found = f"the load {shorten(name)!r} has no demand in mode {view.name}"
             yield Fault(load.mark, found, "give draws, power or resistance; 0 A if it takes nothing")
     for name, stage in view.stages.items():

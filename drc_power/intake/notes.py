@@ -43,6 +43,7 @@ class Surroundings(Record):
     """The air that the board stands in. `air` is the text "still" or a speed."""
 
     IS: ClassVar[str] = "surroundings"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"ambient"})
     ambient: Temperature | None = None
     altitude: Altitude | None = None
     air: Annotated[Text | Quantity, Reads(_air)] | None = None
@@ -61,6 +62,7 @@ class RailNote(Record):
     """One rail. `source` names the parts that feed it; left out, it is held by the regulator that drives it."""
 
     IS: ClassVar[str] = "a rail"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"voltage"})
     voltage: Voltage | None = None
     source: Words = ()
     return_: Word | None = None
@@ -79,9 +81,10 @@ DEMANDS_OF_A_MOTOR = ("draws", "power")
 
 
 class LoadNote(Record):
-    """One load. Exactly one of `draws`, `power`, `resistance` is set; `kind: motor` may add `resistance`."""
+    """One load. Exactly one of `draws`, `power`, `resistance` is set or blank; `kind: motor` may add `resistance`."""
 
     IS: ClassVar[str] = "a load"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset(DEMANDS)
     net: Word | None = None
     between: Words = ()
     return_: Word | None = None
@@ -102,6 +105,12 @@ class LoadNote(Record):
         """The keys that say what the load takes; a motor's resistance is one only where no other is given."""
         given = tuple(key for key in DEMANDS if getattr(self, key) is not None)
         return given[:1] if self.is_motor and given[1:] == ("resistance",) else given
+
+    @property
+    def lacks_demand(self) -> bool:
+        """Whether what the load takes is left to be filled in; a stalled motor's resistance alone does not fill it in."""
+        given = set(self.demands) - ({"resistance"} if self.is_motor else set())
+        return bool(self.blank & set(DEMANDS)) and not given
 
     def complaints_between_keys(self) -> Iterable[PydanticCustomError]:
         if len(self.demands) > 1:
@@ -142,6 +151,7 @@ class PartNote(Record):
     """What the file says of one part. After `resolve_parts`, merged from every pattern that fits."""
 
     IS: ClassVar[str] = "a part"
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"device", "gate", "overshoot"})
     device: Word | None = None
     resistance: Resistance | None = None
     state: Annotated[Text, one_of("conducting", "blocked", "switching", "linear")] | None = None

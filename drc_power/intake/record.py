@@ -70,7 +70,8 @@ class Reads:
 class Record(BaseModel):
     """A mapping of an input file. Attributes mirror its keys; a key left out is None or empty.
 
-    A key that Python reserves takes a `_` at its end: `return_`, `from_`, `with_`.
+    A key that Python reserves takes a `_` at its end: `return_`, `from_`, `with_`. A key of `MAY_BE_BLANK` may stand
+    with nothing after its colon: it is written, its attribute is as if left out, and `blank` names it.
     """
 
     model_config = ConfigDict(
@@ -82,8 +83,10 @@ class Record(BaseModel):
     )
     IS: ClassVar[str] = "a record"
     NEEDS: ClassVar[tuple[str, ...]] = ()
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset()
     _mark: Mark = PrivateAttr(NOWHERE)
     _sources: Mapping[str, Mark] = PrivateAttr(default_factory=dict)
+    _blank: frozenset[str] = PrivateAttr(frozenset())
 
     @classmethod
     def of(cls, mark: Mark = NOWHERE, **values: Any) -> Self:
@@ -111,6 +114,11 @@ class Record(BaseModel):
         """The attributes that the file gives, in its order."""
         return tuple(self._sources)
 
+    @property
+    def blank(self) -> frozenset[str]:
+        """The attributes that the file names and leaves to be filled in."""
+        return self._blank
+
     def source_of(self, key: str) -> Mark:
         """Where the value of one key was written; the record's own mark if it was not."""
         return self._sources.get(key, self._mark)
@@ -119,6 +127,7 @@ class Record(BaseModel):
         """This record laid over `base`, key by key: what is written here wins."""
         merged = base.model_copy(update={key: getattr(self, key) for key in self.written})
         merged._sources = {**base._sources, **self._sources}
+        merged._blank = base._blank - set(self.written) | self._blank
         merged._mark = base._mark if base.written else self._mark
         return merged
 
@@ -127,6 +136,7 @@ class Record(BaseModel):
         defaults = type(self).of()
         changed = self.model_copy(update={key: getattr(defaults, key) for key in keys})
         changed._sources = {key: mark for key, mark in self._sources.items() if key not in keys}
+        changed._blank = self._blank - set(keys)
         return changed
 
     @classmethod
@@ -152,12 +162,14 @@ class Record(BaseModel):
         branch = as_mapping(data, cls.IS)
         complaints = cls.complaints_about_keys(branch)
         known = {key: value for key, value in branch.items() if key in cls.attributes()}
+        blank = {key for key, value in known.items() if isinstance(value, Blank) and key in cls.MAY_BE_BLANK}
         try:
-            record = handler(known)
+            record = handler({key: value for key, value in known.items() if key not in blank})
         except ValidationError as error:
             raise together([*complaints, *complaints_of(error)]) from None
         record._mark = branch.mark
         record._sources = {cls.attributes()[key]: branch.marks[key] for key in known}
+        record._blank = frozenset(cls.attributes()[key] for key in blank)
         complaints = complaints or list(record.complaints_between_keys())
         if complaints:
             raise together(complaints)

@@ -10,7 +10,7 @@ HEAD = "format: 1\nnetlist: b.net\n"
 WRONG = [
     ("rails: {A: {voltage: 24}}", "3:22: '24' has no unit, a voltage is due; write for example 24 V"),
     ("rails: {A: {voltage: 24 A}}", "3:22: '24 A' is a current, a voltage is due; write for example 24 V"),
-    ("rails: {A: {voltage: }}", "3:22: a voltage is due here, found nothing; write for example 24 V"),
+    ("rails: {A: {limit: }}", "3:20: a current is due here, found nothing; write for example 350 mA"),
     ("rails: {A: {voltage: [1 V]}}", "3:22: a voltage is due here, found a list; write for example 24 V"),
     ("rails: {A: {voltage: {min: 1 V, maxi: 2 V}}}", "3:33: 'maxi' is not an end of a span; write 'max'"),
     ("rails: {A: {voltage: {min: 3 V, max: 2 V}}}", "3:22: min, typ and max do not rise; write the least value as min, the greatest as max"),
