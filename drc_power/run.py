@@ -194,7 +194,9 @@ def _gaps(engine: Engine, house: House, worst: Worst, judgements: list[Judgement
         was, now = judgement.margins()[sample], other.margins()[sample * len(missing) + np.arange(len(missing))]
         # Without a datum the check itself needs, nothing is left to compare.
         for column, margin in zip(missing, now, strict=True):
-            if not judgement.lacking and not (margin >= was - 1e-9 * max(1.0, abs(was))):
+            change, least = margin - was, 1e-9 * max(1.0, abs(was))
+            holds = abs(change) <= least if variables[column].either_way else change >= -least
+            if not judgement.lacking and not holds:
                 reasons[k].append(variables[column].why)
     return reasons
 

@@ -8,6 +8,7 @@ from ..solve.solution import Solution
 from . import copper, coverage, derating, envelope, events, heat, linear, network, second_breakdown
 from .house import House
 from .judgement import Judgement
+from .supplied import held_back
 from .view import View
 
 STEADY_RULES = (heat.dissipation, heat.junction, envelope.envelope, derating.derating, network.headroom,
@@ -19,7 +20,8 @@ EVENT_RULES = (events.events,)
 def judge(solution: Solution, house: House, only: str | None = None) -> list[Judgement]:
     """Every steady judgement of one mode, or of one part alone, in an order that depends on the board alone."""
     view = View(solution, house, only)
-    found = [judgement for rule in STEADY_RULES for judgement in rule(view)]
+    found = list(held_back(view, (judgement for rule in STEADY_RULES for judgement in rule(view))))
+    found += coverage.loads_left_blank(view)
     judged = {judgement.ref for judgement in found if judgement.ref and not judgement.only_if_exceeded}
     return [*found, *coverage.unjudged(view, judged)]
 

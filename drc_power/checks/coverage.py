@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 
-from ..findings.identity import net_subject
+from ..findings.identity import named_subject, net_subject
 from .judgement import Judgement
 from .view import ElementView, View
 
@@ -18,6 +18,17 @@ def rails(view: View) -> Iterator[Judgement]:
             "coverage.rail", net_subject(pins, unfed.net), "supply", "V", view.solution.node_v(unfed.net), view.unknown(),
             view.unknown(), unfed.mark, "voltage", net=unfed.net, lacking=("supply",),
             why=unfed.text, remedy=unfed.remedy)
+
+
+def loads_left_blank(view: View) -> Iterator[Judgement]:
+    """`coverage.data` of loads whose demand is left blank: what they draw counts as nothing until then."""
+    for name, load in view.mode.loads.items():
+        if load.lacks_demand:
+            yield Judgement(
+                "coverage.data", named_subject("load", name), f"demand of the load {name}", "", view.unknown(), view.unknown(),
+                view.unknown(), load.mark, None, net=view.board.net(load.net) if load.net else None, mode=view.mode.name,
+                lacking=("demand",), why=f"what the load {name} takes is left blank",
+                remedy=f"write loads: {{{name}: {{draws: ...}}}}, or power, or resistance; 0 A if it takes nothing")
 
 
 def unjudged(view: View, judged: Iterable[str]) -> Iterator[Judgement]:

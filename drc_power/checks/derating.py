@@ -37,7 +37,7 @@ def derating(view: View) -> Iterator[Judgement]:
     """`derating.*` of every element."""
     for element in view.elements():
         for row in STRESSES:
-            if element.kind in row.kinds and (row.must or element.part.limit(row.key) is not None):
+            if element.kind in row.kinds and (row.must or element.part.limit(row.key) is not None or element.leaves_blank(row.key)):
                 yield _judge(element, row)
 
 

@@ -129,6 +129,10 @@ class ElementView:
         rises = [found[net][1] for net in nets if net in found]
         return np.max(rises, axis=0) if rises else np.zeros(self.view.solution.n_samples)
 
+    def leaves_blank(self, stress: str) -> bool:
+        """Whether the device data names the rating and leaves it to be filled in."""
+        return self.part.device is not None and stress in self.part.device.blank_limits
+
     def rating(self, stress: str) -> np.ndarray:
         """The device's own limit at every sample; NaN where it is not given. A span counts by its lower end."""
         limit = self.part.limit(stress)

@@ -62,7 +62,7 @@ class RailNote(Record):
     """One rail. `source` names the parts that feed it; left out, it is held by the regulator that drives it."""
 
     IS: ClassVar[str] = "a rail"
-    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"voltage"})
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"voltage", "ac", "frequency"})
     voltage: Voltage | None = None
     source: Words = ()
     return_: Word | None = None

@@ -42,7 +42,7 @@ class StageNote(Record):
     """
 
     IS: ClassVar[str] = "a stage"
-    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"frequency", "duty", "dead_time"})
+    MAY_BE_BLANK: ClassVar[frozenset[str]] = frozenset({"frequency", "duty", "dead_time", "modulation", "power_factor"})
     kind: Annotated[Text, one_of(*STAGE_KEYS)] | None = None
     chip: Words = ()
     high: Words = ()

@@ -54,7 +54,8 @@ def add_half_bridge(builder: Builder, name: str, stage: StageNote) -> None:
 
 def add_single_switch(builder: Builder, name: str, stage: StageNote) -> None:
     """A switch that chops its load: with a diode across the load the current goes on, without one it stops."""
-    if stage.frequency is None and stage.duty is None:
+    left_blank = {"frequency", "duty"} & stage.blank
+    if stage.frequency is None and stage.duty is None and not left_blank:
         return
     switches, clamps = parts_named(builder, stage.switch), parts_named(builder, stage.clamp)
     if clamps and clamps[0].kind in DIODES | {"mosfet"}:
@@ -67,7 +68,10 @@ def add_single_switch(builder: Builder, name: str, stage: StageNote) -> None:
     duty = _duty(builder, name, stage)
     if stage.load is not None:
         builder.load_duties[str(stage.load)] = duty
-    builder.chopped[switches[0].ref] = (duty, builder.span(f"{name} at", stage.frequency))
+    frequency = builder.span(f"{name} at", stage.frequency)
+    if frequency is None and left_blank:
+        frequency = frequency_of(builder, name, stage, switches[0].ref)
+    builder.chopped[switches[0].ref] = (duty, frequency)
 
 
 def _duty(builder: Builder, name: str, stage: StageNote) -> Param:

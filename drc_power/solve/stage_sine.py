@@ -9,6 +9,7 @@ from ..faults import Fault, InputError
 from ..quantity import Span
 from .branches import Leg
 from .circuit import Builder
+from .parts import GAP_A
 from .position import Position
 from .sine_bridge import SineBridge
 from .stage_parts import (
@@ -136,6 +137,8 @@ def _demand(builder: Builder, name: str, stage: StageNote) -> tuple[str, Param, 
     if load is not None and (load.power is not None or load.resistance is not None):
         drive = "power" if load.power is not None else "resistance"
         return drive, builder.span(f"{stage.load} at", getattr(load, drive)), part
+    if load is not None and load.lacks_demand:
+        return "current", builder.box.gap(f"{stage.load} at", 0.0, GAP_A, "current", f"loads.{stage.load}.draws", load.mark, either_way=True), part
     raise InputError(Fault(stage.mark, f"stage {name} names no load", "write load: NAME, a name under loads:, or current: 14 A rms"))
 
 

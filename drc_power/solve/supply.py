@@ -21,19 +21,29 @@ def add_rails(builder: Builder) -> None:
     """Sources of rails fed from outside; set voltages of the regulators that hold the others."""
     for name, rail in builder.mode.rails.items():
         net = builder.board.net(name)
-        if rail.ac is not None:
+        if rail.ac is not None or "ac" in rail.blank:
             continue  # an alternating rail enters the network through its rectifier
         if rail.source:
             _add_source(builder, name, net, rail)
         elif rail.voltage is not None:
             _hold(builder, name, net, rail)
     _note_unset_regulators(builder)
+    _note_blank_rails(builder)
+
+
+def _note_blank_rails(builder: Builder) -> None:
+    """Rails whose voltage is left to be filled in, besides those that a source or a regulator has spoken for already."""
+    for name, rail in builder.mode.rails.items():
+        net = builder.board.net(name)
+        for key in sorted({"voltage", "ac"} & rail.blank) if net not in builder.unfed else ():
+            builder.unfed[net] = Unfed(net, f"the voltage of {name} is left blank{_guess(builder, net)}",
+                                       f'write rails: {{"{name}": {{{key}: ...}}}}', rail.mark)
 
 
 def reference_of(builder: Builder) -> str:
     """The ground that all voltages are measured against: the return of the first rail fed from outside."""
     for rail in builder.mode.rails.values():
-        if rail.source and rail.ac is None:
+        if rail.source and rail.ac is None and "ac" not in rail.blank:
             return builder.board.net(rail.return_) if rail.return_ else _source_ground(builder, rail)
     return builder.board.grounds[0]
 
@@ -152,7 +162,10 @@ def _add_load(builder: Builder, name: str, load: LoadNote, floor_v: float) -> No
     back = builder.board.net(load.return_) if load.return_ else ground_of(builder, net)
     part = str(load.heats) if load.heats else None
     duty, key = builder.load_duties.get(name, ONE), f"load {name}"
-    if load.draws is not None:
+    if load.lacks_demand:
+        unknown = builder.box.gap(f"{name} at", 0.0, GAP_A, "current", f"loads.{name}.draws", load.mark, either_way=True)
+        builder.add(CurrentLoad(key, net, back, unknown, part, duty))
+    elif load.draws is not None:
         builder.add(CurrentLoad(key, net, back, builder.span(f"{name} at", load.draws), part, duty))
     elif load.power is not None:
         builder.add(PowerLoad(key, net, back, builder.span(f"{name} at", load.power), floor_v, part, duty))
@@ -182,11 +195,12 @@ def _add_own_draw(builder: Builder, ref: str, part: BoardPart) -> None:
     data = part.device.conduction if part.device else None
     quiescent = data.quiescent if data and part.kind not in REGULATORS and not heated else None
     draws = part.note.draws or quiescent
-    if draws is None:
+    left_blank = data is not None and "quiescent" in data.blank and part.kind not in REGULATORS and not heated
+    if draws is None and not left_blank:
         return
     nets = supply_nets(builder, part)
     if len(nets) != 1:
         builder.lack(ref, "pins: {input: ...} (its supply pins are on no net or on several)")
         return
-    current = builder.span(f"{ref} draw", draws)
+    current = builder.span(f"{ref} draw", draws) or builder.gap(ref, "conduction.quiescent", 0.0, GAP_A, "current")
     builder.add(CurrentLoad(f"{ref} draw", nets[0], ground_of(builder, nets[0]), current, ref))

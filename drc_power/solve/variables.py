@@ -17,6 +17,7 @@ class Variable:
 
     A gap is a datum that nobody gave: it stands at its span, which is exact, and `probe` is a value to try, so
     that whatever moves for the worse when it is tried is known to depend on the missing datum. `why` says which.
+    either_way: a little of it may help where much of it harms, so whatever moves at all depends on it.
     """
 
     name: str
@@ -25,6 +26,7 @@ class Variable:
     mark: Mark
     probe: float | None = None
     why: str = ""
+    either_way: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -59,11 +61,11 @@ class Box:
             self.variables.append(Variable(name, dimension, span, mark))
         return Param(span.typ, self._index[name])
 
-    def gap(self, name: str, at: float, probe: float, dimension: str, why: str, mark: Mark) -> Param:
+    def gap(self, name: str, at: float, probe: float, dimension: str, why: str, mark: Mark, either_way: bool = False) -> Param:
         """The parameter for a datum that is missing: `at` is where it does nothing, `probe` a plausible value."""
         if name not in self._index:
             self._index[name] = len(self.variables)
-            self.variables.append(Variable(name, dimension, Span.exact(at), mark, probe, why))
+            self.variables.append(Variable(name, dimension, Span.exact(at), mark, probe, why, either_way))
         return Param(at, self._index[name])
 
     def index_of(self, name: str) -> int | None:
