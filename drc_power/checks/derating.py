@@ -43,7 +43,6 @@ def derating(view: View) -> Iterator[Judgement]:
 
 def _judge(element: ElementView, row: Stress) -> Judgement:
     value, lacking = row.read(element)
-    lacking = (*lacking, *element.adrift)
     rated = element.rating(row.key)
     allowed, limit = element.allowed(row.key, rated)
     if element.part.limit(row.key) is None:

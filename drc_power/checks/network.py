@@ -52,7 +52,6 @@ def load_voltage(view: View) -> Iterator[Judgement]:
             "network.voltage", named_subject("load", load.name), f"voltage at {load.name}", "V", value,
             view.unknown(), high if sense == "between" else low, load.mark, "voltage", net=load.a,
             mode=view.mode.name, sense=sense, low=low, proven=view.solved,
-            lacking=(f"a rail with a voltage and a source that reaches {load.a}",) if load.a in solution.circuit.adrift else (),
             remedy="lower the drop between source and load, or change the rail",
             inputs=lambda load=load: ((f"loads.{load.name}.needs", view.mode.loads[load.name].needs.text, view.board.place(load.mark)),))
 

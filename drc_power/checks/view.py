@@ -74,17 +74,8 @@ class ElementView:
 
     @cached_property
     def missing(self) -> tuple[str, ...]:
-        """Data of its own conduction that the solver had to do without, and a supply that nobody gave."""
-        return (*self.view.solution.circuit.missing.get(self.ref, ()), *self.adrift)
-
-    @cached_property
-    def adrift(self) -> tuple[str, ...]:
-        """What a user would write to feed the part, where no source of known voltage reaches it."""
-        adrift = self.view.solution.circuit.adrift
-        swing = self.probe.push_pull
-        ends = (swing.plus, swing.minus) if swing is not None else (self.probe.a, self.probe.b)
-        nets = [net for net in ends if net and net not in self.view.solution.circuit.reference]
-        return (f"a rail with a voltage and a source that reaches {nets[0]}",) if nets and adrift.issuperset(nets) else ()
+        """Data of its own conduction that the solver had to do without."""
+        return self.view.solution.circuit.missing.get(self.ref, ())
 
     @cached_property
     def heat_missing(self) -> tuple[str, ...]:

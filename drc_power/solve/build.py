@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from functools import partial
 
 from ..board import Mode
@@ -13,12 +12,11 @@ from .dividers import add_dividers
 from .events.build import add_events
 from .heatpaths import add_ambient, add_heat_paths
 from .parts import MAKERS
-from .rectifier import Rectifier
 from .stage_converters import note_converters
 from .stage_cycles import add_gate_drives, add_snubbers
 from .stage_pairs import add_chopped
 from .stages import add_stages
-from .supply import REGULATORS, add_loads, add_rails, is_active, reference_of
+from .supply import add_loads, add_rails, is_active, reference_of
 from .system import temperature_dependent
 from .tracks import add_tracks
 from .variables import Box
@@ -43,8 +41,7 @@ def build_circuit(mode: Mode, levers: frozenset[str] = frozenset(), events: bool
     add_heat_paths(builder, temperature_dependent(builder.branches))
     if events:
         add_events(builder, partial(build_circuit, events=False))
-    reference = _references(builder)
-    return builder.finish(reference, nets_adrift(builder, reference))
+    return builder.finish(_references(builder))
 
 
 def add_parts(builder: Builder) -> None:
@@ -82,35 +79,3 @@ def _references(builder: Builder) -> tuple[str, ...]:
             reached.add(net)
             queue.append(net)
     return (reference, *(net for net in builder.board.grounds if net not in reached))
-
-
-def nets_adrift(builder: Builder, reference: Sequence[str]) -> frozenset[str]:
-    """The nets that nothing leads to from a source of known voltage, through any branch or blocked part.
-
-    A rail that nobody annotated, a part in the way that the network could not take in: whatever lies behind would rest
-    at zero volt and look safe.
-    """
-    links: dict[str, set[str]] = {}
-    reached: list[str] = []
-    for branch in builder.branches:
-        nets = set(branch.nodes.values()) if hasattr(branch, "nodes") else {branch.a, branch.b}
-        _link(links, nets - set(reference))
-        if isinstance(branch, Source):
-            reached.append(branch.a)
-        elif isinstance(branch, Rectifier):
-            reached += nets
-    for probe in builder.probes.values():
-        # A blocked part parts two nets that belong together; a regulator without a set voltage leads nowhere.
-        if probe.kind not in REGULATORS or probe.state == "blocked" or probe.currents:
-            _link(links, {net for net in (probe.a, probe.b) if net} - set(reference))
-    found = set(reached)
-    while reached:
-        new = links.get(reached.pop(), set()) - found
-        found |= new
-        reached += new
-    return frozenset(links.keys() - found)
-
-
-def _link(links: dict[str, set[str]], nets: set[str]) -> None:
-    for net in nets:
-        links.setdefault(net, set()).update(nets)

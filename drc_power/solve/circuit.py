@@ -106,8 +106,6 @@ class Circuit:
     heat_missing: Mapping[str, str]
     events: tuple[EventProbe, ...] = ()
     tracks: tuple[TrackProbe, ...] = ()
-    adrift: frozenset[str] = frozenset()
-    """Nets that no source of known voltage reaches: what they and their parts show is not an operating point."""
 
 
 @dataclass(slots=True)
@@ -185,9 +183,9 @@ class Builder:
         ends = {getattr(branch, name) for branch in self.branches for name in ("a", "b", "ground") if hasattr(branch, name)}
         return ends | {net for branch in self.branches for net in getattr(branch, "nodes", {}).values()}
 
-    def finish(self, reference: tuple[str, ...], adrift: frozenset[str]) -> Circuit:
+    def finish(self, reference: tuple[str, ...]) -> Circuit:
         """The circuit as collected."""
         return Circuit(self.mode, self.box, tuple(self.branches), reference, HeatModel(tuple(self.paths), self.sinks, self.inside),
                        self.ambient_c, self.probes, tuple(self.loads), tuple(self.sources), tuple(self.unfed.values()),
                        {ref: tuple(data) for ref, data in self.missing.items()}, self.heat_missing,
-                       tuple(self.events), tuple(self.tracks), adrift)
+                       tuple(self.events), tuple(self.tracks))
