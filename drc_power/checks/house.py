@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import fnmatch
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -62,6 +62,15 @@ class House:
 
     rules: RulePack
     found: dict[tuple, tuple[Limit, ...]] = field(default_factory=dict)
+    kept: dict[tuple[str, int], tuple[object, object]] = field(default_factory=dict)
+
+    def once(self, what: str, of: object, work: Callable[[], object]) -> object:
+        """What does not change while one thing is judged again and again, worked out the first time."""
+        key = (what, id(of))
+        if key not in self.kept:
+            # The thing itself is kept with it, so that no other can ever bear its id.
+            self.kept[key] = of, work()
+        return self.kept[key][1]
 
     def limits_on(self, target: Target) -> tuple[Limit, ...]:
         """The limits in force: those of the last pack that has any, and every locked one below it."""

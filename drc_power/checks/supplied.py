@@ -20,7 +20,7 @@ def held_back(view: View, judgements: Iterable[Judgement]) -> Iterator[Judgement
     """The judgements, with those on parts and nets that nothing feeds short of a supply. An event brings its own."""
     circuit = view.solution.circuit
     grounds = frozenset((*view.board.grounds, *circuit.reference))
-    fed = fed_nets(circuit, grounds)
+    fed = view.house.once("fed", circuit, lambda: fed_nets(circuit, grounds))
     for judgement in judgements:
         nets = _nets_of(circuit, judgement)
         if judgement.lacking or judgement.event or judgement.only_if_exceeded or not nets or _is_fed(circuit, nets, fed, grounds):
