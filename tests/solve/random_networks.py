@@ -20,8 +20,8 @@ from drc_power.solve.branches import (
 from drc_power.solve.heat import HeatModel, HeatPath, Sink
 
 AMBIENT_C = 40.0
-POLY_SCALE = Curve(np.array([-300.0, 2000.0]), 1.0 + 0.0039 * (np.array([-300.0, 2000.0]) - 25.0))
-"""The temperature coefficient of copper, as for a coil or a track."""
+COPPER_SCALE = Curve(np.array([-300.0, 2000.0]), 1.0 + 0.0039 * (np.array([-300.0, 2000.0]) - 25.0))
+"""A coil's resistance over temperature: copper, 0.39 %/K (common practice)."""
 
 FEEDS = ("resistor", "fet", "parallel fets", "coil", "diode", "linear", "switching")
 LOADS = ("current", "power", "resistive", "chopped", "low side")
@@ -84,11 +84,10 @@ def _grow(draw, max_nets: int, feeds) -> list[Net]:
 
 
 def _load(draw, nets: list[Net], loads) -> None:
-    """Up to two loads on each net; at least one where nothing else hangs on it."""
-    parents = {net.parent for net in nets}
-    for k, net in enumerate(nets):
-        for _ in range(draw(st.integers(0 if k in parents else 1, 2))):
-            net.loads.append((draw(st.sampled_from(loads)), _share(draw, 1e-3, 5.0), draw(st.sampled_from(("0", "0", "gnd2")))))
+    for net in nets:
+        for _ in range(draw(st.integers(0, 2))):
+            back = draw(st.sampled_from(("0", "0", "gnd2")))
+            net.loads.append((draw(st.sampled_from(loads)), _share(draw, 1e-3, 5.0), back))
 
 
 def _sum_currents(nets: list[Net]) -> None:
@@ -134,18 +133,30 @@ class _Build:
             return
         for k in range(2):
             volts = first.volts * self.draw(st.sampled_from((1.0, 0.999, 0.97, 0.7)) if k else st.just(1.0))
-            part, slope = f"D in{k}", self._ohms(first.volts, first.amps)
-            # More tempco than the slope makes up for, and one diode takes all: two operating points, none of them wrong.
-            knee_v_per_k = -min(1e-3, 0.2 * slope * first.amps / 60.0)
+            part = f"D in{k}"
             self.branches += [Source(f"V{k}", f"in{k}", "0", P(volts), P(self._ohms(first.volts, first.amps))),
-                              OneWay(part, f"in{k}", "n0", Drop(P(0.5), P(slope), knee_v_per_k), self._warm(part, 0.5 * first.amps))]
+                              OneWay(part, f"in{k}", "n0", self._drop(first), self._warm(part, 0.5 * first.amps))]
+
+    def _drop(self, net: Net) -> Drop:
+        """A forward law by line or by measured points, whose first may lie below or above the nominal current.
+
+        A tempco that the slope does not make up for lets one of two diodes take all: two operating points, none wrong.
+        """
+        kind = self.draw(st.sampled_from(("line", "tempco", "measured", "one line")))
+        if kind in ("line", "tempco"):
+            slope = self._ohms(net.volts, net.amps)
+            knee_v_per_k = -min(1e-3, 0.2 * slope * net.amps / 60.0) if kind == "tempco" else 0.0
+            return Drop(P(self.draw(st.floats(0.2, 0.9))), P(slope), knee_v_per_k)
+        amps = np.array([1.0, 10.0, 50.0]) * _share(self.draw, 0.02, 2.0) * max(net.amps, 1e-3)
+        lines = ((25.0, Curve(amps, np.array([0.42, 0.55, 0.8]))), (125.0, Curve(amps, np.array([0.25, 0.42, 0.72]))))
+        return Drop(lines=lines if kind == "measured" else lines[:1])
 
     def _resistor(self, net: Net, parent: Net) -> None:
         self.branches.append(Resistive(f"R {net.name}", parent.name, net.name, P(self._ohms(net.volts, net.amps))))
 
     def _coil(self, net: Net, parent: Net) -> None:
         key, ohms = f"L {net.name}", self._ohms(net.volts, net.amps)
-        self.branches.append(Resistive(key, parent.name, net.name, P(ohms), self._warm(key, ohms * net.amps**2), POLY_SCALE))
+        self.branches.append(Resistive(key, parent.name, net.name, P(ohms), self._warm(key, ohms * net.amps**2), COPPER_SCALE))
 
     def _fet(self, net: Net, parent: Net, n: int = 1) -> None:
         ohms = self._ohms(net.volts, net.amps)
@@ -158,29 +169,22 @@ class _Build:
         self._fet(net, parent, self.draw(st.integers(2, 4)))
 
     def _diode(self, net: Net, parent: Net) -> None:
-        key, kind = f"D {net.name}", self.draw(st.sampled_from(("line", "tempco", "measured")))
-        part = self._warm(key, 0.6 * net.amps)
-        slope = self._ohms(net.volts, net.amps)
-        if kind == "measured":
-            cold, hot = ((t, Curve(np.array([0.1, 1.0, 5.0]) * max(net.amps, 1e-3), np.array(v)))
-                         for t, v in ((25.0, [0.42, 0.55, 0.8]), (125.0, [0.25, 0.42, 0.72])))
-            drop = Drop(lines=(cold, hot))
-        else:
-            drop = Drop(P(self.draw(st.floats(0.2, 0.9))), P(slope), -1.5e-3 if kind == "tempco" else 0.0)
-        self.branches.append(OneWay(key, parent.name, net.name, drop, part))
+        key = f"D {net.name}"
+        self.branches.append(OneWay(key, parent.name, net.name, self._drop(net), self._warm(key, 0.6 * net.amps)))
 
     def _linear(self, net: Net, parent: Net) -> None:
-        ground = self.draw(st.sampled_from(("0", "gnd2")))
+        key, ground = f"U {net.name}", self.draw(st.sampled_from(("0", "gnd2")))
         dropout, quiescent = self.draw(st.floats(0.0, 0.1)) * parent.volts, _share(self.draw, 1e-5, 1e-2)
-        self.branches.append(Linear(f"U {net.name}", parent.name, net.name, ground, P(net.volts), P(dropout), P(quiescent), f"U {net.name}"))
+        self.branches.append(Linear(key, parent.name, net.name, ground, P(net.volts), P(dropout), P(quiescent), key))
 
     def _switching(self, net: Net, parent: Net) -> None:
-        ground, at = self.draw(st.sampled_from(("0", "gnd2"))), np.array([0.1, 0.5, 1.0, 2.0]) * max(net.amps, 1e-3)
+        key, ground = f"U {net.name}", self.draw(st.sampled_from(("0", "gnd2")))
+        at = np.array([0.1, 0.5, 1.0, 2.0]) * max(net.amps, 1e-3)
         low, high = (Curve(at, np.array(self.draw(st.lists(st.floats(0.75, 1.0), min_size=4, max_size=4)))) for _ in range(2))
         flat = self.draw(st.booleans())
         eta = Efficiency((0.0,), (low,)) if flat else Efficiency((0.7 * parent.volts, parent.volts), (low, high))
         quiescent = _share(self.draw, 1e-6, 1e-3)
-        self.branches.append(Switching(f"U {net.name}", parent.name, net.name, ground, P(net.volts), eta, P(quiescent), f"U {net.name}"))
+        self.branches.append(Switching(key, parent.name, net.name, ground, P(net.volts), eta, P(quiescent), key))
 
     def _current_load(self, key: str, net: Net, amps: float, back: str) -> None:
         self.branches.append(CurrentLoad(key, net.name, back, P(amps)))

@@ -12,10 +12,10 @@ from dataclasses import fields, is_dataclass, replace
 
 import numpy as np
 import pytest
+from engines import engine_solution
 from hypothesis import HealthCheck, assume, given, settings
 from hypothesis import strategies as st
-from engines import engine_solution
-from random_networks import KEEPS_DOMAIN, Network, networks
+from random_networks import Network, networks
 
 from drc_power.solve.balance import current_imbalance, power_imbalance
 from drc_power.solve.branches import (
@@ -33,7 +33,8 @@ SAME = 1e-8
 SPREAD = np.array([1.0, 0.94, 1.05])
 """Every source and load of a network is solved at these shares of its nominal value, independently of the others."""
 
-random_networks = settings(max_examples=80, deadline=None, suppress_health_check=[HealthCheck.too_slow, HealthCheck.data_too_large])
+drawn = settings(max_examples=60, deadline=None, derandomize=True,
+                 suppress_health_check=[HealthCheck.too_slow, HealthCheck.data_too_large])
 
 
 def solve(network: Network, points: np.ndarray | None = None) -> Solution:
@@ -64,7 +65,8 @@ class Reading:
     """One sample of a solution: voltages, currents and temperatures by name, and the records' numbers."""
 
     def __init__(self, solution: Solution, sample: int) -> None:
-        self.voltages, self.currents = ({name: solution.x[at, sample] for name, at in solution.system.layout.of_kind(kind).items()}
+        layout = solution.system.layout
+        self.voltages, self.currents = ({name: solution.x[at, sample] for name, at in layout.of_kind(kind).items()}
                                         for kind in ("node", "current"))
         self.junctions = {part: t[sample] for part, t in solution.temperatures.junction_c.items()}
         self.point = solution.points[sample]
@@ -217,11 +219,17 @@ def imbalances(r: Reading, network: Network) -> dict[str, float]:
     return out | {"power": abs(sum(watts)) / max(sum(map(abs, watts)), 1e-3)}
 
 
-def worst(found: dict[str, float]) -> tuple[float, str]:
-    return max((size, name) for name, size in found.items())
+def collapsed(r: Reading, network: Network) -> list[str]:
+    """Constant-power loads below a third of their nominal voltage, which is 20 times their floor: on the wrong branch."""
+    return [b.key for b in network.branches if isinstance(b, PowerLoad) and r.v(b.a) - r.v(b.b) < 20.0 * b.floor_v / 3.0]
 
 
-@random_networks
+def assert_below(found: dict[str, float], limit: float) -> None:
+    size, where = max((size, where) for where, size in found.items())
+    assert size < limit, where
+
+
+@drawn
 @given(networks(), st.integers(0, 2**31))
 def test_every_network_is_solved_balances_and_obeys_the_laws(network, seed):
     spread, points = spread_out(network, seed)
@@ -230,8 +238,109 @@ def test_every_network_is_solved_balances_and_obeys_the_laws(network, seed):
     assert not solution.runaway
     for sample in range(len(points)):
         reading = Reading(solution, sample)
-        assert worst(imbalances(reading, spread)) < (BALANCED, "")
-        assert worst(misfits(reading, spread)) < (LAWFUL, "")
-    if any(isinstance(b, (CurrentLoad, PowerLoad)) for b in network.branches):
+        assert_below(imbalances(reading, spread), BALANCED)
+        assert_below(misfits(reading, spread), LAWFUL)
+        assert collapsed(reading, spread) == []
+    # The self-check's own sums leave out the leak of 1e-18 S; from 0.1 A on that is below what it asks.
+    if np.abs(solution.x[list(solution.system.layout.of_kind("current").values())]).max(axis=0).min() > 0.1:
         assert current_imbalance(solution).max() < BALANCED
         assert power_imbalance(solution).max() < BALANCED
+
+
+# Two ways to write one network
+
+
+def assert_same(first: Solution, second: Solution, volts: float = 1.0, amps: float = 1.0) -> None:
+    """Every net, branch and junction that both have agrees; the second's voltages and currents scaled by the factors."""
+    for kind, factor in (("node", volts), ("current", amps)):
+        ours, theirs = (s.system.layout.of_kind(kind) for s in (first, second))
+        for name in ours.keys() & theirs.keys():
+            assert second.x[theirs[name], 0] == pytest.approx(factor * first.x[ours[name], 0], rel=SAME, abs=SAME), name
+    for part, t_c in first.temperatures.junction_c.items():
+        assert second.temperatures.junction_c[part][0] == pytest.approx(t_c[0], rel=SAME), part
+
+
+def solved(network: Network) -> Solution:
+    solution = solve(network)
+    assert not solution.unsolved().any()
+    return solution
+
+
+@drawn
+@given(networks(max_nets=6), st.randoms(use_true_random=False))
+def test_the_order_of_the_branches_changes_nothing(network, random):
+    shuffled = list(network.branches)
+    random.shuffle(shuffled)
+    paths = list(network.heat.paths)
+    random.shuffle(paths)
+    assert_same(solved(network), solved(Network(tuple(shuffled), replace(network.heat, paths=tuple(paths)))))
+
+
+@drawn
+@given(networks(max_nets=6), st.data())
+def test_a_resistor_split_in_two_changes_nothing(network, data):
+    """In series by a third and two thirds, with a net between; the part's heat is that of both."""
+    whole = data.draw(st.sampled_from([b for b in network.branches if isinstance(b, Resistive)]))
+    r_ohm = whole.r_ohm.value
+    first, second = (replace(whole, key=f"{whole.key} {k}", r_ohm=Param(share * r_ohm)) for k, share in enumerate((1 / 3, 2 / 3)))
+    halves = (replace(first, b="between"), replace(second, a="between"))
+    others = tuple(b for b in network.branches if b is not whole)
+    assert_same(solved(network), solved(replace(network, branches=others + halves)))
+
+
+@drawn
+@given(networks(max_nets=6, feeds=("fet", "parallel fets", "diode", "linear")), st.data())
+def test_a_fet_doubled_at_twice_its_resistances_changes_nothing(network, data):
+    """Two parts of twice the on-resistance share the current; at twice the own thermal resistance both are as hot."""
+    fets = [b for b in network.branches if isinstance(b, Resistive) and b.part and b.scale]
+    assume(fets)
+    fet = data.draw(st.sampled_from(fets))
+    path = next(p for p in network.heat.paths if p.part == fet.part)
+    r_ohm = Param(2.0 * fet.r_ohm.value)
+    twice = [replace(fet, key=f"{fet.key} {side}", part=f"{fet.part} {side}", r_ohm=r_ohm) for side in "xy"]
+    warmer = [replace(path, part=b.part, own_k_per_w=tuple(Param(2.0 * p.value) for p in path.own_k_per_w)) for b in twice]
+    branches = (*(b for b in network.branches if b is not fet), *twice)
+    paths = (*(p for p in network.heat.paths if p is not path), *warmer)
+    one, two = solved(network), solved(Network(branches, replace(network.heat, paths=paths)))
+    assert two.current_a(twice[0].key)[0] == pytest.approx(0.5 * one.current_a(fet.key)[0], rel=SAME, abs=SAME)
+    for b in twice:
+        assert two.temperatures.junction_c[b.part][0] == pytest.approx(one.temperatures.junction_c[fet.part][0], rel=SAME)
+    for name, at in one.system.layout.of_kind("node").items():
+        assert two.node_v(name)[0] == pytest.approx(one.x[at, 0], rel=SAME, abs=SAME), name
+
+
+POWERS_OF_SCALE = {"voltage_v": 1, "current_a": 1, "power_w": 2, "setpoint_v": 1, "dropout_v": 1, "quiescent_a": 1, "knee_v": 1,
+                   "own_k_per_w": -2, "r_k_per_w": -2, "floor_v": 1, "knee_v_per_k": 1, "input_v": 1, "xs": 1, "ys": 1}
+"""By which power of k a number of a record grows when all voltages and currents grow k times; 0 for those left out."""
+
+
+def scaled(record, k: float, unless: tuple[str, ...] = ()):
+    """The record with every number scaled; a curve's columns only where they are volts or amperes."""
+    if isinstance(record, tuple):
+        return tuple(scaled(item, k, unless) for item in record)
+    if not is_dataclass(record) or isinstance(record, Param):
+        return record
+    changes = {}
+    for name in (f.name for f in fields(record) if f.name not in unless):
+        value, power = getattr(record, name), POWERS_OF_SCALE.get(name, 0)
+        if name == "scale":
+            continue
+        if power:
+            changes[name] = times(value, k**power)
+        else:
+            changes[name] = scaled(value, k, ("ys",) if isinstance(record, Efficiency) else unless)
+    return replace(record, **changes)
+
+
+def times(value, factor: float):
+    if isinstance(value, tuple):
+        return tuple(times(item, factor) for item in value)
+    return replace(value, value=factor * value.value) if isinstance(value, Param) else factor * value
+
+
+@drawn
+@given(networks(max_nets=6), st.sampled_from((0.5, 1.7, 4.0)))
+def test_all_voltages_and_currents_scale_together(network, k):
+    """k times every voltage and current, k² the powers, thermal resistances over k²: the same temperatures."""
+    heat = HeatModel(scaled(network.heat.paths, k), {name: scaled(sink, k) for name, sink in network.heat.sinks.items()})
+    assert_same(solved(network), solved(Network(scaled(network.branches, k), heat)), k, k)
