@@ -40,6 +40,7 @@ class BoardPart:
     device: Device | None
     note: PartNote
     written_ratings: Mapping[str, Quantity] = field(default_factory=dict)
+    named: bool = False
 
     @property
     def ref(self) -> str:
@@ -104,7 +105,11 @@ class Board:
     def grounds(self) -> tuple[str, ...]:
         """The ground nets, annotated or found, by the netlist's own names."""
         names = self.annotations.grounds if self.annotations.grounds is not None else self.survey.grounds
-        return tuple(self.net(name) for name in names)
+        names = names or [rail.return_ for rail in self.annotations.rails.values() if rail.return_]
+        if not names:
+            raise InputError(Fault(Mark(self.annotations.path), "no ground was found in the netlist",
+                                   "write grounds: [NET], or return: NET at a rail"))
+        return tuple(dict.fromkeys(self.net(name) for name in names))
 
     def net(self, name: str) -> str:
         """The netlist's own name of a net given by name or alias. Raises InputError for a net that is not there."""
@@ -138,7 +143,8 @@ class Board:
             except InputError as error:
                 faults += error.faults
                 continue
-            bound[ref] = BoardPart(part, self.survey.parts[ref], elements.get(ref), device, note, self._written(part))
+            bound[ref] = BoardPart(part, self.survey.parts[ref], elements.get(ref), device, note, self._written(part),
+                                   ref in notes or bool(note.written))
         if faults:
             raise InputError(*dict.fromkeys(faults))
         return bound
@@ -217,7 +223,7 @@ class Board:
     @cached_property
     def named(self) -> frozenset[str]:
         """Parts that the annotations or the schematic's own fields speak of: solved and judged, whatever the survey thought."""
-        refs = {ref for mode in self.modes for ref, part in mode.parts.items() if part.note.written}
+        refs = {ref for mode in self.modes for ref, part in mode.parts.items() if part.named}
         refs |= {ref for mode in self.modes for stage in mode.view.stages.values() for ref in stage_parts(stage)}
         refs |= {ref for event in self.annotations.events.values() for ref in event_parts(event)}
         refs |= {str(load.heats) for mode in self.modes for load in mode.loads.values() if load.heats}

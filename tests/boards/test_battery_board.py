@@ -185,3 +185,12 @@ def test_a_second_supply_that_nobody_annotated_is_not_met_at_zero_volt(tmp_path)
     assert of_q3
     assert {f.verdict for f in of_q3} == {"unproven"}
     assert finding(result, "Q2", "junction.steady").verdict == "met"
+
+
+def test_a_part_named_without_a_word_is_judged(tmp_path):
+    """Everything named under `parts` is solved and judged, whatever the survey thought: R2 is a gate resistor."""
+    result = check(write_board(tmp_path, PARTS, ANNOTATIONS + "", DEVICES))
+    assert "R2" not in {f.ref for f in result.findings}
+    annotations = ANNOTATIONS.replace("  R3: {device: shunt-2512}", "  R3: {device: shunt-2512}\n  R2: {}")
+    named = check(write_board(tmp_path, PARTS, annotations, DEVICES))
+    assert {f.verdict for f in named.findings if f.ref == "R2"} == {"unproven"}

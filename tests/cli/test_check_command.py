@@ -164,3 +164,13 @@ def test_the_same_board_in_another_folder_gives_the_same_bytes(board, tmp_path_f
     first = capsys.readouterr().out
     main(["check", str(elsewhere / board.name), "--json", "-"])
     assert capsys.readouterr().out == first
+
+
+def test_a_board_without_a_ground_exits_2_and_says_what_to_write(tmp_path, capsys):
+    parts = {"J1": ("Conn_01x02", "BAT", "P", "M"), "R1": ("R", "10", "P", "M")}
+    annotations = "surroundings: {ambient: 25 °C}\nrails:\n  P: {voltage: 10 V, source: J1}\nparts:\n  R1: {device: fuse-10a}\n"
+    path = write_board(tmp_path, parts, annotations, DEVICES)
+    assert main(["check", str(path)]) == 2
+    assert "write grounds: [NET]" in capsys.readouterr().err
+    path.write_text(path.read_text().replace("source: J1}", "source: J1, return: M}"))
+    assert main(["check", str(path)]) in (0, 1)
