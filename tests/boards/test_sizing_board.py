@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import functools
 import re
 
 import pytest
@@ -22,7 +23,9 @@ def path(tmp_path_factory):
     return write_board(tmp_path_factory.mktemp("sizing"), PARTS, ANNOTATIONS, DEVICES, RULES)
 
 
+@functools.cache
 def levers(path, ref):
+    """Worked out once for all tests: each answer is many solutions of the whole board."""
     board, _, _ = read_board(path, Run())
     (found,) = size_part(board, ref)
     return {each.lever.name: each for each in found.boundaries}
