@@ -138,7 +138,7 @@ class _Build:
                               OneWay(part, f"in{k}", "n0", self._drop(first), self._warm(part, 0.5 * first.amps))]
 
     def _drop(self, net: Net) -> Drop:
-        """A forward law by line or by measured points, whose first may lie below or above the nominal current.
+        """A forward law by line or by points measured from 0 A on; what is flat is in `test_measured_diodes`.
 
         A tempco that the slope does not make up for lets one of two diodes take all: two operating points, none wrong.
         """
@@ -147,8 +147,8 @@ class _Build:
             slope = self._ohms(net.volts, net.amps)
             knee_v_per_k = -min(1e-3, 0.2 * slope * net.amps / 60.0) if kind == "tempco" else 0.0
             return Drop(P(self.draw(st.floats(0.2, 0.9))), P(slope), knee_v_per_k)
-        amps = np.array([1.0, 10.0, 50.0]) * _share(self.draw, 0.02, 2.0) * max(net.amps, 1e-3)
-        lines = ((25.0, Curve(amps, np.array([0.42, 0.55, 0.8]))), (125.0, Curve(amps, np.array([0.25, 0.42, 0.72]))))
+        amps = np.array([0.0, 1.0, 10.0, 50.0]) * _share(self.draw, 0.02, 2.0) * max(net.amps, 1e-3)
+        lines = ((25.0, Curve(amps, np.array([0.30, 0.42, 0.55, 0.8]))), (125.0, Curve(amps, np.array([0.12, 0.25, 0.42, 0.72]))))
         return Drop(lines=lines if kind == "measured" else lines[:1])
 
     def _resistor(self, net: Net, parent: Net) -> None:
