@@ -14,6 +14,9 @@ MAX_ITERATIONS = 60
 STEP_TOLERANCE = 1e-12
 """Converged when no unknown moves by more than this share of itself (of 1 below 1) and no branch changes its line."""
 
+RESIDUAL = 1e-7
+"""And no equation misses by more than this share of the largest unknown: a singular network stands still without a solution."""
+
 MILD_ITERATIONS = 8
 MILD_ROUNDS = 8
 """How often the milder network is solved on the way to the real one."""
@@ -81,7 +84,8 @@ class Solver:
             self._keep_in_bounds(x, bound_v)
             after = self.system.regime(x[:, active], part)
             size = np.abs(step) / np.maximum(np.abs(x[:-1, active]), 1.0)
-            done = (size.max(axis=0, initial=0.0) <= STEP_TOLERANCE) & (before == after).all(axis=0)
+            met = np.abs(residual).max(axis=0, initial=0.0) <= RESIDUAL * (1.0 + np.abs(x[:-1, active]).max(axis=0, initial=0.0))
+            done = (size.max(axis=0, initial=0.0) <= STEP_TOLERANCE) & (before == after).all(axis=0) & met
             converged[active[done]] = True
             done |= self._is_hopeless(x[:, active])
             before = after

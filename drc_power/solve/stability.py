@@ -54,10 +54,23 @@ def loop_gain(solver: Solver, x: np.ndarray, prepared: Prepared) -> np.ndarray:
         jacobian = solver.jacobian(x[:, samples], free)
         rest = np.setdiff1d(np.arange(solver.system.n), t)
         inner = jacobian[:, rest[:, None], rest]
-        answer = np.linalg.solve(inner, jacobian[:, rest[:, None], t])
+        outer = jacobian[:, rest[:, None], t]
+        try:
+            answer = np.linalg.solve(inner, outer)
+        except np.linalg.LinAlgError:
+            # A singular network has no loop gain; its samples are unconverged in any case.
+            answer = np.array([_answer_or_nan(m, b) for m, b in zip(inner, outer, strict=True)])
         closed = jacobian[:, t[:, None], t] - jacobian[:, t[:, None], rest] @ answer
-        gains[samples] = np.abs(np.linalg.eigvals(np.eye(len(t)) - closed)).max(axis=1)
+        known = np.isfinite(closed).all(axis=(1, 2))
+        gains[samples[known]] = np.abs(np.linalg.eigvals(np.eye(len(t)) - closed[known])).max(axis=1, initial=0.0)
     return gains
+
+
+def _answer_or_nan(inner: np.ndarray, outer: np.ndarray) -> np.ndarray:
+    try:
+        return np.linalg.solve(inner, outer)
+    except np.linalg.LinAlgError:
+        return np.full_like(outer, np.nan)
 
 
 def climb(solver: Solver, x: np.ndarray, prepared: Prepared) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
