@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 
-from ..findings.identity import named_subject, net_subject
+from ..findings.identity import named_subject, net_subject, part_subject
 from .judgement import Judgement
-from .view import ElementView, View
+from .view import View
 
 
 def rails(view: View) -> Iterator[Judgement]:
@@ -40,8 +40,6 @@ def unjudged(view: View, judged: Iterable[str]) -> Iterator[Judgement]:
 
 
 def _unjudged(view: View, ref: str) -> Judgement:
-    from ..findings.identity import part_subject
-
     part = view.mode.parts[ref]
     missing = view.solution.circuit.missing.get(ref, ())
     lacking = missing or (("limits",) if part.device else ("device",))
@@ -52,8 +50,3 @@ def _unjudged(view: View, ref: str) -> Judgement:
     return Judgement(
         "coverage.data", part_subject(part.part.uuid, ref), "device data", "", view.unknown(), view.unknown(),
         view.unknown(), view.board.where(part), None, ref, lacking=lacking, remedy=remedy)
-
-
-def without_supply(view: View, element: ElementView) -> bool:
-    """Whether nothing that the solver knows feeds an element."""
-    return not any(view.solution.has_node(net) for net in (element.probe.a, element.probe.b) if net)

@@ -31,11 +31,10 @@ class Variable:
 
 @dataclass(frozen=True, slots=True)
 class Param:
-    """A number of the circuit: exact, or the box's side `index`, or 1 less that side; and what is added to it."""
+    """A number of the circuit: exact, or the box's side `index`; and what is added to it."""
 
     value: float
     index: int | None = None
-    complement: bool = False
     plus: Param | None = None
 
 
@@ -94,7 +93,7 @@ def values_of(params: Sequence[Param], points: np.ndarray) -> np.ndarray:
     out = np.empty((len(params), points.shape[0]))
     for row, param in enumerate(params):
         given = param.value if param.index is None else points[:, param.index]
-        out[row] = 1.0 - given if param.complement and param.index is not None else given
+        out[row] = given
         if param.plus is not None:
             out[row] += values_of((param.plus,), points)[0]
     return out
